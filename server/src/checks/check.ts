@@ -1,11 +1,14 @@
-import type { LatticeDocument, Fix, Severity, Span } from '../format/model.ts'
+import type { DecodedFile, Fix, LatticeDocument, Severity, Span } from '../format/model.ts'
 import type { Crystal } from '../meaning/crystal.ts'
 
 /** What a rule reads: one document, what it means, and the text for the sake of fixes. */
 export interface Context {
   readonly text: string
+  readonly file: DecodedFile
   readonly document: LatticeDocument
   readonly crystal: Crystal
+  /** The ids of all rules, for rules about naming rules. */
+  readonly ruleIds: ReadonlySet<string>
 }
 
 export interface Related {

@@ -186,8 +186,8 @@ export interface LatticeDocument {
   /** The whole `mesh:` entry, whether it holds one mesh or several by name. */
   readonly meshEntry?: Entry
   readonly supercell?: SupercellBlock
-  /** Severity by rule id from `checks:`. */
-  readonly checks: ReadonlyMap<string, Sourced<Severity | 'off'>>
+  /** Severity by rule id from `checks:`, with the span of the id itself. */
+  readonly checks: ReadonlyMap<string, Sourced<Severity | 'off'> & { readonly key: Span }>
   readonly checksEntry?: Entry
   /** Top-level keys that stand in the document. */
   readonly keys: ReadonlyMap<string, Entry>

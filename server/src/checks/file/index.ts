@@ -1,0 +1,8 @@
+export { elementUnknown } from './element-unknown.ts'
+export { keyMissing } from './key-missing.ts'
+export { keyRepeated } from './key-repeated.ts'
+export { keyUnknown } from './key-unknown.ts'
+export { numberMalformed } from './number-malformed.ts'
+export { unitUnknown } from './unit-unknown.ts'
+export { valueType } from './value-type.ts'
+export { yamlSyntax } from './yaml-syntax.ts'

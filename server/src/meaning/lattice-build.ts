@@ -1,0 +1,58 @@
+/** From the `lattice` block to a `Lattice`, or to the reason why there is none. */
+import { BRAVAIS, type CompletedCell, completeCell, type Contradiction } from '../crystal/bravais.ts'
+import { type Dimension, type Lattice, type LatticeFault, latticeFromCell, latticeFromVectors } from '../crystal/lattice.ts'
+import type { Vec3 } from '../crystal/vector.ts'
+import type { LatticeDocument, ParameterName, VectorValue } from '../format/model.ts'
+
+export interface LatticeBuild {
+  readonly dimension?: Dimension
+  readonly lattice?: Lattice
+  /** Why there is no lattice although everything could be read. */
+  readonly fault?: LatticeFault
+  /** Parameters that the type needs and the file does not state. */
+  readonly missing?: readonly ParameterName[]
+  /** Parameters that the type does not allow as stated. */
+  readonly contradictions?: readonly Contradiction[]
+  readonly cell?: CompletedCell
+}
+
+export function buildLattice(document: LatticeDocument): LatticeBuild {
+  const block = document.lattice
+  if (!block) return {}
+  return block.vectors ? fromVectors(document, block.vectors.rows) : fromType(document)
+}
+
+function fromVectors(document: LatticeDocument, rows: readonly (VectorValue | undefined)[]): LatticeBuild {
+  if (rows.length < 1 || rows.length > 3) return {}
+  const dimension = rows.length as Dimension
+  const vectors = rows.map(row => vectorInSpace(row, dimension))
+  if (vectors.some(vector => !vector)) return { dimension }
+  const centring = document.lattice?.centring?.value ?? 'P'
+  const built = latticeFromVectors(vectors as Vec3[], centring)
+  return 'fault' in built ? { dimension, fault: built } : { dimension, lattice: built }
+}
+
+/** Rows of a plane lattice lie in xy, a chain's along x; components that are left out are 0. */
+function vectorInSpace(row: VectorValue | undefined, dimension: Dimension): Vec3 | undefined {
+  if (!row || row.items.length < dimension || row.items.length > 3) return undefined
+  const numbers = [0, 0, 0]
+  for (const [i, item] of row.items.entries()) {
+    if (!item || (i >= dimension && item.value !== 0)) return undefined
+    numbers[i] = item.value
+  }
+  return numbers as unknown as Vec3
+}
+
+function fromType(document: LatticeDocument): LatticeBuild {
+  const block = document.lattice!
+  const type = block.bravais?.value
+  if (!type) return {}
+  const { dimension, centring } = BRAVAIS[type]
+  const given = Object.fromEntries(Object.entries(block.parameters).map(([name, number]) => [name, number!.value]))
+  const completed = completeCell(type, given)
+  if ('missing' in completed) return { dimension, missing: completed.missing }
+  const built = latticeFromCell(completed.cell, centring, dimension)
+  const { contradictions } = completed
+  if ('fault' in built) return { dimension, fault: built, contradictions, cell: completed }
+  return { dimension, lattice: built, contradictions, cell: completed }
+}

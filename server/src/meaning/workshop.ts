@@ -1,0 +1,28 @@
+import type { BookMatch } from '../books/match.ts'
+import type { LatticeType, Symmetry, SymmetryInput } from '../crystal/symmetry.ts'
+import type { Zone } from '../crystal/zone.ts'
+import { Memo } from './lazy.ts'
+
+/** What the search for symmetry came to. */
+export type SymmetryOutcome =
+  | { readonly state: 'found'; readonly symmetry: Symmetry }
+  | { readonly state: 'pending' }
+  | { readonly state: 'failed'; readonly reason: string }
+
+export interface SymmetryService {
+  /** Answers at once: with the symmetry, or `pending` where a worker is still at it. */
+  find(input: SymmetryInput): SymmetryOutcome
+}
+
+/**
+ * The steps from a decoded document to a crystal that cost something, each remembered by the numbers it depends on, so
+ * that an edit of a k-point recomputes neither lattice nor zone nor symmetry.
+ */
+export class Workshop {
+  readonly zones = new Memo<Zone>(64)
+  readonly types = new Memo<LatticeType | undefined>(64)
+  readonly symmetries = new Memo<SymmetryOutcome>(32)
+  readonly matches = new Memo<BookMatch | undefined>(64)
+
+  constructor(readonly symmetry: SymmetryService) {}
+}
