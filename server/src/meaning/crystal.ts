@@ -215,17 +215,16 @@ export class Crystal {
       numbers.set(atom.fraction, 10 + 4 * i)
       numbers[13 + 4 * i] = atom.kind
     })
-    const { symmetries } = this.workshop
-    const find = () =>
+    const job = this.workshop.symmetries.get(String(lattice.dimension), numbers, () =>
       this.workshop.symmetry.find({
         dimension: lattice.dimension,
         primitive: lattice.primitive,
         positions: atoms.map(atom => atom.fraction),
         species: atoms.map(atom => atom.kind),
         tolerance: this.tolerance,
-      })
-    const kept = symmetries.get(String(lattice.dimension), numbers, find)
-    return kept.state === 'pending' ? find() : kept
+      }),
+    )
+    return job.outcome
   })
   /** Symmetry of lattice and atoms; of the lattice alone where there are no atoms. */
   get symmetry(): Symmetry | undefined {

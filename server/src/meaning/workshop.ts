@@ -9,9 +9,14 @@ export type SymmetryOutcome =
   | { readonly state: 'pending' }
   | { readonly state: 'failed'; readonly reason: string }
 
+/** A search that may still be running: `outcome` is read anew at each look. */
+export interface SymmetryJob {
+  readonly outcome: SymmetryOutcome
+}
+
 export interface SymmetryService {
-  /** Answers at once: with the symmetry, or `pending` where a worker is still at it. */
-  find(input: SymmetryInput): SymmetryOutcome
+  /** Answers at once; where the job is still pending, a later snapshot of the same text sees its end. */
+  find(input: SymmetryInput): SymmetryJob
 }
 
 /**
@@ -21,7 +26,7 @@ export interface SymmetryService {
 export class Workshop {
   readonly zones = new Memo<Zone>(64)
   readonly types = new Memo<LatticeType | undefined>(64)
-  readonly symmetries = new Memo<SymmetryOutcome>(32)
+  readonly symmetries = new Memo<SymmetryJob>(32)
   readonly matches = new Memo<BookMatch | undefined>(64)
 
   constructor(readonly symmetry: SymmetryService) {}

@@ -1,0 +1,77 @@
+/** Quick fixes, "fix all of this kind", "fix all", and the comment that silences a rule on a line. */
+import { type CodeAction, CodeActionKind, type Diagnostic, type Range, type TextEdit as LspEdit } from 'vscode-languageserver-types'
+import type { DocumentFinding, Snapshot } from '../analysis.ts'
+import { insertAllowance } from '../format/edits.ts'
+import type { Fix, TextEdit } from '../format/model.ts'
+import { rangeOf } from './diagnostics.ts'
+
+export const FIX_ALL = `${CodeActionKind.SourceFixAll}.braggline`
+
+export interface FixRequest {
+  readonly uri: string
+  readonly version: number | null
+  readonly range: Range
+  /** What the editor shows at the range; the actions are tied to them. */
+  readonly shown: readonly Diagnostic[]
+  /** Kinds asked for; all where absent. */
+  readonly only?: readonly string[]
+}
+
+export function codeActions(snapshot: Snapshot, request: FixRequest): CodeAction[] {
+  const wants = (kind: string) => !request.only || request.only.some(asked => kind === asked || kind.startsWith(`${asked}.`))
+  const actions: CodeAction[] = []
+  if (wants(CodeActionKind.QuickFix)) {
+    for (const finding of findingsIn(snapshot, request.range)) actions.push(...actionsFor(snapshot, request, finding))
+  }
+  if (wants(FIX_ALL)) {
+    const edits = safeEdits(snapshot.findings)
+    if (edits.length > 0)
+      actions.push({ title: 'Fix all that is safe to fix', kind: FIX_ALL, edit: toWorkspaceEdit(snapshot, request, edits) })
+  }
+  return actions
+}
+
+function findingsIn(snapshot: Snapshot, range: Range): DocumentFinding[] {
+  const start = snapshot.offsetOf(range.start)
+  const end = snapshot.offsetOf(range.end)
+  return snapshot.findings.filter(({ at }) => at[0] <= end && at[1] >= start)
+}
+
+function actionsFor(snapshot: Snapshot, request: FixRequest, finding: DocumentFinding): CodeAction[] {
+  const diagnostics = request.shown.filter(
+    shown => shown.code === finding.rule && snapshot.offsetOf(shown.range.start) === finding.at[0],
+  )
+  const action = (title: string, edits: readonly TextEdit[], isPreferred = false): CodeAction => ({
+    title,
+    kind: CodeActionKind.QuickFix,
+    diagnostics,
+    ...(isPreferred ? { isPreferred } : {}),
+    edit: toWorkspaceEdit(snapshot, request, edits),
+  })
+  const fixes = finding.fixes ?? []
+  const safe = fixes.filter(fix => fix.safe)
+  const actions = fixes.map(fix => action(fix.title, fix.edits, safe.length === 1 && fix.safe))
+  const alike = snapshot.findings.filter(({ rule, fixes = [] }) => rule === finding.rule && fixes.some(fix => fix.safe))
+  if (safe.length > 0 && alike.length > 1)
+    actions.push(action(`Fix all ${alike.length} findings of ${finding.rule}`, safeEdits(alike)))
+  if (finding.severity !== 'error')
+    actions.push(action(`Allow ${finding.rule} on this line`, insertAllowance(snapshot.text, finding.at[0], finding.rule)))
+  return actions
+}
+
+/** The first safe fix of each finding; one whose edits meet those of an earlier one is left for the next round. */
+export function safeEdits(findings: readonly DocumentFinding[]): TextEdit[] {
+  const taken: TextEdit[] = []
+  for (const finding of findings) {
+    const fix: Fix | undefined = finding.fixes?.find(fix => fix.safe)
+    if (!fix) continue
+    const clash = fix.edits.some(edit => taken.some(other => edit.at[0] <= other.at[1] && other.at[0] <= edit.at[1]))
+    if (!clash) taken.push(...fix.edits)
+  }
+  return taken
+}
+
+function toWorkspaceEdit(snapshot: Snapshot, { uri, version }: FixRequest, edits: readonly TextEdit[]) {
+  const changes: LspEdit[] = edits.map(edit => ({ range: rangeOf(snapshot, edit.at), newText: edit.text }))
+  return { documentChanges: [{ textDocument: { uri, version }, edits: changes }] }
+}

@@ -1,0 +1,3 @@
+import { serve } from './server-node.ts'
+
+serve()

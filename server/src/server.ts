@@ -1,0 +1,227 @@
+/** Wires the protocol to analysis and features. Knows the connection and nothing of disk or process. */
+import {
+  CancellationToken,
+  CodeActionKind,
+  type Connection,
+  type Diagnostic,
+  DidChangeConfigurationNotification,
+  DocumentDiagnosticReportKind,
+  type InitializeParams,
+  type InitializeResult,
+  ResponseError,
+  TextDocumentSyncKind,
+  TextDocuments,
+} from 'vscode-languageserver'
+import { TextDocument } from 'vscode-languageserver-textdocument'
+import { DEFAULT_SETTINGS, type Settings, Snapshot } from './analysis.ts'
+import type { Severities } from './checks/run.ts'
+import type { Severity } from './format/model.ts'
+import { diagnostics } from './language/diagnostics.ts'
+import { codeActions, FIX_ALL } from './language/fixes.ts'
+import { hover } from './language/hover.ts'
+import { recommendedPathEdit } from './language/recommended-path.ts'
+import { statusOf } from './language/status.ts'
+import { symbols } from './language/symbols.ts'
+import { Workshop } from './meaning/workshop.ts'
+import {
+  CHECKED,
+  type CheckedParams,
+  type CheckedResult,
+  RECOMMENDED_PATH,
+  type RecommendedPathParams,
+  STATUS,
+} from './protocol.ts'
+import { type StartWorker, WorkerSymmetry } from './symmetry-service.ts'
+
+export interface ServerOptions {
+  readonly startWorker: StartWorker
+  readonly version: string
+  /** URI of the folder with the pages of the rules; a client may name another in its initialization options. */
+  readonly rulePages?: string
+}
+
+/** A pushed check waits as long as the last one took, so that fast typing in a large file is not checked letter by letter. */
+const LONGEST_WAIT_MS = 100
+
+export function startServer(connection: Connection, options: ServerOptions): void {
+  const documents = new TextDocuments(TextDocument)
+  const snapshots = new Map<string, Snapshot>()
+  const waiting = new Map<string, ReturnType<typeof setTimeout>>()
+  const costs = new Map<string, number>()
+  let settings: Settings = DEFAULT_SETTINGS
+  let pulls = false
+  let refreshes = false
+  let asksConfiguration = false
+  let rulePages = options.rulePages
+
+  const symmetry = new WorkerSymmetry(options.startWorker, () => {
+    for (const [uri, snapshot] of snapshots) if (snapshot.pending) snapshots.delete(uri)
+    recheckAll()
+  })
+  const workshop = new Workshop(symmetry)
+
+  function snapshotOf(uri: string): Snapshot | undefined {
+    const document = documents.get(uri)
+    if (!document) return undefined
+    const known = snapshots.get(uri)
+    if (known && known.version === document.version && known.settings === settings) return known
+    symmetry.dropStale()
+    const snapshot = new Snapshot(document.getText(), workshop, settings, document.version)
+    snapshots.set(uri, snapshot)
+    return snapshot
+  }
+
+  /** One bad file, one bad request: it is logged, answered with nothing, and the server goes on. */
+  function guard<P, R>(name: string, nothing: R, answer: (params: P) => R): (params: P, token?: CancellationToken) => R {
+    return (params, token = CancellationToken.None) => {
+      if (token.isCancellationRequested) return nothing
+      try {
+        return answer(params)
+      } catch (error) {
+        if (error instanceof ResponseError) throw error
+        connection.console.error(`${name}: ${error instanceof Error ? error.stack : String(error)}`)
+        return nothing
+      }
+    }
+  }
+
+  const findingsOf = guard('check', [] as Diagnostic[], (uri: string) => {
+    const started = performance.now()
+    const snapshot = snapshotOf(uri)
+    if (!snapshot) return []
+    const found = diagnostics(snapshot, uri, rulePages)
+    costs.set(uri, performance.now() - started)
+    void connection.sendNotification(STATUS, statusOf(snapshot, uri))
+    return found
+  })
+
+  function push(uri: string): void {
+    const document = documents.get(uri)
+    if (document) void connection.sendDiagnostics({ uri, version: document.version, diagnostics: findingsOf(uri) })
+  }
+
+  function schedule(uri: string): void {
+    clearTimeout(waiting.get(uri))
+    const wait = Math.min(costs.get(uri) ?? 0, LONGEST_WAIT_MS)
+    const timer = setTimeout(() => {
+      waiting.delete(uri)
+      push(uri)
+    }, wait)
+    waiting.set(uri, timer)
+  }
+
+  function recheckAll(): void {
+    if (!pulls) for (const { uri } of documents.all()) schedule(uri)
+    else if (refreshes) connection.languages.diagnostics.refresh()
+  }
+
+  async function readSettings(): Promise<void> {
+    const asked: unknown = asksConfiguration ? await connection.workspace.getConfiguration('braggline') : undefined
+    settings = readSeverities(asked)
+    recheckAll()
+  }
+
+  connection.onInitialize((params: InitializeParams): InitializeResult => {
+    const { capabilities, initializationOptions } = params
+    pulls = capabilities.textDocument?.diagnostic !== undefined
+    refreshes = capabilities.workspace?.diagnostics?.refreshSupport === true
+    asksConfiguration = capabilities.workspace?.configuration === true
+    const pages: unknown = initializationOptions?.rulePages
+    if (typeof pages === 'string') rulePages = pages
+    return {
+      serverInfo: { name: 'Braggline', version: options.version },
+      capabilities: {
+        positionEncoding: 'utf-16',
+        textDocumentSync: { openClose: true, change: TextDocumentSyncKind.Incremental, save: false },
+        hoverProvider: true,
+        documentSymbolProvider: { label: 'Braggline' },
+        codeActionProvider: { codeActionKinds: [CodeActionKind.QuickFix, FIX_ALL] },
+        ...(pulls ? { diagnosticProvider: { interFileDependencies: false, workspaceDiagnostics: false } } : {}),
+      },
+    }
+  })
+
+  connection.onInitialized(() => {
+    if (!asksConfiguration) return
+    void connection.client.register(DidChangeConfigurationNotification.type, { section: 'braggline' })
+    void readSettings()
+  })
+  connection.onDidChangeConfiguration(({ settings: sent }) => {
+    if (asksConfiguration) return void readSettings()
+    settings = readSeverities(sent?.braggline)
+    recheckAll()
+  })
+
+  documents.onDidChangeContent(({ document }) => {
+    if (!pulls) schedule(document.uri)
+  })
+  documents.onDidClose(({ document: { uri } }) => {
+    clearTimeout(waiting.get(uri))
+    waiting.delete(uri)
+    snapshots.delete(uri)
+    costs.delete(uri)
+    if (!pulls) void connection.sendDiagnostics({ uri, diagnostics: [] })
+  })
+
+  connection.languages.diagnostics.on(({ textDocument: { uri }, previousResultId }) => {
+    const items = findingsOf(uri)
+    const snapshot = snapshots.get(uri)
+    const resultId = snapshot && `${snapshot.version}/${snapshot.pending}/${JSON.stringify([...settings.severities])}`
+    if (resultId !== undefined && resultId === previousResultId)
+      return { kind: DocumentDiagnosticReportKind.Unchanged, resultId }
+    return { kind: DocumentDiagnosticReportKind.Full, resultId, items }
+  })
+
+  connection.onHover(
+    guard('hover', null, ({ textDocument, position }) => {
+      const snapshot = snapshotOf(textDocument.uri)
+      return snapshot ? hover(snapshot, position) : null
+    }),
+  )
+  connection.onDocumentSymbol(
+    guard('symbols', [], ({ textDocument }) => {
+      const snapshot = snapshotOf(textDocument.uri)
+      return snapshot ? symbols(snapshot) : []
+    }),
+  )
+  connection.onCodeAction(
+    guard('fixes', [], ({ textDocument: { uri }, range, context }) => {
+      const snapshot = snapshotOf(uri)
+      if (!snapshot) return []
+      return codeActions(snapshot, { uri, version: snapshot.version, range, shown: context.diagnostics, only: context.only })
+    }),
+  )
+
+  connection.onRequest(CHECKED, async ({ uri, version }: CheckedParams): Promise<CheckedResult | null> => {
+    const document = documents.get(uri)
+    if (!document || document.version < version) return null
+    while (snapshotOf(uri)?.pending) {
+      await symmetry.idle()
+      snapshots.delete(uri)
+    }
+    return { version: snapshots.get(uri)?.version ?? version, findings: findingsOf(uri).length }
+  })
+  connection.onRequest(
+    RECOMMENDED_PATH,
+    guard('recommended path', null, ({ uri, position }: RecommendedPathParams) => {
+      const snapshot = snapshotOf(uri)
+      return snapshot ? recommendedPathEdit(snapshot, position) : null
+    }),
+  )
+
+  connection.onShutdown(() => symmetry.dispose())
+  documents.listen(connection)
+  connection.listen()
+}
+
+const SEVERITIES = new Set<unknown>(['off', 'info', 'warning', 'error'])
+
+/** The workspace's `braggline.checks`; anything that is no severity is passed over. */
+function readSeverities(section: unknown): Settings {
+  const checks = (section as { checks?: unknown } | null | undefined)?.checks
+  if (typeof checks !== 'object' || checks === null) return DEFAULT_SETTINGS
+  const severities: Severities = new Map(
+    Object.entries(checks).filter((entry): entry is [string, Severity | 'off'] => SEVERITIES.has(entry[1])),
+  )
+  return { severities }
+}
