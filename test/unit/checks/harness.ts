@@ -3,21 +3,11 @@
  */
 import { expect } from 'vitest'
 import { type DocumentFinding, Snapshot } from '../../../server/src/analysis.ts'
-import { findSymmetry } from '../../../server/src/crystal/symmetry.ts'
 import type { Fix, TextEdit } from '../../../server/src/format/model.ts'
-import { type SymmetryService, Workshop } from '../../../server/src/meaning/workshop.ts'
+import { Workshop } from '../../../server/src/meaning/workshop.ts'
+import { directSymmetry } from '../../../server/src/symmetry-service.ts'
 
-/** Searches at once, in this thread: tests wait for the answer. */
-const AT_ONCE: SymmetryService = {
-  find(input) {
-    try {
-      return { state: 'found', symmetry: findSymmetry(input) }
-    } catch (error) {
-      return { state: 'failed', reason: String(error) }
-    }
-  },
-}
-const workshop = new Workshop(AT_ONCE)
+const workshop = new Workshop(directSymmetry)
 
 export const snapshotOf = (text: string): Snapshot => new Snapshot(text, workshop)
 
