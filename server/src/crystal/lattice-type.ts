@@ -1,0 +1,395 @@
+/**
+ * The symmetry of a lattice alone: its holohedry as the whole-numbered matrices that keep the metric, its Bravais type
+ * and its conventional cell. Geometry only: no symmetry library is needed.
+ */
+import type { BravaisType } from './bravais.ts'
+import { type Dimension, shortBasis } from './reduction.ts'
+import {
+  add,
+  angle,
+  apply,
+  combine,
+  cross,
+  determinant,
+  dot,
+  IDENTITY,
+  inverse,
+  type Mat3,
+  mapMatrix,
+  multiply,
+  norm,
+  scale,
+  subtract,
+  transpose,
+  type Vec3,
+} from './vector.ts'
+
+export interface CellParameters {
+  readonly a: number
+  readonly b: number
+  readonly c: number
+  /** In degrees. */
+  readonly alpha: number
+  readonly beta: number
+  readonly gamma: number
+}
+
+export interface LatticeType {
+  /** One of the 14 types (`oC`, `mC` for the one-face-centred ones) or the 5 of the plane; a chain has none. */
+  readonly bravais?: BravaisType
+  /**
+   * Rows: the conventional vectors as whole-number combinations of the given ones. The usual choice: right-handed,
+   * a ≤ b ≤ c where the type leaves it open (a ≤ b in oC, op, oc), unique axis c (tetragonal, hexagonal, rhombohedral
+   * in the obverse setting) or b (monoclinic, β ≥ 90°), 120° between a and b of hexagonal ones. Beyond the dimension: rows of the unit matrix.
+   */
+  readonly conventionalFromPrimitive: Mat3
+  /** The same as Cartesian rows, in the orientation of the given ones. */
+  readonly conventional: Mat3
+  /** Of the conventional cell as it is, not idealised. In the plane `a`, `b`, `gamma` count, on a chain `a`. */
+  readonly cell: CellParameters
+  /** All rotations that map the lattice onto itself, on columns of fractions of the given vectors; identity first. */
+  readonly holohedry: readonly Mat3[]
+  /** By how far the vectors miss these rotations at the worst, a length. */
+  readonly misfit: number
+  /** The rotations within the tolerance asked for are no group, so the ones that fit worst were left out. */
+  readonly toleranceLowered: boolean
+}
+
+/** Tolerances are cut to this part of the shortest lattice vector: beyond it, any lattice fits any type. */
+const LARGEST_TOLERANCE = 0.05
+
+/** What rounding leaves of an exact symmetry, relative to the lengths compared. */
+const ROUNDING = 1e-9
+
+/** Two misfits this near to each other, relatively, are one and the same. */
+const SAME_MISFIT = 1e-6
+
+/**
+ * The Bravais type that vectors really have.
+ * @param primitive rows, Cartesian; beyond `dimension` they are unit normals.
+ * @param tolerance by how far a vector may miss its image, a length.
+ * @returns undefined for vectors that span nothing or are not finite.
+ */
+export function latticeType(
+  primitive: Mat3,
+  dimension: Dimension,
+  tolerance: number,
+): LatticeType | undefined {
+  if (!isLattice(primitive)) return undefined
+  // An obtuse superbase would not do: a symmetry of the lattice may need the entry ±2 in it and more.
+  const short = shortBasis(primitive, dimension)
+  const allowed = Math.min(tolerance, LARGEST_TOLERANCE * norm(short.basis[0]))
+  const { group, lowered } = metricGroup(short.basis, dimension, allowed)
+  // A metric averaged over 4/m has the full symmetry 4/mmm: what the tolerance cut off comes back here.
+  const ideal = symmetriseBasis(short.basis, group, dimension)
+  const full = metricGroup(ideal, dimension, ROUNDING * norm(ideal[dimension - 1])).group
+  const { bravais, axes } = conventionalCell(short.basis, full, dimension)
+  const conventionalFromPrimitive = multiply(axes, short.change)
+  const conventional = multiply(conventionalFromPrimitive, primitive)
+  const there = transpose(short.change)
+  const back = mapMatrix(inverse(there), Math.round)
+  return {
+    bravais,
+    conventionalFromPrimitive,
+    conventional,
+    cell: cellParameters(conventional),
+    holohedry: full.map(W => multiply(multiply(there, W), back)),
+    misfit: Math.max(...full.map(W => misfit(short.basis, W, dimension))),
+    toleranceLowered: lowered,
+  }
+}
+
+export const cellParameters = ([a, b, c]: Mat3): CellParameters => ({
+  a: norm(a),
+  b: norm(b),
+  c: norm(c),
+  alpha: angle(b, c),
+  beta: angle(a, c),
+  gamma: angle(a, b),
+})
+
+/**
+ * The basis nearest to a given one whose metric is exactly invariant under a group of rotations (on columns of
+ * fractions): the metric is averaged over them, the orientation kept, no rotation added.
+ */
+export function symmetriseBasis(basis: Mat3, rotations: readonly Mat3[], dimension: Dimension): Mat3 {
+  const metric = multiply(basis, transpose(basis))
+  let sum = mapMatrix(metric, () => 0)
+  for (const W of rotations) sum = addMatrices(sum, multiply(multiply(transpose(W), metric), W))
+  const mean = mapMatrix(sum, x => x / rotations.length)
+  // basis · S with S symmetric and S² = basis⁻¹ · mean · basis⁻ᵀ has this metric and turns nothing.
+  const toFractions = inverse(basis)
+  const strain = squareRoot(multiply(multiply(toFractions, mean), transpose(toFractions)))
+  const result = multiply(basis, strain)
+  return [0, 1, 2].map(i => (i < dimension ? result[i] : basis[i])) as unknown as Mat3
+}
+
+/** A symmetric root by Newton's steps in the form of Denman and Beavers (1976); near the unit matrix a few suffice. */
+function squareRoot(m: Mat3): Mat3 {
+  let root = m
+  let inverted = IDENTITY
+  for (let step = 0; step < 12; step++) {
+    const next = mapMatrix(addMatrices(root, inverse(inverted)), x => x / 2)
+    inverted = mapMatrix(addMatrices(inverted, inverse(root)), x => x / 2)
+    root = next
+  }
+  return root
+}
+
+const addMatrices = (m: Mat3, n: Mat3): Mat3 => [add(m[0], n[0]), add(m[1], n[1]), add(m[2], n[2])]
+
+/** Finite vectors that span a volume, as far as double numbers can tell. */
+export function isLattice(basis: Mat3): boolean {
+  if (!basis.flat().every(Number.isFinite)) return false
+  return Math.abs(determinant(basis)) > ROUNDING * norm(basis[0]) * norm(basis[1]) * norm(basis[2])
+}
+
+/** Combinations with entries up to ±`most` of the periodic vectors, shortest first; zero left out. */
+function shortVectors(basis: Mat3, dimension: Dimension, most: number): Vec3[] {
+  const range = Array.from({ length: 2 * most + 1 }, (_, i) => i - most)
+  const vectors = range.flatMap(i =>
+    (dimension > 1 ? range : [0]).flatMap(j => (dimension > 2 ? range : [0]).map((k): Vec3 => [i, j, k])),
+  )
+  return vectors
+    .filter(v => v.some(x => x !== 0))
+    .map(v => ({ v, length: norm(combine(v, basis)) }))
+    .sort((u, w) => u.length - w.length)
+    .map(({ v }) => v)
+}
+
+/** Matrices that keep the metric of a shortest basis within a tolerance, as many as are a group. */
+function metricGroup(
+  basis: Mat3,
+  dimension: Dimension,
+  tolerance: number,
+): { group: Mat3[]; lowered: boolean } {
+  const vectors = shortVectors(basis, dimension, 2).map(v => ({ v, length: norm(combine(v, basis)) }))
+  const images = [0, 1, 2].map(i =>
+    i < dimension
+      ? vectors.filter(({ length }) => Math.abs(length - norm(basis[i])) <= tolerance).map(({ v }) => v)
+      : [IDENTITY[i]],
+  )
+  let found: { W: Mat3; miss: number }[] = []
+  for (const u of images[0])
+    for (const v of images[1])
+      for (const w of images[2]) {
+        const W = transpose([u, v, w])
+        if (Math.abs(determinant(W)) !== 1) continue
+        const miss = misfit(basis, W, dimension)
+        if (miss <= tolerance) found.push({ W, miss })
+      }
+  found.sort((f, g) => f.miss - g.miss)
+  const all = found.length
+  while (!isGroup(found.map(({ W }) => W))) {
+    const worst = found.at(-1)!.miss
+    found = found.filter(({ miss }) => miss < worst * (1 - SAME_MISFIT))
+  }
+  const group = found.map(({ W }) => W)
+  const one = group.findIndex(isIdentity)
+  return { group: [IDENTITY, ...group.slice(0, one), ...group.slice(one + 1)], lowered: found.length < all }
+}
+
+const isIdentity = (W: Mat3): boolean => W.every((row, i) => row.every((x, j) => x === IDENTITY[i][j]))
+
+/**
+ * By how far the images of the basis vectors miss being a rotated basis, a length: differences of lengths, and of
+ * angles times the mean length of the two sides.
+ */
+function misfit(basis: Mat3, W: Mat3, dimension: Dimension): number {
+  const images = multiply(transpose(W), basis)
+  let worst = 0
+  for (let i = 0; i < dimension; i++) {
+    worst = Math.max(worst, Math.abs(norm(images[i]) - norm(basis[i])))
+    for (let j = 0; j < i; j++) {
+      const difference = Math.abs(dot(images[i], images[j]) - dot(basis[i], basis[j]))
+      const sides = [norm(basis[i]), norm(basis[j])]
+      worst = Math.max(worst, (difference * (sides[0] + sides[1])) / (2 * sides[0] * sides[1]))
+    }
+  }
+  return worst
+}
+
+function isGroup(matrices: readonly Mat3[]): boolean {
+  const known = new Set(matrices.map(String))
+  return matrices.every(m => matrices.every(n => known.has(String(multiply(m, n)))))
+}
+
+interface ConventionalCell {
+  readonly bravais?: BravaisType
+  /** Rows of whole numbers on the basis. */
+  readonly axes: Mat3
+}
+
+/** The conventional cell from the rotation axes of the holohedry, all in whole numbers on a shortest basis. */
+function conventionalCell(basis: Mat3, group: readonly Mat3[], dimension: Dimension): ConventionalCell {
+  if (dimension === 1) return { axes: IDENTITY }
+  if (dimension === 2) return planeCell(basis, group)
+  const along = (order: number) => axesOf(group, order, basis)
+  switch (group.length) {
+    case 48:
+      return cubic(basis, along(4))
+    case 24:
+      return { bravais: 'hP', axes: hexagonalAxes(basis, along(6)[0], along(2), group) }
+    case 16:
+      return tetragonal(basis, along(4)[0], along(2))
+    case 12:
+      return rhombohedral(basis, along(3)[0], along(2), group)
+    case 8:
+      return orthorhombic(basis, along(2))
+    case 4:
+      return monoclinic(basis, group)
+    default:
+      return { bravais: 'aP', axes: determinant(basis) > 0 ? IDENTITY : mapMatrix(IDENTITY, x => -x + 0) }
+  }
+}
+
+/** How many lattice points a cell holds. */
+const pointsIn = (axes: Mat3): number => Math.abs(determinant(axes))
+
+/** Turn the last axis round where the set is left-handed. */
+const rightHanded = (axes: Mat3, basis: Mat3): Mat3 =>
+  determinant(multiply(axes, basis)) > 0 ? axes : [axes[0], axes[1], negate(axes[2])]
+
+const negate = (v: Vec3): Vec3 => scale(v, -1)
+
+function cubic(basis: Mat3, fourfold: readonly Vec3[]): ConventionalCell {
+  const axes = rightHanded(fourfold as unknown as Mat3, basis)
+  const bravais = ({ 1: 'cP', 2: 'cI', 4: 'cF' } as const)[pointsIn(axes)]
+  return { bravais, axes }
+}
+
+function tetragonal(basis: Mat3, c: Vec3, twofold: readonly Vec3[]): ConventionalCell {
+  // The shorter pair of the two makes the smaller cell, which is P or I.
+  const [a, ...others] = perpendicular(twofold, c, basis)
+  const b = perpendicular(others, a, basis)[0]
+  const axes = rightHanded([a, b, c], basis)
+  return { bravais: pointsIn(axes) === 1 ? 'tP' : 'tI', axes }
+}
+
+/** Vectors at right angles to another one; order kept. The group's axes are meant: no angle near 90° is another. */
+const perpendicular = (vectors: readonly Vec3[], to: Vec3, basis: Mat3): Vec3[] =>
+  vectors.filter(v => Math.abs(angle(combine(v, basis), combine(to, basis)) - 90) < RIGHT_ANGLE_MARGIN)
+
+/** In degrees. Axes of one point group meet at 30°, 35.3° or more. */
+const RIGHT_ANGLE_MARGIN = 10
+
+function hexagonalAxes(basis: Mat3, c: Vec3, twofold: readonly Vec3[], group: readonly Mat3[]): Mat3 {
+  const a = perpendicular(twofold, c, basis)[0]
+  const threefold = group.find(W => determinant(W) === 1 && orderOf(W) === 3)!
+  const b = apply(threefold, a)
+  return rightHanded([a, b, c], basis)
+}
+
+function rhombohedral(
+  basis: Mat3,
+  c: Vec3,
+  twofold: readonly Vec3[],
+  group: readonly Mat3[],
+): ConventionalCell {
+  const [a, b, third] = hexagonalAxes(basis, c, twofold, group)
+  // Obverse: (2a + b + c)/3 is a lattice vector (International Tables for Crystallography, vol. A).
+  const obverse = add(add(scale(a, 2), b), third).every(x => x % 3 === 0)
+  return { bravais: 'hR', axes: obverse ? [a, b, third] : [negate(a), negate(b), third] }
+}
+
+function orthorhombic(basis: Mat3, twofold: readonly Vec3[]): ConventionalCell {
+  const axes = twofold as unknown as Mat3
+  const points = pointsIn(axes)
+  if (points === 1) return { bravais: 'oP', axes: rightHanded(axes, basis) }
+  if (points === 4) return { bravais: 'oF', axes: rightHanded(axes, basis) }
+  const halves = centringVector(axes)
+  const single = halves.findIndex(isWhole)
+  if (single < 0) return { bravais: 'oI', axes: rightHanded(axes, basis) }
+  const others = axes.filter((_, i) => i !== single)
+  return { bravais: 'oC', axes: rightHanded([others[0], others[1], axes[single]], basis) }
+}
+
+/** The lattice vector inside a doubly primitive cell, in fractions of its axes. */
+function centringVector(axes: Mat3): Vec3 {
+  const toAxes = inverse(axes)
+  return IDENTITY.map(e => combine(e, toAxes)).find(v => !v.every(isWhole))!
+}
+
+const isWhole = (x: number): boolean => Math.abs(x - Math.round(x)) < 0.25
+
+function monoclinic(basis: Mat3, group: readonly Mat3[]): ConventionalCell {
+  const b = axesOf(group, 2, basis)[0]
+  const turn = group.find(W => determinant(W) === 1 && orderOf(W) === 2)!
+  const across = shortVectors(basis, 3, 3).filter(v => apply(turn, v).every((x, i) => x === -v[i]))
+  const p = across[0]
+  const q = across.find(v => norm(cross(v, p)) > 0)!
+  if (pointsIn([p, b, q]) === 1) return { bravais: 'mP', axes: obtuse(basis, p, b, q) }
+  // The smallest cell in the plane may be centred on the face of p or in the body: another pair of edges is then C.
+  const edges = [p, q, add(p, q), subtract(p, q)]
+  const cells = edges
+    .flatMap(a => edges.map((c): Mat3 => [a, b, c]))
+    .filter(axes => pointsIn(axes) === 2 && isWhole(centringVector(axes)[2]))
+    .map(axes => ({ axes, size: norm(combine(axes[0], basis)) + norm(combine(axes[2], basis)) }))
+  const { axes } = cells.reduce((least, cell) => (cell.size < least.size ? cell : least))
+  return { bravais: 'mC', axes: obtuse(basis, ...axes) }
+}
+
+/** Right-handed with β ≥ 90°; the sign of the unique axis is free. */
+function obtuse(basis: Mat3, a: Vec3, b: Vec3, c: Vec3): Mat3 {
+  const turned = dot(combine(a, basis), combine(c, basis)) > 0 ? negate(c) : c
+  return determinant(multiply([a, b, turned], basis)) > 0 ? [a, b, turned] : [a, negate(b), turned]
+}
+
+function planeCell(basis: Mat3, group: readonly Mat3[]): ConventionalCell {
+  const [a, second] = sortedDistinct(group.filter(W => determinant(W) === -1).map(mirrorLine), basis)
+  const turned = (order: number) => apply(group.find(W => determinant(W) === 1 && orderOf(W) === order)!, a)
+  const normal = IDENTITY[2]
+  const rightHandedAbout = (u: Vec3, v: Vec3): boolean => determinant(multiply([u, v, normal], basis)) > 0
+  // Of the other hand: a right angle lets one vector be turned round, any other angle makes the two change places.
+  const rectangular = (u: Vec3, v: Vec3): Mat3 => [u, rightHandedAbout(u, v) ? v : negate(v), normal]
+  const oblique = (u: Vec3, v: Vec3): Mat3 => (rightHandedAbout(u, v) ? [u, v, normal] : [v, u, normal])
+  switch (group.length) {
+    case 12:
+      return { bravais: 'hp', axes: oblique(a, turned(3)) }
+    case 8:
+      return { bravais: 'tp', axes: rectangular(a, turned(4)) }
+    case 4: {
+      const axes = rectangular(a, second)
+      return { bravais: pointsIn(axes) === 1 ? 'op' : 'oc', axes }
+    }
+    default:
+      return { bravais: 'mp', axes: oblique(IDENTITY[0], IDENTITY[1]) }
+  }
+}
+
+/** The line in the plane that a reflection leaves alone. */
+function mirrorLine(W: Mat3): Vec3 {
+  const row = [0, 1].map(i => subtract(W[i], IDENTITY[i])).find(r => norm(r) > 0)!
+  return lowestTerms([-row[1], row[0], 0])
+}
+
+/** Axes of the proper rotations of one order, each once, the shortest lattice vectors along them first. */
+function axesOf(group: readonly Mat3[], order: number, basis: Mat3): Vec3[] {
+  const rotations = group.filter(W => determinant(W) === 1 && orderOf(W) === order)
+  return sortedDistinct(rotations.map(rotationAxis), basis)
+}
+
+function sortedDistinct(vectors: readonly Vec3[], basis: Mat3): Vec3[] {
+  const distinct = new Map(vectors.map(v => [String(v), v]))
+  const length = (v: Vec3) => norm(combine(v, basis))
+  return [...distinct.values()].sort((u, v) => length(u) - length(v))
+}
+
+/** Order of a proper rotation in whole numbers, from its trace 1 + 2 cos φ. */
+const orderOf = (W: Mat3): number => ORDERS[W[0][0] + W[1][1] + W[2][2] + 1]
+const ORDERS = [2, 3, 4, 6, 1]
+
+/** The shortest whole vector along the axis of a proper rotation other than the identity. */
+function rotationAxis(W: Mat3): Vec3 {
+  const rows = W.map((row, i) => subtract(row, IDENTITY[i]))
+  const pairs = [cross(rows[0], rows[1]), cross(rows[0], rows[2]), cross(rows[1], rows[2])]
+  return lowestTerms(pairs.find(v => norm(v) > 0)!)
+}
+
+/** Without a common factor, the first entry that is not zero positive. */
+function lowestTerms(v: Vec3): Vec3 {
+  const common = v.reduce(gcd) * Math.sign(v.find(x => x !== 0)!)
+  return v.map(x => (x === 0 ? 0 : x / common)) as unknown as Vec3
+}
+
+const gcd = (p: number, q: number): number => (q === 0 ? Math.abs(p) : gcd(q, p % q))
