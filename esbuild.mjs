@@ -54,7 +54,7 @@ const builds = [
 
 rmSync(dist, { recursive: true, force: true })
 mkdirSync(dist, { recursive: true })
-const results = await Promise.all(builds.map(options => build({ ...options, outdir: dist })))
+const results = await Promise.all(builds.map(options => build({ ...present(options), outdir: dist })))
 
 const wasm = join(root, 'node_modules', '@spglib', 'moyo-wasm', 'moyo_wasm_bg.wasm')
 copyFileSync(wasm, join(dist, 'moyo_wasm_bg.wasm'))
@@ -62,6 +62,13 @@ writeFileSync(
   join(dist, 'THIRD-PARTY-NOTICES.txt'),
   notices(results.flatMap(({ metafile }) => Object.keys(metafile.inputs))),
 )
+
+/** Without the entries that are not there, which are named on stderr. */
+function present(options) {
+  const entries = Object.entries(options.entryPoints)
+  for (const [, file] of entries) if (!existsSync(join(root, file))) console.error(`left out: ${file}`)
+  return { ...options, entryPoints: Object.fromEntries(entries.filter(([, file]) => existsSync(join(root, file)))) }
+}
 
 /** The licences of all packages that a bundle holds, as their terms ask. */
 function notices(inputs) {
