@@ -99,7 +99,11 @@ export interface PointEntry {
   /** The whole mapping entry with its line break: what to delete to remove the point. */
   readonly item: Span
   readonly coordinates?: VectorValue
-  readonly between?: { readonly at: Span; readonly ends: readonly [PathLabel, PathLabel]; readonly fraction?: NumberValue }
+  readonly between?: {
+    readonly at: Span
+    readonly ends: readonly [PathLabel, PathLabel]
+    readonly fraction?: NumberValue
+  }
 }
 
 export interface PathLabel {
