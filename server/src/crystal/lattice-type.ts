@@ -3,6 +3,7 @@
  * and its conventional cell. Geometry only: no symmetry library is needed.
  */
 import type { BravaisType } from './bravais.ts'
+import type { CellParameters } from './cell.ts'
 import { type Dimension, shortBasis } from './reduction.ts'
 import {
   add,
@@ -23,16 +24,6 @@ import {
   transpose,
   type Vec3,
 } from './vector.ts'
-
-export interface CellParameters {
-  readonly a: number
-  readonly b: number
-  readonly c: number
-  /** In degrees. */
-  readonly alpha: number
-  readonly beta: number
-  readonly gamma: number
-}
 
 export interface LatticeType {
   /** One of the 14 types (`oC`, `mC` for the one-face-centred ones) or the 5 of the plane; a chain has none. */

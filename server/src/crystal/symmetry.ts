@@ -28,7 +28,7 @@ import {
   type Vec3,
 } from './vector.ts'
 
-export type { CellParameters, LatticeType } from './lattice-type.ts'
+export type { LatticeType } from './lattice-type.ts'
 export { latticeType, symmetriseBasis } from './lattice-type.ts'
 export type { Operation } from './symmetry-library.ts'
 
