@@ -263,8 +263,9 @@ export class Crystal {
     return this.#book()
   }
 
-  bookMatch(book: Exclude<LatticeDocument['labels'], 'none'>): BookMatch | undefined {
-    const { lattice, type } = this
+  /** A book carried into this lattice, or into another one of the same crystal. */
+  bookMatch(book: Exclude<LatticeDocument['labels'], 'none'>, lattice = this.lattice): BookMatch | undefined {
+    const type = lattice && this.typeOf(lattice.primitive, lattice.dimension)
     if (!lattice || !type) return undefined
     const pointGroup = this.symmetry?.pointGroup
     return this.workshop.matches.get(

@@ -51,6 +51,7 @@ function fromType(document: LatticeDocument): LatticeBuild {
   const given = Object.fromEntries(Object.entries(block.parameters).map(([name, number]) => [name, number!.value]))
   const completed = completeCell(type, given)
   if ('missing' in completed) return { dimension, missing: completed.missing }
+  if ('miss' in completed) return { dimension, fault: { fault: 'angles', miss: completed.miss } }
   const built = latticeFromCell(completed.cell, centring, dimension)
   const { contradictions } = completed
   if ('fault' in built) return { dimension, fault: built, contradictions, cell: completed }
