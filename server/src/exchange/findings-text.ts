@@ -1,0 +1,94 @@
+/** Findings for people at a terminal. */
+import type { Colors } from 'picocolors/types'
+import type { DocumentFinding, Snapshot } from '../analysis.ts'
+import type { Severity } from '../format/model.ts'
+import { lineEnd, lineStart } from '../format/text.ts'
+import { count } from '../meaning/wording.ts'
+import type { CheckedFile, Tally } from './findings-json.ts'
+import { displayWidth, harmless } from './layout.ts'
+import { Positions } from './positions.ts'
+
+export type Paint = Pick<Colors, 'bold' | 'dim' | 'red' | 'yellow' | 'cyan' | 'green'>
+
+/** The rest of a line longer than this is left out around the marked part. */
+const LONGEST_EXCERPT = 110
+/** How much of a long line is shown before the marked part. */
+const LEAD = 30
+
+const tint = (paint: Paint, severity: Severity) =>
+  ({ error: paint.red, warning: paint.yellow, info: paint.cyan })[severity]
+
+/**
+ * The findings of one file, each a block of its own:
+ *
+ *     draft.lattice.yaml:5:6  warning  What is wrong  (rule-id)
+ *         Q: [0.75, 0, 0]
+ *            ~~~~~~~~~~~~
+ *       see 3:1  what else is involved
+ *       fix: what can be done about it
+ */
+export function findingsText({ file, snapshot, findings }: CheckedFile, paint: Paint): string {
+  const positions = new Positions(snapshot)
+  return findings.map(finding => `${block(file, snapshot, positions, finding, paint)}\n\n`).join('')
+}
+
+function block(
+  file: string,
+  snapshot: Snapshot,
+  positions: Positions,
+  finding: DocumentFinding,
+  paint: Paint,
+): string {
+  const { line, column } = positions.at(finding.at[0])
+  const colour = tint(paint, finding.severity)
+  const lines = [
+    `${paint.bold(`${harmless(file)}:${line}:${column}`)}  ${colour(finding.severity)}  ${harmless(finding.message)}  ${paint.dim(`(${finding.rule})`)}`,
+  ]
+  const { before, marked, after } = excerpt(snapshot, finding.at)
+  lines.push(`    ${before}${marked}${after}`)
+  lines.push(
+    `    ${' '.repeat(displayWidth(before))}${colour('~'.repeat(Math.max(1, displayWidth(marked))))}`,
+  )
+  for (const { at, message } of finding.related ?? []) {
+    const place = positions.at(at[0])
+    lines.push(`  ${paint.dim(`see ${place.line}:${place.column}`)}  ${harmless(message)}`)
+  }
+  for (const { title, safe } of finding.fixes ?? [])
+    lines.push(`  ${paint.green(safe ? 'fix:' : 'fix, to be judged:')} ${harmless(title)}`)
+  return lines.join('\n')
+}
+
+/** The line that a span begins in, with the part of it that the span covers. */
+function excerpt(
+  { text }: Snapshot,
+  [start, end]: DocumentFinding['at'],
+): Record<'before' | 'marked' | 'after', string> {
+  const stop = lineEnd(text, start)
+  const from = Math.min(start, stop)
+  const to = Math.min(end, stop)
+  let before = harmless(text.slice(lineStart(text, start), from))
+  let marked = harmless(text.slice(from, to))
+  let after = harmless(text.slice(to, stop))
+  if (displayWidth(before + marked + after) > LONGEST_EXCERPT) {
+    if (displayWidth(before) > LEAD) before = `…${[...before].slice(-LEAD).join('')}`
+    marked = cut(marked, LONGEST_EXCERPT - LEAD)
+    after = cut(after, Math.max(0, LONGEST_EXCERPT - displayWidth(before + marked)))
+  }
+  return { before, marked, after }
+}
+
+const cut = (text: string, width: number): string =>
+  displayWidth(text) <= width ? text : `${[...text].slice(0, width).join('')}…`
+
+/** `3 findings in 2 files: 1 error, 2 warnings.` */
+export function closingLine({ errors, warnings, infos }: Tally, files: number, paint: Paint): string {
+  const all = errors + warnings + infos
+  const where = count(files, 'file')
+  if (all === 0) return `${paint.green('No findings')} in ${where}.`
+  const parts = [
+    errors > 0 && paint.red(count(errors, 'error')),
+    warnings > 0 && paint.yellow(count(warnings, 'warning')),
+    infos > 0 && paint.cyan(`${infos} for information`),
+  ]
+  return `${count(all, 'finding')} in ${where}: ${parts.filter(Boolean).join(', ')}.`
+}
