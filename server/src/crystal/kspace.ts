@@ -252,8 +252,8 @@ export function symmetryLines(holohedry: readonly Mat3[], zone: Zone): SymmetryL
       const name = nameOfLine(twelfths, along, holohedry, dimension)
       if (known.has(name)) continue
       known.add(name)
-      const from = fold(zone, scale(twelfths, 1 / TWELFTHS)).fraction
-      const to = add(from, scale(along, 1 / TWELFTHS))
+      const { fraction: from, shift } = fold(zone, scale(twelfths, 1 / TWELFTHS))
+      const to = subtract(scale(add(twelfths, along), 1 / TWELFTHS), shift)
       const order = little.filter(R => isZero(subtract(apply(R, direction), direction), 0)).length
       lines.push({ from, to, order, leaves: leavesAt(zone, from, to) })
     }

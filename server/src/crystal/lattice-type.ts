@@ -367,8 +367,15 @@ function sortedDistinct(vectors: readonly Vec3[], basis: Mat3): Vec3[] {
 }
 
 /** Order of a proper rotation in whole numbers, from its trace 1 + 2 cos φ. */
-const orderOf = (W: Mat3): number => ORDERS[W[0][0] + W[1][1] + W[2][2] + 1]
+export const orderOf = (W: Mat3): number => ORDERS[W[0][0] + W[1][1] + W[2][2] + 1]
 const ORDERS = [2, 3, 4, 6, 1]
+
+/** The shortest lattice vectors along all rotation axes of a group, of either sign. */
+export function rotationAxes(group: readonly Mat3[]): Vec3[] {
+  const proper = group.filter(W => determinant(W) === 1 && orderOf(W) > 1).map(rotationAxis)
+  const distinct = new Map(proper.map(v => [String(v), v]))
+  return [...distinct.values()].flatMap(v => [v, negate(v)])
+}
 
 /** The shortest whole vector along the axis of a proper rotation other than the identity. */
 function rotationAxis(W: Mat3): Vec3 {

@@ -5,6 +5,7 @@
 import type { BravaisType } from './bravais.ts'
 import { isLattice, latticeType } from './lattice-type.ts'
 import { type Dimension, reduce } from './reduction.ts'
+import { bravaisOf, compactSymbol } from './space-group.ts'
 import { analyseCell, type LibraryAnswer, type Operation, spaceGroupType } from './symmetry-library.ts'
 import {
   type AtomicCell,
@@ -30,6 +31,8 @@ import {
 
 export type { LatticeType } from './lattice-type.ts'
 export { latticeType, symmetriseBasis } from './lattice-type.ts'
+export type { NamedSpaceGroup } from './space-group.ts'
+export { groupOnLattice, namedSpaceGroup, spaceGroupSymbols } from './space-group.ts'
 export type { Operation } from './symmetry-library.ts'
 
 export interface SymmetryInput {
@@ -281,11 +284,6 @@ function describe(
 
 /** A whole number without the minus of −0. */
 const whole = (x: number): number => Math.round(x) + 0
-
-/** `F m -3 m` → `Fm-3m`. */
-export const compactSymbol = (symbol: string): string => symbol.replaceAll(' ', '')
-
-const bravaisOf = (lattice: string): BravaisType => lattice.replace('S', 'C') as BravaisType
 
 const isIdentity = (W: Mat3): boolean => W.every((row, i) => row.every((x, j) => x === (i === j ? 1 : 0)))
 
