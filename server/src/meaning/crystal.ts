@@ -7,6 +7,7 @@ import { matchBook } from '../books/match.ts'
 import type { BravaisType } from '../crystal/bravais.ts'
 import { kRotations } from '../crystal/kspace.ts'
 import type { Dimension, Lattice } from '../crystal/lattice.ts'
+import { emptySlab } from '../crystal/neighbours.ts'
 import { type LatticeType, latticeType, type Symmetry } from '../crystal/symmetry.ts'
 import { IN_ANGSTROM, type Unit } from '../crystal/units.ts'
 import { add, combine, distance, inverse, type Mat3, scale, subtract, type Vec3 } from '../crystal/vector.ts'
@@ -149,6 +150,21 @@ export class Crystal {
     return this.atoms.length === (this.document.atoms?.items.length ?? 0)
   }
 
+  /**
+   * The widest slab without atoms between planes of the other two primitive vectors, for each of the three, in the
+   * file's unit: a vacuum across b₃ is the third. undefined without atoms and along a non-periodic direction.
+   */
+  readonly #emptySlabs = lazy((): readonly (number | undefined)[] => {
+    const { lattice } = this
+    if (!lattice) return [undefined, undefined, undefined]
+    const { primitive: basis, dimension } = lattice
+    const positions = this.atoms.map(atom => atom.fraction)
+    return ([0, 1, 2] as const).map(i => (i < dimension ? emptySlab({ basis, dimension, positions }, i) : undefined))
+  })
+  get emptySlabs(): readonly (number | undefined)[] {
+    return this.#emptySlabs()
+  }
+
   /** Cartesian place of stated atom coordinates; the lattice must be there. */
   atomCartesian(stated: Vec3): Vec3 {
     return combine(stated, this.atomAxes)
@@ -203,14 +219,17 @@ export class Crystal {
     return combine(fraction, this.lattice!.reciprocal)
   }
 
-  readonly #outcome = lazy((): SymmetryOutcome => {
+  readonly #outcome = lazy((): SymmetryOutcome =>
+    this.atomsComplete ? this.searchWith(this.atoms) : { state: 'failed', reason: 'an atom could not be read' },
+  )
+
+  /** The search for the symmetry of this lattice with the atoms as they are, or as another reading has them. */
+  searchWith(atoms: readonly Pick<PlacedAtom, 'fraction' | 'kind'>[], tolerance = this.tolerance): SymmetryOutcome {
     const { lattice } = this
     if (!lattice) return { state: 'failed', reason: 'the lattice could not be built' }
-    if (!this.atomsComplete) return { state: 'failed', reason: 'an atom could not be read' }
-    const { atoms } = this
     const numbers = new Float64Array(10 + 4 * atoms.length)
     numbers.set(lattice.primitive.flat())
-    numbers[9] = this.tolerance
+    numbers[9] = tolerance
     atoms.forEach((atom, i) => {
       numbers.set(atom.fraction, 10 + 4 * i)
       numbers[13 + 4 * i] = atom.kind
@@ -221,11 +240,12 @@ export class Crystal {
         primitive: lattice.primitive,
         positions: atoms.map(atom => atom.fraction),
         species: atoms.map(atom => atom.kind),
-        tolerance: this.tolerance,
+        tolerance,
       }),
     )
     return job.outcome
-  })
+  }
+
   /** Symmetry of lattice and atoms; of the lattice alone where there are no atoms. */
   get symmetry(): Symmetry | undefined {
     const outcome = this.#outcome()
