@@ -18,6 +18,7 @@ import {
   add,
   apply,
   combine,
+  determinant,
   inverse,
   type Mat3,
   mapMatrix,
@@ -205,7 +206,11 @@ function embed({ dimension, basis, positions, species }: PrimitiveCell): Embedde
   const longest = Math.max(...reduced.basis.slice(0, dimension).map(norm))
   const extent = Math.max(...[0, 1, 2].slice(dimension).map(i => spread(positions.map(x => x[i]))), 0)
   const period = CLEARANCE * (longest + extent)
-  const change = reduced.change.map((row, i) => (i < dimension ? row : scale(row, period))) as unknown as Mat3
+  // A left-handed cell would come back as the mirror image: quartz of the one hand as that of the other.
+  const hand = Math.sign(determinant(reduced.basis))
+  const change = reduced.change.map((row, i) =>
+    scale(row, i < dimension ? hand : hand * period),
+  ) as unknown as Mat3
   const toReduced = inverse(change)
   const kinds = [...new Set(species)]
   return {
