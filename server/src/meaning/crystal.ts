@@ -171,17 +171,19 @@ export class Crystal {
   }
 
   /** The axes that the file's atom coordinates refer to, one a row. */
-  readonly #atomAxes = lazy((): Mat3 => {
+  readonly #atomAxes = lazy((): Mat3 => this.atomAxesOf(this.document.frames.atoms))
+  get atomAxes(): Mat3 {
+    return this.#atomAxes()
+  }
+
+  /** The axes that atom coordinates refer to in a frame; the lattice must be there. */
+  atomAxesOf(frame: LatticeDocument['frames']['atoms']): Mat3 {
     const lattice = this.lattice!
-    const frame = this.document.frames.atoms
     if (frame === 'cartesian') return CARTESIAN
     const rows = frame === 'primitive' ? lattice.primitive : lattice.conventional
     const height = this.document.lattice?.height?.value
     if (lattice.dimension !== 2 || height === undefined) return rows
     return [rows[0], rows[1], scale(rows[2], height)]
-  })
-  get atomAxes(): Mat3 {
-    return this.#atomAxes()
   }
 
   /** The axes that the file's k-point coordinates refer to, one a row; undefined where the frame needs a missing `a`. */
