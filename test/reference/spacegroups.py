@@ -1,7 +1,7 @@
 """A second opinion on space groups: spglib of Debian's package python3-spglib. JSON on standard input and output.
 
 {"find": [{"lattice", "positions", "numbers", "tolerance"}, ...]} gives [{"number", "pointgroup", "operations"}, ...].
-{"make": seed} gives, for each of the 530 tabulated settings, a crystal with three atoms on general positions:
+{"make": seed} gives, for each of the 530 tabulated settings, a crystal with two atoms on general positions:
 [{"hall", "number", "symbol", "lattice", "positions", "numbers"}, ...].
 """
 import json
@@ -52,7 +52,7 @@ def make(seed):
         rotations = operations["rotations"].tolist()
         translations = operations["translations"].tolist()
         positions, numbers = [], []
-        for number in (1, 2, 3):
+        for number in (1, 2):
             x = [rng.random() for _ in range(3)]
             for w, t in zip(rotations, translations):
                 positions.append([sum(w[i][j] * x[j] for j in range(3)) + t[i] for i in range(3)])

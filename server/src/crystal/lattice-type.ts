@@ -40,7 +40,7 @@ export interface LatticeType {
   readonly cell: CellParameters
   /** All rotations that map the lattice onto itself, on columns of fractions of the given vectors; identity first. */
   readonly holohedry: readonly Mat3[]
-  /** By how far the vectors miss these rotations at the worst, a length. */
+  /** By how far the vectors miss the rotations within the tolerance at the worst, a length. */
   readonly misfit: number
   /** The rotations within the tolerance asked for are no group, so the ones that fit worst were left out. */
   readonly toleranceLowered: boolean
@@ -70,11 +70,10 @@ export function latticeType(
   // An obtuse superbase would not do: a symmetry of the lattice may need the entry ±2 in it and more.
   const short = shortBasis(primitive, dimension)
   const allowed = Math.min(tolerance, LARGEST_TOLERANCE * norm(short.basis[0]))
-  const { group, lowered } = metricGroup(short.basis, dimension, allowed)
-  // A metric averaged over 4/m has the full symmetry 4/mmm: what the tolerance cut off comes back here.
-  const ideal = symmetriseBasis(short.basis, group, dimension)
-  const full = metricGroup(ideal, dimension, ROUNDING * norm(ideal[dimension - 1])).group
-  const { bravais, axes } = conventionalCell(short.basis, full, dimension)
+  const rounding = ROUNDING * norm(short.basis[dimension - 1])
+  const within = metricGroup(short.basis, dimension, Math.max(allowed, rounding))
+  const group = within.misfit > rounding ? fullGroup(short.basis, within.group, dimension) : within.group
+  const { bravais, axes } = conventionalCell(short.basis, group, dimension)
   const conventionalFromPrimitive = multiply(axes, short.change)
   const conventional = multiply(conventionalFromPrimitive, primitive)
   const there = transpose(short.change)
@@ -84,9 +83,9 @@ export function latticeType(
     conventionalFromPrimitive,
     conventional,
     cell: cellParameters(conventional),
-    holohedry: full.map(W => multiply(multiply(there, W), back)),
-    misfit: Math.max(...full.map(W => misfit(short.basis, W, dimension))),
-    toleranceLowered: lowered,
+    holohedry: group.map(W => multiply(multiply(there, W), back)),
+    misfit: within.misfit,
+    toleranceLowered: within.lowered,
   }
 }
 
@@ -129,80 +128,114 @@ function squareRoot(m: Mat3): Mat3 {
 
 const addMatrices = (m: Mat3, n: Mat3): Mat3 => [add(m[0], n[0]), add(m[1], n[1]), add(m[2], n[2])]
 
+/** A metric averaged over a group such as 4/m has the full symmetry, 4/mmm: what the tolerance cut off comes back. */
+function fullGroup(basis: Mat3, group: readonly Mat3[], dimension: Dimension): Mat3[] {
+  const ideal = symmetriseBasis(basis, group, dimension)
+  return metricGroup(ideal, dimension, ROUNDING * norm(ideal[dimension - 1])).group
+}
+
 /** Finite vectors that span a volume, as far as double numbers can tell. */
 export function isLattice(basis: Mat3): boolean {
   if (!basis.flat().every(Number.isFinite)) return false
   return Math.abs(determinant(basis)) > ROUNDING * norm(basis[0]) * norm(basis[1]) * norm(basis[2])
 }
 
-/** Combinations with entries up to ±`most` of the periodic vectors, shortest first; zero left out. */
-function shortVectors(basis: Mat3, dimension: Dimension, most: number): Vec3[] {
-  const range = Array.from({ length: 2 * most + 1 }, (_, i) => i - most)
-  const vectors = range.flatMap(i =>
-    (dimension > 1 ? range : [0]).flatMap(j => (dimension > 2 ? range : [0]).map((k): Vec3 => [i, j, k])),
-  )
-  return vectors
-    .filter(v => v.some(x => x !== 0))
-    .map(v => ({ v, length: norm(combine(v, basis)) }))
-    .sort((u, w) => u.length - w.length)
-    .map(({ v }) => v)
+/** A lattice vector by its whole coefficients. */
+interface Combination {
+  readonly v: Vec3
+  readonly cartesian: Vec3
+  readonly length: number
 }
 
-/** Matrices that keep the metric of a shortest basis within a tolerance, as many as are a group. */
+/** Combinations of the periodic vectors with entries up to ±`most`; zero left out. */
+function combinations(basis: Mat3, dimension: Dimension, most: number): Combination[] {
+  const range = Array.from({ length: 2 * most + 1 }, (_, i) => i - most)
+  const found: Combination[] = []
+  for (const i of range)
+    for (const j of dimension > 1 ? range : [0])
+      for (const k of dimension > 2 ? range : [0]) {
+        if (i === 0 && j === 0 && k === 0) continue
+        const v: Vec3 = [i, j, k]
+        const cartesian = combine(v, basis)
+        found.push({ v, cartesian, length: norm(cartesian) })
+      }
+  return found
+}
+
+/** A lattice vector as a candidate image of a basis vector, and by how far its length misses that vector's. */
+interface Image {
+  readonly v: Vec3
+  readonly cartesian: Vec3
+  readonly miss: number
+}
+
+/**
+ * Matrices that keep the metric of a shortest basis within a tolerance, as many as are a group, identity first. What
+ * misses is measured as a length: differences of lengths, and of angles times the mean length of the two sides.
+ */
 function metricGroup(
   basis: Mat3,
   dimension: Dimension,
   tolerance: number,
-): { group: Mat3[]; lowered: boolean } {
-  const vectors = shortVectors(basis, dimension, 2).map(v => ({ v, length: norm(combine(v, basis)) }))
-  const images = [0, 1, 2].map(i =>
-    i < dimension
-      ? vectors.filter(({ length }) => Math.abs(length - norm(basis[i])) <= tolerance).map(({ v }) => v)
-      : [IDENTITY[i]],
-  )
+): { group: Mat3[]; lowered: boolean; misfit: number } {
+  const lengths = basis.map(norm)
+  const products = multiply(basis, transpose(basis))
+  const vectors = combinations(basis, dimension, 2)
+  const imagesOf = (i: number): Image[] => {
+    if (i >= dimension) return [{ v: IDENTITY[i], cartesian: basis[i], miss: 0 }]
+    const images: Image[] = []
+    for (const { v, cartesian, length } of vectors) {
+      const miss = Math.abs(length - lengths[i])
+      if (miss <= tolerance) images.push({ v, cartesian, miss })
+    }
+    return images
+  }
+  const angleMiss = (u: Image, i: number, v: Image, j: number): number =>
+    (Math.abs(dot(u.cartesian, v.cartesian) - products[i][j]) * (lengths[i] + lengths[j])) /
+    (2 * lengths[i] * lengths[j])
+
+  const [us, vs, ws] = [imagesOf(0), imagesOf(1), imagesOf(2)]
   let found: { W: Mat3; miss: number }[] = []
-  for (const u of images[0])
-    for (const v of images[1])
-      for (const w of images[2]) {
-        const W = transpose([u, v, w])
-        if (Math.abs(determinant(W)) !== 1) continue
-        const miss = misfit(basis, W, dimension)
-        if (miss <= tolerance) found.push({ W, miss })
+  for (const u of us)
+    for (const v of vs) {
+      const plane = Math.max(u.miss, v.miss, angleMiss(u, 0, v, 1))
+      if (plane > tolerance) continue
+      for (const w of ws) {
+        const miss = Math.max(plane, w.miss, angleMiss(u, 0, w, 2), angleMiss(v, 1, w, 2))
+        if (miss > tolerance || Math.abs(determinant([u.v, v.v, w.v])) !== 1) continue
+        found.push({ W: transpose([u.v, v.v, w.v]), miss })
       }
-  found.sort((f, g) => f.miss - g.miss)
+    }
   const all = found.length
   while (!isGroup(found.map(({ W }) => W))) {
-    const worst = found.at(-1)!.miss
+    const worst = Math.max(...found.map(({ miss }) => miss))
     found = found.filter(({ miss }) => miss < worst * (1 - SAME_MISFIT))
   }
   const group = found.map(({ W }) => W)
-  const one = group.findIndex(isIdentity)
-  return { group: [IDENTITY, ...group.slice(0, one), ...group.slice(one + 1)], lowered: found.length < all }
+  return {
+    group: [...group.filter(isIdentity), ...group.filter(W => !isIdentity(W))],
+    lowered: found.length < all,
+    misfit: Math.max(...found.map(({ miss }) => miss)),
+  }
 }
 
 const isIdentity = (W: Mat3): boolean => W.every((row, i) => row.every((x, j) => x === IDENTITY[i][j]))
 
-/**
- * By how far the images of the basis vectors miss being a rotated basis, a length: differences of lengths, and of
- * angles times the mean length of the two sides.
- */
-function misfit(basis: Mat3, W: Mat3, dimension: Dimension): number {
-  const images = multiply(transpose(W), basis)
-  let worst = 0
-  for (let i = 0; i < dimension; i++) {
-    worst = Math.max(worst, Math.abs(norm(images[i]) - norm(basis[i])))
-    for (let j = 0; j < i; j++) {
-      const difference = Math.abs(dot(images[i], images[j]) - dot(basis[i], basis[j]))
-      const sides = [norm(basis[i]), norm(basis[j])]
-      worst = Math.max(worst, (difference * (sides[0] + sides[1])) / (2 * sides[0] * sides[1]))
-    }
-  }
-  return worst
-}
+/** Entries of a matrix and of a product of two are at most 2 and 12 in size: nine of them make one exact number. */
+const DIGIT = 25
 
 function isGroup(matrices: readonly Mat3[]): boolean {
-  const known = new Set(matrices.map(String))
-  return matrices.every(m => matrices.every(n => known.has(String(multiply(m, n)))))
+  const flat = matrices.map(m => m.flat())
+  const known = new Set(flat.map(m => m.reduce((key, x) => key * DIGIT + x, 0)))
+  for (const m of flat)
+    for (const n of flat) {
+      let key = 0
+      for (let i = 0; i < 9; i += 3)
+        for (let j = 0; j < 3; j++)
+          key = key * DIGIT + m[i] * n[j] + m[i + 1] * n[j + 3] + m[i + 2] * n[j + 6]
+      if (!known.has(key)) return false
+    }
+  return true
 }
 
 interface ConventionalCell {
@@ -306,7 +339,10 @@ const isWhole = (x: number): boolean => Math.abs(x - Math.round(x)) < 0.25
 function monoclinic(basis: Mat3, group: readonly Mat3[]): ConventionalCell {
   const b = axesOf(group, 2, basis)[0]
   const turn = group.find(W => determinant(W) === 1 && orderOf(W) === 2)!
-  const across = shortVectors(basis, 3, 3).filter(v => apply(turn, v).every((x, i) => x === -v[i]))
+  const across = combinations(basis, 3, 3)
+    .filter(({ v }) => apply(turn, v).every((x, i) => x === -v[i]))
+    .sort((u, w) => u.length - w.length)
+    .map(({ v }) => v)
   const p = across[0]
   const q = across.find(v => norm(cross(v, p)) > 0)!
   if (pointsIn([p, b, q]) === 1) return { bravais: 'mP', axes: obtuse(basis, p, b, q) }
