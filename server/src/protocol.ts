@@ -31,3 +31,84 @@ export interface RecommendedPathParams {
 }
 /** The edit that writes the label book's own path into the document at the position; null where there is none. */
 export const RECOMMENDED_PATH = 'braggline/recommendedPath'
+
+export type Triple = readonly [number, number, number]
+export interface TextRange {
+  readonly start: { readonly line: number; readonly character: number }
+  readonly end: { readonly line: number; readonly character: number }
+}
+export type SceneSeverity = 'error' | 'warning' | 'info'
+
+/** A label as it is set: `X₁` has base `X` and subscript `1`. */
+export interface SceneName {
+  readonly base: string
+  readonly sub: string
+}
+
+export interface ScenePoint {
+  readonly label: string
+  readonly name: SceneName
+  readonly origin: 'file' | 'book'
+  /** Cartesian, inverse length with the 2π, as all vectors of a scene. */
+  readonly k: Triple
+  readonly place: 'inside' | 'boundary' | 'outside'
+  /** Of a point outside: its equivalent in the first zone. */
+  readonly folded?: Triple
+  /** It is on the path, or the file defines it: it is always shown. */
+  readonly named: boolean
+  /** Name and value of what the hover in the text says too. */
+  readonly facts: readonly (readonly [string, string])[]
+  readonly severity?: SceneSeverity
+  /** Where it stands in the text: its definition, else its first mention in the path. */
+  readonly range?: TextRange
+}
+
+export interface SceneSegment {
+  readonly piece: number
+  readonly from: { readonly label: string; readonly k: Triple }
+  readonly to: { readonly label: string; readonly k: Triple }
+  readonly length: number
+  readonly severity?: SceneSeverity
+  /** From the first label to the second; absent in a recommended path. */
+  readonly range?: TextRange
+}
+
+export interface SceneSolid {
+  readonly vertices: readonly Triple[]
+  readonly edges: readonly (readonly [number, number])[]
+  /** Vertices of each face, counter-clockwise as seen from outside. Empty in two and one dimensions. */
+  readonly faces: readonly (readonly number[])[]
+}
+
+export interface SceneMesh {
+  readonly name?: string
+  /** x, y, z of each irreducible point in turn, folded into the first zone. */
+  readonly points: readonly number[]
+  /** Parts of the whole, one a point. */
+  readonly weights: readonly number[]
+  readonly total: number
+}
+
+/** What the zone view and the figures draw: finished geometry of one document. */
+export interface Scene {
+  readonly document: number
+  readonly title: string
+  readonly dimension: 1 | 2 | 3
+  /** What inverse lengths are in, as it is written. */
+  readonly unit: string
+  readonly zone: SceneSolid & {
+    readonly solid: string
+    readonly inradius: number
+    readonly circumradius: number
+  }
+  /** b₁ b₂ b₃, as many as there are dimensions. */
+  readonly reciprocal: readonly Triple[]
+  readonly points: readonly ScenePoint[]
+  readonly segments: readonly SceneSegment[]
+  readonly wedge?: SceneSolid
+  readonly meshes: readonly SceneMesh[]
+  /** Reciprocal-lattice vectors whose zones touch the first one (shell 1), and those that touch these (shell 2). */
+  readonly neighbours: { readonly first: readonly Triple[]; readonly second: readonly Triple[] }
+  /** The zone, its points and its path in words. */
+  readonly words: readonly string[]
+}

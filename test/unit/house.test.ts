@@ -12,7 +12,7 @@ const MAY_USE: Record<string, readonly string[]> = {
   'server/src/format': ['server/src/crystal'],
   'server/src/meaning': ['server/src/crystal', 'server/src/books', 'server/src/format'],
   'server/src/checks': ['server/src/crystal', 'server/src/books', 'server/src/format', 'server/src/meaning'],
-  'server/src/exchange': ['server/src/crystal', 'server/src/books', 'server/src/format', 'server/src/meaning', 'server/src/analysis.ts'],
+  'server/src/exchange': ['server/src/crystal', 'server/src/books', 'server/src/format', 'server/src/meaning', 'server/src/analysis.ts', 'server/src/protocol.ts'],
   'server/src/language': [
     'server/src/crystal', 'server/src/books', 'server/src/format', 'server/src/meaning', 'server/src/exchange',
     'server/src/analysis.ts', 'server/src/protocol.ts',

@@ -15,7 +15,12 @@ export function diagnostics(snapshot: Snapshot, uri: string, rulePages?: string)
   return snapshot.findings.map(finding => toDiagnostic(snapshot, uri, finding, rulePages))
 }
 
-function toDiagnostic(snapshot: Snapshot, uri: string, finding: DocumentFinding, rulePages?: string): Diagnostic {
+function toDiagnostic(
+  snapshot: Snapshot,
+  uri: string,
+  finding: DocumentFinding,
+  rulePages?: string,
+): Diagnostic {
   const diagnostic: Diagnostic = {
     range: lineRange(snapshot, finding.at),
     severity: SEVERITY[finding.severity],

@@ -1,5 +1,11 @@
 /** Quick fixes, "fix all of this kind", "fix all", and the comment that silences a rule on a line. */
-import { type CodeAction, CodeActionKind, type Diagnostic, type Range, type TextEdit as LspEdit } from 'vscode-languageserver-types'
+import {
+  type CodeAction,
+  CodeActionKind,
+  type Diagnostic,
+  type Range,
+  type TextEdit as LspEdit,
+} from 'vscode-languageserver-types'
 import type { DocumentFinding, Snapshot } from '../analysis.ts'
 import { insertAllowance } from '../format/edits.ts'
 import type { Fix, TextEdit } from '../format/model.ts'
@@ -18,15 +24,21 @@ export interface FixRequest {
 }
 
 export function codeActions(snapshot: Snapshot, request: FixRequest): CodeAction[] {
-  const wants = (kind: string) => !request.only || request.only.some(asked => kind === asked || kind.startsWith(`${asked}.`))
+  const wants = (kind: string) =>
+    !request.only || request.only.some(asked => kind === asked || kind.startsWith(`${asked}.`))
   const actions: CodeAction[] = []
   if (wants(CodeActionKind.QuickFix)) {
-    for (const finding of findingsIn(snapshot, request.range)) actions.push(...actionsFor(snapshot, request, finding))
+    for (const finding of findingsIn(snapshot, request.range))
+      actions.push(...actionsFor(snapshot, request, finding))
   }
   if (wants(FIX_ALL)) {
     const edits = safeEdits(snapshot.findings)
     if (edits.length > 0)
-      actions.push({ title: 'Fix all that is safe to fix', kind: FIX_ALL, edit: toWorkspaceEdit(snapshot, request, edits) })
+      actions.push({
+        title: 'Fix all that is safe to fix',
+        kind: FIX_ALL,
+        edit: toWorkspaceEdit(snapshot, request, edits),
+      })
   }
   return actions
 }
@@ -51,11 +63,18 @@ function actionsFor(snapshot: Snapshot, request: FixRequest, finding: DocumentFi
   const fixes = finding.fixes ?? []
   const safe = fixes.filter(fix => fix.safe)
   const actions = fixes.map(fix => action(fix.title, fix.edits, safe.length === 1 && fix.safe))
-  const alike = snapshot.findings.filter(({ rule, fixes = [] }) => rule === finding.rule && fixes.some(fix => fix.safe))
+  const alike = snapshot.findings.filter(
+    ({ rule, fixes = [] }) => rule === finding.rule && fixes.some(fix => fix.safe),
+  )
   if (safe.length > 0 && alike.length > 1)
     actions.push(action(`Fix all ${alike.length} findings of ${finding.rule}`, safeEdits(alike)))
   if (finding.severity !== 'error')
-    actions.push(action(`Allow ${finding.rule} on this line`, insertAllowance(snapshot.text, finding.at[0], finding.rule)))
+    actions.push(
+      action(
+        `Allow ${finding.rule} on this line`,
+        insertAllowance(snapshot.text, finding.at[0], finding.rule),
+      ),
+    )
   return actions
 }
 
@@ -65,7 +84,9 @@ export function safeEdits(findings: readonly DocumentFinding[]): TextEdit[] {
   for (const finding of findings) {
     const fix: Fix | undefined = finding.fixes?.find(fix => fix.safe)
     if (!fix) continue
-    const clash = fix.edits.some(edit => taken.some(other => edit.at[0] <= other.at[1] && other.at[0] <= edit.at[1]))
+    const clash = fix.edits.some(edit =>
+      taken.some(other => edit.at[0] <= other.at[1] && other.at[0] <= edit.at[1]),
+    )
     if (!clash) taken.push(...fix.edits)
   }
   return taken

@@ -2,15 +2,23 @@
 import type { Hover, Position } from 'vscode-languageserver-types'
 import type { DocumentAnalysis, Snapshot } from '../analysis.ts'
 import { BRAVAIS } from '../crystal/bravais.ts'
-import { littleCoGroup } from '../crystal/kspace.ts'
 import { INVERSE_SYMBOL, SYMBOL } from '../crystal/units.ts'
-import { angle, dot, norm, scale, type Vec3 } from '../crystal/vector.ts'
-import { fold, placeInZone, zoneNumber } from '../crystal/zone.ts'
+import { angle, dot, norm } from '../crystal/vector.ts'
 import { keyDocumentation } from '../format/keys.ts'
 import type { PathSegment, Span } from '../format/model.ts'
+import { displayLabel } from '../format/path.ts'
 import type { Crystal, PlacedPoint } from '../meaning/crystal.ts'
-import { lineOfSegment, nearestBookPoint } from '../meaning/placing.ts'
-import { cartesian, content, count, degrees, fractions, inverseContent, inverseLength, length, plain } from '../meaning/wording.ts'
+import { pointFacts, segmentFacts } from '../meaning/facts.ts'
+import {
+  cartesian,
+  content,
+  degrees,
+  fractions,
+  inverseContent,
+  inverseLength,
+  length,
+  plain,
+} from '../meaning/wording.ts'
 import { rangeOf } from './diagnostics.ts'
 import { locate, type Place } from './locate.ts'
 
@@ -20,7 +28,9 @@ export function hover(snapshot: Snapshot, position: Position): Hover | null {
   const place = analysis && locate(analysis.document, offset)
   if (!place) return null
   const value = describe(analysis, place)
-  return value ? { contents: { kind: 'markdown', value }, range: rangeOf(snapshot, rangeOfPlace(place)) } : null
+  return value
+    ? { contents: { kind: 'markdown', value }, range: rangeOf(snapshot, rangeOfPlace(place)) }
+    : null
 }
 
 const rangeOfPlace = (place: Place): Span => (place.kind === 'segment' ? place.segment.separator : place.at)
@@ -28,7 +38,9 @@ const rangeOfPlace = (place: Place): Span => (place.kind === 'segment' ? place.s
 function describe({ crystal }: DocumentAnalysis, place: Place): string | undefined {
   switch (place.kind) {
     case 'key':
-      return place.path.join('.') === 'lattice' ? (lattice(crystal) ?? keyDocumentation(place.path)) : keyDocumentation(place.path)
+      return place.path.join('.') === 'lattice'
+        ? (lattice(crystal) ?? keyDocumentation(place.path))
+        : keyDocumentation(place.path)
     case 'lattice-value':
       return lattice(crystal) ?? keyDocumentation(['lattice', place.name])
     case 'row':
@@ -56,7 +68,10 @@ function lattice(crystal: Crystal): string | undefined {
   const { dimension, reciprocal } = lattice
   const rows = reciprocal.slice(0, dimension)
   const group = document.atoms && symmetry?.spaceGroup
-  const head = [bravais && `${BRAVAIS[bravais].words} (${bravais})`, group && `${group.symbol} (${group.number})`]
+  const head = [
+    bravais && `${BRAVAIS[bravais].words} (${bravais})`,
+    group && `${group.symbol} (${group.number})`,
+  ]
   const name = NAMES[dimension][0]
   const lines = [
     `**Reciprocal vectors** (with 2π) · ${head.filter(Boolean).join(' · ')}`,
@@ -67,9 +82,17 @@ function lattice(crystal: Crystal): string | undefined {
     ),
     '',
   ]
-  const pairs = ([[1, 2], [0, 2], [0, 1]] as const).filter(([, j]) => j < dimension)
+  const pairs = (
+    [
+      [1, 2],
+      [0, 2],
+      [0, 1],
+    ] as const
+  ).filter(([, j]) => j < dimension)
   if (pairs.length > 0)
-    lines.push(`Angles ${pairs.map(([i, j]) => `b${SUBSCRIPT[i]}b${SUBSCRIPT[j]} ${degrees(angle(reciprocal[i], reciprocal[j]))}`).join(', ')}  `)
+    lines.push(
+      `Angles ${pairs.map(([i, j]) => `b${SUBSCRIPT[i]}b${SUBSCRIPT[j]} ${degrees(angle(reciprocal[i], reciprocal[j]))}`).join(', ')}  `,
+    )
   lines.push(`Primitive cell: ${name} ${content(lattice.volume, dimension, unit)}  `)
   lines.push(`First zone: ${zone.solid}, ${name} ${inverseContent(zone.volume, dimension, unit)}`)
   return lines.join('\n')
@@ -106,54 +129,14 @@ function atom(crystal: Crystal, index: number): string | undefined {
 }
 
 function point(crystal: Crystal, point: PlacedPoint | undefined): string | undefined {
-  const { zone, lattice, unit } = crystal
-  if (!point || !zone || !lattice) return undefined
-  const { dimension } = lattice
-  const { place, excess } = placeInZone(zone, point.cartesian)
-  const rows = [
-    ['fraction', fractions(point.fraction, dimension)],
-    ['Cartesian', cartesian(point.cartesian, unit)],
-    ['length', inverseLength(norm(point.cartesian), unit)],
-    ['place', place === 'outside' ? `outside by ${inverseLength(excess, unit)}, ${ordinal(zoneNumber(zone, point.cartesian))}` : PLACES[place]],
-  ]
-  if (place === 'outside') {
-    const folded = fold(zone, point.fraction)
-    rows.push(['folded', `${fractions(folded.fraction, dimension)}, length ${inverseLength(folded.length, unit)}`])
-  }
-  if (crystal.kGroup) {
-    const group = littleCoGroup(point.fraction, crystal.kGroup).length
-    rows.push(['little co-group', `${count(group, 'rotation')}; star of ${crystal.kGroup.length / group}`])
-  }
-  const nearest = point.origin === 'file' ? nearestBookPoint(crystal, point.cartesian) : undefined
-  if (nearest)
-    rows.push(['nearest book point', nearest.distance < SAME ? `${nearest.label}` : `${nearest.label}, ${inverseLength(nearest.distance, unit)} away`])
+  if (!point || !crystal.zone) return undefined
   const origin = point.origin === 'file' ? '' : ` · ${crystal.book?.source ?? 'label book'}`
-  return `**${point.label}**${origin}\n\n${table(['', ''], rows)}`
+  return `**${displayLabel(point.label)}**${origin}\n\n${table(['', ''], pointFacts(crystal, point))}`
 }
 
-/** Under this distance, relative to nothing but the digits shown, two points are written as one. */
-const SAME = 1e-5
-
-const PLACES = { inside: 'inside the first zone', boundary: 'on the boundary of the first zone' }
-
-function ordinal(zone: number | undefined): string {
-  if (zone === undefined) return 'beyond the 100,000th zone'
-  const tens = zone % 100
-  const suffix = tens > 10 && tens < 20 ? 'th' : (['th', 'st', 'nd', 'rd'][zone % 10] ?? 'th')
-  return `in the ${zone}${suffix} zone`
-}
-
-function segment(crystal: Crystal, segment: PathSegment): string | undefined {
-  const from = crystal.pointOf(segment.from.label)
-  const to = crystal.pointOf(segment.to.label)
-  if (!from || !to) return undefined
-  const { unit } = crystal
-  const step: Vec3 = [0, 1, 2].map(i => to.cartesian[i] - from.cartesian[i]) as unknown as Vec3
-  const size = norm(step)
-  const rows = [['length', inverseLength(size, unit)]]
-  if (size > 0) rows.push(['direction', cartesian(scale(step, 1 / size))])
-  if (segment.steps) rows.push(['steps', `${segment.steps.value}, ${inverseLength(size / segment.steps.value, unit)} each`])
-  const line = lineOfSegment(crystal, from.cartesian, to.cartesian)
-  if (line) rows.push(['line', line])
-  return `**${from.label} – ${to.label}**\n\n${table(['', ''], rows)}`
+function segment(crystal: Crystal, { from, to, steps }: PathSegment): string | undefined {
+  const [start, end] = [crystal.pointOf(from.label), crystal.pointOf(to.label)]
+  if (!start || !end) return undefined
+  const facts = segmentFacts(crystal, start, end, steps?.value)
+  return `**${displayLabel(from.label)} – ${displayLabel(to.label)}**\n\n${table(['', ''], facts)}`
 }

@@ -31,8 +31,13 @@ export function locate(document: LatticeDocument, offset: number): Place | undef
   )
 }
 
-function onKey(keys: ReadonlyMap<string, Entry>, offset: number, above: readonly string[]): Place | undefined {
-  for (const [name, { key }] of keys) if (covers(key, offset)) return { kind: 'key', at: key, path: [...above, name] }
+function onKey(
+  keys: ReadonlyMap<string, Entry>,
+  offset: number,
+  above: readonly string[],
+): Place | undefined {
+  for (const [name, { key }] of keys)
+    if (covers(key, offset)) return { kind: 'key', at: key, path: [...above, name] }
   return undefined
 }
 

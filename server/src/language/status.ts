@@ -6,8 +6,11 @@ import type { StatusParams } from '../protocol.ts'
 export function statusOf(snapshot: Snapshot, uri: string): StatusParams {
   const [first] = snapshot.documents
   const group = first?.crystal.document.atoms && first.crystal.symmetry?.spaceGroup
-  const crystal = [first?.crystal.bravais, group && `${group.symbol} (${group.number})`].filter(Boolean).join(', ')
-  const number = (severity: Severity) => snapshot.findings.filter(finding => finding.severity === severity).length
+  const crystal = [first?.crystal.bravais, group && `${group.symbol} (${group.number})`]
+    .filter(Boolean)
+    .join(', ')
+  const number = (severity: Severity) =>
+    snapshot.findings.filter(finding => finding.severity === severity).length
   return {
     uri,
     version: snapshot.version,

@@ -35,7 +35,9 @@ function partsOf(snapshot: Snapshot, { document, crystal }: DocumentAnalysis): D
       detail: count(items.length, 'atom'),
       children: grouped(
         items.map(({ at, element, name }) =>
-          symbol(snapshot, element?.value ?? '?', SymbolKind.Object, at, element?.at ?? at, { detail: name?.value }),
+          symbol(snapshot, element?.value ?? '?', SymbolKind.Object, at, element?.at ?? at, {
+            detail: name?.value,
+          }),
         ),
       ),
     })
@@ -57,7 +59,9 @@ function partsOf(snapshot: Snapshot, { document, crystal }: DocumentAnalysis): D
   for (const [name, entry] of document.keys) {
     if (!PARTS_OF_THEIR_OWN.has(name)) part(name, SymbolKind.Property, entry, detailOf(snapshot, name, entry))
   }
-  return parts.sort((a, b) => a.range.start.line - b.range.start.line || a.range.start.character - b.range.start.character)
+  return parts.sort(
+    (a, b) => a.range.start.line - b.range.start.line || a.range.start.character - b.range.start.character,
+  )
 }
 
 const PARTS_OF_THEIR_OWN = new Set(['lattice', 'atoms', 'points', 'path'])
