@@ -3,11 +3,11 @@
  * book orders them by conditions of its own. A cell is given by its rows of whole numbers on the user's vectors.
  */
 import { BRAVAIS, type BravaisType, CENTRING_TABLES } from '../crystal/bravais.ts'
-import { reduce } from '../crystal/reduction.ts'
+import { reduce, shortBasis } from '../crystal/reduction.ts'
 import {
   combine,
-  determinant,
   dot,
+  IDENTITY,
   inverse,
   type Mat3,
   mapMatrix,
@@ -88,29 +88,15 @@ function pairsAcross(p: Vec3, q: Vec3, normal: Vec3, basis: Mat3): [Vec3, Vec3][
 }
 
 /**
- * Cells of a triclinic lattice whose reciprocal angles are all acute or all obtuse: those of shortest reciprocal vectors,
- * and those of three vectors of the obtuse superbase, for books that know obtuse angles only.
+ * Cells of a triclinic lattice whose reciprocal angles are all acute or all obtuse: of shortest reciprocal vectors, of the
+ * user's own (which may be as short), and of three vectors of the obtuse superbase, for books that know obtuse angles only.
  */
 function triclinicCells(basis: Mat3): Mat3[] {
   const reciprocal = transpose(inverse(basis))
   const { voronoi } = reduce(reciprocal, 3)
-  const vectors = voronoi.slice(0, 7).map(({ vector, coefficients }) => ({
-    square: dot(vector, vector),
-    coefficients,
-  }))
-  const triples: { square: number; rows: Mat3 }[] = []
-  for (let i = 0; i < 7; i++)
-    for (let j = 0; j < i; j++)
-      for (let k = 0; k < j; k++) {
-        const rows: Mat3 = [vectors[i].coefficients, vectors[j].coefficients, vectors[k].coefficients]
-        if (Math.abs(determinant(rows)) !== 1) continue
-        triples.push({ rows, square: vectors[i].square + vectors[j].square + vectors[k].square })
-      }
-  const least = Math.min(...triples.map(({ square }) => square)) * (1 + ROUNDING)
-  const shortest = triples.filter(({ square }) => square <= least).map(({ rows }) => rows)
   const superbase = [1, 2, 4, 8].map(s => voronoi[s - 1].coefficients)
   const obtuse = superbase.map((_, left) => superbase.filter((_, i) => i !== left) as unknown as Mat3)
-  return [...shortest, ...obtuse]
+  return [shortBasis(reciprocal, 3).change, IDENTITY, ...obtuse]
     .flatMap(rows => sameSide(rows, reciprocal))
     .flatMap(rows => permutations(mapMatrix(transpose(inverse(rows)), Math.round)))
 }

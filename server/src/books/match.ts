@@ -25,6 +25,7 @@ import {
 import { type CompiledVariation, compiled, type Variation } from './book.ts'
 import { candidateCells, ROUNDING } from './cells.ts'
 import {
+  CELL_NAMES,
   combineForms,
   evaluateForm,
   type Formula,
@@ -102,9 +103,9 @@ export interface MatchOptions {
 /**
  * The labels of a book in a user's lattice.
  *
- * Where the book leaves a choice, the user's own vectors are kept if they are a cell of the book, or else the user's own
- * conventional axes; otherwise the shortest axes come first. The answer depends on the metric alone, never on how the
- * crystal is turned in space. In two dimensions there is one book of plane lattices, in one the points Γ and X.
+ * Where the book leaves a choice, the user's own vectors are kept if they are a cell of the book, or the user's own
+ * conventional axes; otherwise the shortest axes come first. How the crystal is turned in space matters only for vectors
+ * that are a cell of the book under two namings of the axes. In two dimensions there is one book of plane lattices, in one the points Γ and X.
  * @param primitive the user's vectors, one a row; rows beyond `dimension` are unit normals.
  * @returns undefined for vectors that are no lattice.
  */
@@ -205,47 +206,73 @@ function idealLattice(
   }
 }
 
-/** A cell of the lattice with a variation whose conditions it may meet. */
-interface Choice {
-  readonly variation: CompiledVariation
-  /** Conventional and primitive vectors of the book, whole numbers on the user's. */
+/** A conventional cell that a book may choose. */
+interface Cell {
+  /** Whole numbers on the user's vectors. */
   readonly axes: Mat3
-  readonly basis: Mat3
+  /** The numbers of CELL_NAMES. */
   readonly values: Values
-  /** Conditions within the tolerance count as met. */
-  readonly judgement: Judgement
+  /** The same for cells with one length or angle changed by as much as the tolerance can change it. */
+  readonly shifted: () => readonly Values[]
 }
 
-interface Judgement {
-  /** 0: on a border that the book knows; 1: inside; 2: inside within the tolerance; 3: outside. */
-  readonly fit: 0 | 1 | 2 | 3
-  /** By how many tolerances the conditions are missed at the worst. */
-  readonly miss: number
+/** A cell with a variation whose conditions it may meet. */
+interface Choice {
+  readonly variation: CompiledVariation
+  readonly cell: Cell
+  /** The book's primitive vectors, whole numbers on the user's. */
+  readonly basis: Mat3
+  /** 0: on a border that the book knows; 1: inside; 2: inside within the tolerance. */
+  readonly fit: 0 | 1 | 2
   readonly reduced: boolean
-  readonly borderline: boolean
 }
 
 function chooseCell(entries: readonly Variation[], lattice: IdealLattice): Choice {
-  const choices = entries.flatMap(entry => {
+  const cells = new Map<string, readonly Cell[]>()
+  const pairs = entries.flatMap(entry => {
+    const setting = `${entry.uniqueAxis}/${entry.axes}`
+    if (!cells.has(setting)) cells.set(setting, cellsFor(entry, lattice))
     const variation = compiled(entry)
-    return candidateCells(entry, lattice.bravais, lattice.axes, lattice.basis).flatMap((axes): Choice[] => {
-      const exact = multiply(variation.primitive, axes)
+    return cells.get(setting)!.flatMap(cell => {
+      const exact = multiply(variation.primitive, cell.axes)
       const basis = mapMatrix(exact, x => Math.round(x) + 0)
-      if (!isBasis(exact, basis)) return []
-      const values = cellValues(multiply(axes, lattice.basis))
-      return [{ variation, axes, basis, values, judgement: judge(variation, values, lattice.tolerance) }]
+      return isBasis(exact, basis) ? [{ variation, cell, basis }] : []
     })
   })
-  const met = choices.filter(({ judgement }) => judgement.fit < 3)
-  const admissible = met.length > 0 ? met : least(choices, ({ judgement }) => judgement.miss)
-  const reduced = admissible.filter(({ judgement }) => judgement.reduced)
+  const met = pairs.flatMap((pair): Choice[] => {
+    const fit = fitOf(pair.variation, pair.cell)
+    return fit === undefined ? [] : [{ ...pair, fit, reduced: isReduced(pair.variation, pair.cell) }]
+  })
+  // The variations of a book leave no gap; should rounding open one, the cell that misses least is taken.
+  const admissible =
+    met.length > 0
+      ? met
+      : least(pairs, ({ variation, cell }) => missOf(variation, cell)).map(
+          (pair): Choice => ({ ...pair, fit: 2, reduced: false }),
+        )
+  const reduced = admissible.filter(choice => choice.reduced)
   // Where a centring allows no cell that is reduced in the book's sense, the formulas hold in the smallest one.
   let left = reduced.length > 0 ? reduced : least(admissible, sizeOf)
-  left = least(left, ({ judgement }) => judgement.fit)
-  left = least(left, choice => ownership(choice, lattice))
+  left = least(left, ({ fit }) => fit)
+  left = ownCells(left, lattice)
   left = least(left, sizeOf)
   for (const i of [0, 1, 2]) left = least(left, choice => lengthsOf(choice)[i])
   return left[0]
+}
+
+function cellsFor(entry: Variation, { bravais, axes, basis, tolerance }: IdealLattice): Cell[] {
+  const measure = bravais === 'aP' ? withReciprocal : (cell: readonly number[]) => cell
+  return candidateCells(entry, bravais, axes, basis).map(candidate => {
+    const { a, b, c, alpha, beta, gamma } = cellParameters(multiply(candidate, basis))
+    const cell = [a, b, c, radians(alpha), radians(beta), radians(gamma)]
+    const reach = Math.max(tolerance, ROUNDING * Math.max(a, b, c))
+    let shifted: readonly Values[] | undefined
+    return {
+      axes: candidate,
+      values: measure(cell),
+      shifted: () => (shifted ??= shiftedCells(cell, reach).map(measure)),
+    }
+  })
 }
 
 /** The book's primitive vectors are a basis of the lattice: whole numbers with determinant ±1. */
@@ -261,10 +288,29 @@ function least<T>(items: readonly T[], key: (item: T) => number): readonly T[] {
   return items.filter((_, i) => keys[i] <= limit + ROUNDING * Math.abs(limit))
 }
 
-/** 0: the user's vectors are the book's primitive ones; 1: they follow from the book's axes as those of a file do; 2. */
-function ownership({ basis, axes, variation }: Choice, lattice: IdealLattice): 0 | 1 | 2 {
-  if (hasSameMetric(basis, lattice.basis)) return 0
-  return hasSameMetric(usualPrimitive(axes, variation), lattice.basis) ? 1 : 2
+/** The user's vectors are the book's primitive ones. */
+const isOwnPrimitive = ({ basis }: Choice, lattice: IdealLattice): boolean =>
+  hasSameMetric(basis, lattice.basis)
+
+/** The user's vectors follow from the book's axes as those of a lattice file do. */
+const hasOwnAxes = ({ cell, variation }: Choice, lattice: IdealLattice): boolean =>
+  hasSameMetric(usualPrimitive(cell.axes, variation), lattice.basis)
+
+/**
+ * Of several cells those that are the user's own, if any is. The vectors of one cell may be another's by other names of
+ * the axes: then the way they lie in space tells which is meant, and where it does not, the axes are left as they are.
+ */
+function ownCells(choices: readonly Choice[], lattice: IdealLattice): readonly Choice[] {
+  const own = choices.filter(choice => isOwnPrimitive(choice, lattice) || hasOwnAxes(choice, lattice))
+  if (own.length === 0) return choices
+  const inPlace = least(own, choice => -axesInPlace(choice, lattice))
+  return least(inPlace, choice => (hasOwnAxes(choice, lattice) ? 0 : 1))
+}
+
+/** How many of the book's a, b, c point along x, y, z, as tables and files have them. */
+function axesInPlace({ cell }: Choice, { basis }: IdealLattice): number {
+  return multiply(cell.axes, basis).filter((axis, i) => Math.abs(axis[i]) > (1 - ROUNDING) * norm(axis))
+    .length
 }
 
 /** The primitive cell that a lattice file makes of these conventional axes. */
@@ -283,8 +329,7 @@ function hasSameMetric(change: Mat3, basis: Mat3): boolean {
 /** The metric is idealised, so only rounding tells two equal ones apart. */
 const SAME_METRIC = 1e-8
 
-/** Positions in CELL_NAMES. */
-const ALPHA = 3
+/** The position of g11 in CELL_NAMES. */
 const G11 = 9
 
 const isTriclinic = ({ variation }: Choice): boolean => variation.entry.bravais === 'aP'
@@ -292,17 +337,11 @@ const isTriclinic = ({ variation }: Choice): boolean => variation.entry.bravais 
 /** The lengths by which cells are put in order: of a triclinic cell the reciprocal ones, which its books reduce. */
 const lengthsOf = (choice: Choice): number[] => {
   const first = isTriclinic(choice) ? G11 : 0
-  return [0, 1, 2].map(i => choice.values[first + i])
+  return [0, 1, 2].map(i => choice.cell.values[first + i])
 }
 
 const sizeOf = (choice: Choice): number =>
   lengthsOf(choice).reduce((sum, x) => sum + (isTriclinic(choice) ? x : x * x), 0)
-
-/** The numbers of CELL_NAMES for Cartesian axes. */
-function cellValues(axes: Mat3): number[] {
-  const { a, b, c, alpha, beta, gamma } = cellParameters(axes)
-  return withReciprocal([a, b, c, radians(alpha), radians(beta), radians(gamma)])
-}
 
 const radians = (degrees: number): number => (degrees * Math.PI) / 180
 
@@ -316,7 +355,7 @@ function withReciprocal(cell: readonly number[]): number[] {
   ])
   const angleBetween = (i: number, j: number) => Math.acos(g[i][j] / Math.sqrt(g[i][i] * g[j][j]))
   return [
-    ...cell.slice(0, 6),
+    ...cell,
     angleBetween(1, 2),
     angleBetween(0, 2),
     angleBetween(0, 1),
@@ -329,48 +368,51 @@ function withReciprocal(cell: readonly number[]): number[] {
   ]
 }
 
-/** Hold a cell against the conditions of a variation. */
-function judge(variation: CompiledVariation, values: Values, tolerance: number): Judgement {
-  const size = Math.max(values[0], values[1], values[2])
-  const reach = Math.max(tolerance, ROUNDING * size)
-  const rounding = (ROUNDING * size) / reach
-  let shifted: readonly Values[] | undefined
-  /** The value of a condition, in units of what the tolerance may change of it. */
-  const measure = (condition: Formula): number => {
-    shifted ??= shiftedCells(values, reach)
-    const value = condition(values)
-    const spread = shifted.reduce((sum, cell) => sum + Math.abs(condition(cell) - value), 0)
-    return value / spread
-  }
-  const positive = variation.positive.map(measure)
-  const zero = variation.zero.map(measure)
-  const reduced = variation.reducedCell.map(measure)
-  const miss = Math.max(0, ...positive.map(x => -x), ...zero.map(Math.abs))
-  const inside = positive.every(x => x >= -rounding)
-  return {
-    fit: miss > 1 ? 3 : zero.length > 0 ? 0 : inside ? 1 : 2,
-    miss,
-    reduced: reduced.every(x => x >= -1),
-    borderline: zero.length > 0 || [...positive, ...reduced].some(x => x <= 1),
-  }
+/** The value of a condition in units of what the tolerance can change of it. */
+function inTolerances(condition: Formula, { values, shifted }: Cell): number {
+  const value = condition(values)
+  return value / shifted().reduce((sum, other) => sum + Math.abs(condition(other) - value), 0)
 }
 
-/** The cell with each length and each angle changed by as much as a vector's shift by the tolerance can do. */
-function shiftedCells(values: Values, reach: number): Values[] {
-  const cell = Array.from(values).slice(0, ALPHA + 3)
+/** How well a cell meets the conditions of a variation; undefined where it does not, the tolerance allowed for. */
+function fitOf({ positive, zero }: CompiledVariation, cell: Cell): Choice['fit'] | undefined {
+  const missed = positive.filter(condition => condition(cell.values) < 0)
+  const misses = missed.map(condition => -inTolerances(condition, cell))
+  if (misses.some(miss => miss > 1)) return undefined
+  if (zero.length > 0)
+    return zero.every(condition => Math.abs(inTolerances(condition, cell)) <= 1) ? 0 : undefined
+  return misses.every(miss => miss <= MERE_ROUNDING) ? 1 : 2
+}
+/** So small a part of a tolerance is nobody's meaning: on a border, the variation must not hang on rounding. */
+const MERE_ROUNDING = 1e-5
+
+const isReduced = ({ reducedCell }: CompiledVariation, cell: Cell): boolean =>
+  reducedCell.every(condition => condition(cell.values) >= 0 || inTolerances(condition, cell) >= -1)
+
+/** By how many tolerances the conditions are missed at the worst. */
+const missOf = ({ positive, zero }: CompiledVariation, cell: Cell): number =>
+  Math.max(
+    0,
+    ...positive.map(condition => -inTolerances(condition, cell)),
+    ...zero.map(condition => Math.abs(inTolerances(condition, cell))),
+  )
+
+const isBorderline = ({ variation: { positive, zero, reducedCell }, cell }: Choice): boolean =>
+  zero.length > 0 || [...positive, ...reducedCell].some(condition => inTolerances(condition, cell) <= 1)
+
+function shiftedCells(cell: readonly number[], reach: number): number[][] {
   const [a, b, c] = cell
   const turns = [Math.min(b, c), Math.min(a, c), Math.min(a, b)].map(shorter => reach / shorter)
-  return [reach, reach, reach, ...turns].map((step, i) =>
-    withReciprocal(cell.map((x, j) => (i === j ? x + step : x))),
-  )
+  return [reach, reach, reach, ...turns].map((step, i) => cell.map((x, j) => (i === j ? x + step : x)))
 }
 
 /** Carry points, path and lines of the chosen cell into the user's fractions. */
 function carry(choice: Choice, lattice: IdealLattice): Omit<BookMatch, 'book' | 'source'> {
-  const { variation, values, judgement } = choice
+  const { variation, cell } = choice
   const { entry, parameterNames } = variation
   const { basis, axes } = preferredImage(choice, lattice)
-  const all = [...Array.from(values)]
+  const all = Array.from(cell.values)
+  while (all.length < CELL_NAMES.length) all.push(Number.NaN)
   for (const parameter of variation.parameters) all.push(parameter(all))
   const parameterValues = all.slice(all.length - parameterNames.length)
   // κ = M⁻¹ κ′ where the rows of M are the book's vectors on the user's.
@@ -392,7 +434,7 @@ function carry(choice: Choice, lattice: IdealLattice): Omit<BookMatch, 'book' | 
       value: parameterValues[i],
       formula: printed(entry.parameters![name]),
     })),
-    borderline: judgement.borderline,
+    borderline: isBorderline(choice),
     points,
     path: variation.path,
     lines: placeLines(variation, carried, lattice),
@@ -408,19 +450,21 @@ const printed = (formula: string): string =>
  * One of the images of a cell under the holohedry, which all get the same labels: the one that is the user's cell, else
  * whose axes are the user's or nearest to them.
  */
-function preferredImage(
-  { basis, axes, variation }: Choice,
-  lattice: IdealLattice,
-): { basis: Mat3; axes: Mat3 } {
+function preferredImage(choice: Choice, lattice: IdealLattice): { basis: Mat3; axes: Mat3 } {
+  const { basis, cell, variation } = choice
   const images = lattice.holohedry.map(W => {
     const turn = transpose(W)
-    const image = { basis: multiply(basis, turn), axes: multiply(axes, turn) }
-    return { ...image, farness: [farness(image.basis), farness(usualPrimitive(image.axes, variation))] }
+    const image = { basis: multiply(basis, turn), axes: multiply(cell.axes, turn) }
+    return {
+      ...image,
+      primitive: farness(image.basis),
+      usual: farness(usualPrimitive(image.axes, variation)),
+    }
   })
-  const own = images.find(image => image.farness[0] === 0)
-  if (own) return tidyCell(own)
+  const first = isOwnPrimitive(choice, lattice) ? 'primitive' : 'usual'
+  const second = first === 'primitive' ? 'usual' : 'primitive'
   const nearer = (p: (typeof images)[number], q: (typeof images)[number]): number =>
-    p.farness[1] - q.farness[1] || p.farness[0] - q.farness[0] || firstDifference(q.basis, p.basis)
+    p[first] - q[first] || p[second] - q[second] || firstDifference(q.basis, p.basis)
   return tidyCell(images.reduce((best, image) => (nearer(image, best) < 0 ? image : best)))
 }
 
