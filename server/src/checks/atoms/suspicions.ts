@@ -1,0 +1,66 @@
+/** Are the atoms' numbers meant in another unit or another frame than the file states? */
+import { IN_ANGSTROM, type Unit, UNITS } from '../../crystal/units.ts'
+import type { AtomFrame } from '../../format/model.ts'
+import type { Crystal } from '../../meaning/crystal.ts'
+import { distinctAtoms, once, readOn, type Tightest, tightest, tightestAmong } from './contacts.ts'
+
+/**
+ * The tightest contact of a solid, over the sum of covalent radii: metals, salts and covalent crystals lie between 0.85
+ * and 1.25 (computed from the structures of the elements and simple salts), the shortest double bonds at 0.67.
+ */
+const ORDINARY = { least: 0.8, most: 1.3 }
+const TOO_TIGHT = 0.65
+const TOO_LOOSE = 1.55
+
+/** Their crystals are held together by less than bonds: 1.8 (argon) and over. */
+const NOBLE = new Set(['He', 'Ne', 'Ar', 'Kr', 'Xe', 'Rn'])
+
+const isOrdinary = (ratio: number): boolean => ratio >= ORDINARY.least && ratio <= ORDINARY.most
+
+export interface UnitSuspicion {
+  readonly unit: Unit
+  readonly contact: Tightest
+  /** The same contact's ratio in that unit. */
+  readonly ratio: number
+}
+
+/** The unit in which the distances would be those of a solid, where they are not as stated. */
+export const suspectedUnit = once((crystal): UnitSuspicion | undefined => {
+  if (suspectedFrame(crystal)) return undefined
+  const contact = tightest(crystal)
+  if (!contact || (contact.ratio >= TOO_TIGHT && contact.ratio <= TOO_LOOSE)) return undefined
+  if (NOBLE.has(contact.first.element) || NOBLE.has(contact.second.element)) return undefined
+  for (const unit of UNITS) {
+    const ratio = (contact.ratio * IN_ANGSTROM[unit]) / crystal.angstrom
+    if (unit !== crystal.unit && isOrdinary(ratio)) return { unit, contact, ratio }
+  }
+  return undefined
+})
+
+export interface FrameSuspicion {
+  readonly frame: AtomFrame
+  readonly contact: Tightest
+}
+
+/** Fractions reach beyond a neighbouring cell only where somebody unwrapped them; a length does at once. */
+const FAR_OUT = 2
+
+/** The frame in which the atoms' numbers give the distances of a solid, where those stated can hardly be meant. */
+export const suspectedFrame = once((crystal): FrameSuspicion | undefined => {
+  const { document, lattice } = crystal
+  const atoms = distinctAtoms(crystal)
+  if (!lattice || atoms.length < 2) return undefined
+  const periodic = atoms.flatMap(({ stated }) => stated.slice(0, lattice.dimension))
+  const largest = periodic.reduce((most, x) => Math.max(most, Math.abs(x)), 0)
+  if (document.frames.atoms !== 'cartesian')
+    return largest > FAR_OUT ? sensible(crystal, 'cartesian') : undefined
+  const contact = tightest(crystal)
+  if (largest > 1 || !contact || contact.ratio >= TOO_TIGHT) return undefined
+  return sensible(crystal, 'conventional') ?? sensible(crystal, 'primitive')
+})
+
+function sensible(crystal: Crystal, frame: AtomFrame): FrameSuspicion | undefined {
+  const atoms = distinctAtoms(crystal)
+  const contact = tightestAmong(crystal, atoms, readOn(crystal, atoms, crystal.atomAxesOf(frame)))
+  return contact && isOrdinary(contact.ratio) ? { frame, contact } : undefined
+}

@@ -1,0 +1,41 @@
+import { length } from '../../meaning/wording.ts'
+import type { Check } from '../check.ts'
+
+interface Facts {
+  /** In the file's unit. */
+  readonly vacuum: number
+  readonly thickness: number
+}
+
+/** In Å. Below it the sheets still feel each other (common practice: 10 to 20 Å). */
+const THINNEST = 10
+
+export const vacuumThin: Check<Facts> = {
+  id: 'vacuum-thin',
+  severity: 'warning',
+  summary: 'The height of a two-dimensional crystal’s computing cell leaves under 10 Å of vacuum.',
+  why: 'The copies along the normal interact: bands and forces are those of a stack, not of a sheet.',
+  wrong:
+    'lattice: {bravais: hp, a: 2.46, height: 7}\natoms:\n  - C: [1/3, 2/3, 1/2]\n  - C: [2/3, 1/3, 1/2]\n',
+  right:
+    'lattice: {bravais: hp, a: 2.46, height: 20}\natoms:\n  - C: [1/3, 2/3, 1/2]\n  - C: [2/3, 1/3, 1/2]\n',
+  *run({ crystal, document }) {
+    const height = document.lattice?.height
+    if (crystal.dimension !== 2 || !height || height.value <= 0 || crystal.atoms.length === 0) return
+    const along = crystal.atoms.map(({ fraction }) => fraction[2])
+    const [low, high] = along.reduce(
+      ([least, most], z) => [Math.min(least, z), Math.max(most, z)],
+      [along[0], along[0]],
+    )
+    const thickness = high - low
+    const vacuum = height.value - thickness
+    const needed = THINNEST / crystal.angstrom
+    if (vacuum >= needed) return
+    const { unit } = crystal
+    yield {
+      at: height.at,
+      message: `A sheet ${length(thickness, unit, 2)} thick in a cell ${length(height.value, unit, 2)} high leaves ${length(vacuum, unit, 2)} of vacuum; it takes ${length(needed, unit, 2)} or more, a height from ${length(thickness + needed, unit, 2)}.`,
+      facts: { vacuum, thickness },
+    }
+  },
+}

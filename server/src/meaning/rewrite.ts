@@ -1,0 +1,495 @@
+/**
+ * Restate a document in another cell of its crystal: the lattice, and with it every number that refers to its axes.
+ * Only numbers that change are touched, so comments and layout stay; exact fractions stay exact.
+ */
+import {
+  BRAVAIS,
+  type BravaisType,
+  type Centring,
+  CENTRING_TABLES,
+  completeCell,
+} from '../crystal/bravais.ts'
+import {
+  type CellParameters,
+  cellParameters,
+  isLattice,
+  type Lattice,
+  latticeFromCell,
+  latticeFromVectors,
+} from '../crystal/lattice.ts'
+import {
+  combine,
+  determinant,
+  distance,
+  IDENTITY,
+  inverse,
+  type Mat3,
+  mapMatrix,
+  multiply,
+  norm,
+  transpose,
+  type Vec3,
+} from '../crystal/vector.ts'
+import { insertKeys, removeEntry, replaceValue } from '../format/edits.ts'
+import {
+  type Fraction,
+  type LatticeBlock,
+  type MeshBlock,
+  type NumberValue,
+  PARAMETER_NAMES,
+  type ParameterName,
+  type TextEdit,
+  type VectorValue,
+} from '../format/model.ts'
+import { formatCoordinate, formatNumber, formatVector } from '../format/numbers.ts'
+import { plusWhole, rational, type Sum, sumOf, writeSum } from './combinations.ts'
+import type { Crystal } from './crystal.ts'
+
+/** Another cell of the same crystal. */
+export interface Cell {
+  /**
+   * Rows: its conventional vectors as rational combinations of the file's conventional ones. Its lattice is that of the
+   * file, or contains it where the file's cell holds several primitive ones.
+   */
+  readonly change: Mat3
+  readonly centring: Centring
+  /** State it by this type and its parameters, in the type's own orientation; by vectors where absent. */
+  readonly bravais?: BravaisType
+}
+
+export interface Restatement {
+  readonly edits: readonly TextEdit[]
+  /** Turns Cartesian rows as they were into those of the new text; undefined where nothing is turned. */
+  readonly rotation?: Mat3
+  /** The book's labels on the path mean the same k as before, turned with the crystal. */
+  readonly labelsKept: boolean
+  /** Every mesh is the same set of k-points as before. */
+  readonly meshesKept: boolean
+}
+
+/** Crystal, path and mesh are what they were. */
+export const keepsAll = ({ labelsKept, meshesKept }: Restatement): boolean => labelsKept && meshesKept
+
+/**
+ * The edits that restate a document.
+ * @returns undefined where something in the document cannot be read, or cannot be said in the other cell.
+ */
+export function restate(crystal: Crystal, text: string, cell: Cell): Restatement | undefined {
+  const task = taskOf(crystal, text, cell)
+  if (!task) return undefined
+  const labels = labelEdits(task)
+  const meshes = crystal.document.meshes.map(mesh => meshEdits(task, mesh))
+  const supercell = supercellEdits(task)
+  const atoms = atomEdits(task)
+  if (!supercell || !atoms) return undefined
+  const edits = [
+    ...latticeEdits(task),
+    ...atoms,
+    ...pointEdits(task),
+    ...labels.edits,
+    ...meshes.flatMap(mesh => mesh.edits),
+    ...supercell,
+  ]
+  const distinct = withoutRepeats(edits)
+  if (!distinct) return undefined
+  return {
+    edits: distinct.filter(edit => text.slice(...edit.at) !== edit.text),
+    rotation: task.rotation,
+    labelsKept: labels.kept,
+    meshesKept: meshes.every(mesh => mesh.kept),
+  }
+}
+
+/** A number that stands for several by an alias is edited once; undefined where it would have to become two. */
+function withoutRepeats(edits: readonly TextEdit[]): TextEdit[] | undefined {
+  const byPlace = new Map<string, TextEdit>()
+  for (const edit of edits) {
+    const place = edit.at.join()
+    const other = edit.at[0] === edit.at[1] ? undefined : byPlace.get(place)
+    if (other && other.text !== edit.text) return undefined
+    byPlace.set(edit.at[0] === edit.at[1] ? `${place}/${byPlace.size}` : place, edit)
+  }
+  return [...byPlace.values()]
+}
+
+interface Task {
+  readonly crystal: Crystal
+  readonly text: string
+  readonly block: LatticeBlock
+  readonly cell: Cell
+  readonly old: Lattice
+  readonly lattice: Lattice
+  readonly rotation?: Mat3
+  /** Rows: new primitive vectors as combinations of the old ones. */
+  readonly change: Mat3
+  /** The free parameters of the new statement, where it is by type. */
+  readonly parameters?: Partial<Record<ParameterName, number>>
+  /** Does an expression that uses these parameters still mean the same? */
+  readonly stays: (uses: readonly ParameterName[]) => boolean
+}
+
+function taskOf(crystal: Crystal, text: string, cell: Cell): Task | undefined {
+  const { document, lattice: old } = crystal
+  const block = document.lattice
+  if (!old || !block || !crystal.atomsComplete || !pointsAreRead(crystal)) return undefined
+  const rows = multiply(cell.change, old.conventional)
+  const parameters = cell.bravais && freeParameters(cell.bravais, cellParameters(rows))
+  const made = parameters
+    ? fromParameters(cell.bravais!, parameters)
+    : latticeFromVectors(rows.slice(0, old.dimension), cell.centring)
+  if (!made || !isLattice(made)) return undefined
+  const table = CENTRING_TABLES[cell.centring]
+  const primitiveFromConventional = mapMatrix(table.numerators, x => x / table.denominator)
+  const change = multiply(multiply(primitiveFromConventional, cell.change), old.conventionalFromPrimitive)
+  if (Math.abs(determinant(change)) > 1 + SAME) return undefined // A larger cell would need atoms added.
+  const turn = multiply(inverse(rows), made.conventional)
+  return {
+    crystal,
+    text,
+    block,
+    cell,
+    old,
+    lattice: made,
+    rotation: isIdentity(turn) ? undefined : turn,
+    change,
+    parameters,
+    stays: uses => uses.every(name => keeps(block, parameters, name)),
+  }
+}
+
+/** What arithmetic leaves between two numbers that are equal, relative to their size. */
+const SAME = 1e-9
+
+const isIdentity = (m: Mat3): boolean => m.every((row, i) => distance(row, IDENTITY[i]) < SAME)
+
+const pointsAreRead = ({ document, points }: Crystal): boolean =>
+  (document.points?.items ?? []).every(({ label }) => points.has(label))
+
+/** A parameter that the new lattice block still states with the same value. By vectors, all of them are definitions. */
+function keeps(block: LatticeBlock, parameters: Task['parameters'], name: ParameterName): boolean {
+  if (!parameters) return true
+  const value = parameters[name]
+  return value !== undefined && isSame(value, block.parameters[name]?.value)
+}
+
+const isSame = (x: number, y: number | undefined): boolean =>
+  y !== undefined && Math.abs(x - y) <= SAME * Math.abs(x)
+
+// The lattice block
+
+/** The parameters that a type leaves free; lengths that it ties are averaged. */
+function freeParameters(type: BravaisType, cell: CellParameters): Partial<Record<ParameterName, number>> {
+  const { system, free } = BRAVAIS[type]
+  const { a, b, c } = cell
+  const side = system === 'cubic' ? (a + b + c) / 3 : (a + b) / 2
+  const isTied = ['cubic', 'tetragonal', 'hexagonal', 'rhombohedral', 'square'].includes(system)
+  const values = { ...cell, a: isTied ? side : a }
+  // Of a monoclinic type's angles the oblique one counts.
+  const skew = (names: readonly ParameterName[]) => Math.abs(values[names.at(-1)!] - 90)
+  const names =
+    system === 'monoclinic' ? free.reduce((best, set) => (skew(set) > skew(best) ? set : best)) : free[0]
+  return Object.fromEntries(names.map(name => [name, values[name]]))
+}
+
+function fromParameters(type: BravaisType, parameters: Partial<Record<ParameterName, number>>) {
+  const { centring, dimension } = BRAVAIS[type]
+  const completed = completeCell(type, parameters)
+  return 'cell' in completed ? latticeFromCell(completed.cell, centring, dimension) : undefined
+}
+
+const latticeEdits = (task: Task): TextEdit[] =>
+  task.parameters ? statedByType(task, task.parameters) : statedByVectors(task)
+
+function statedByType(
+  { text, block, cell, stays }: Task,
+  parameters: NonNullable<Task['parameters']>,
+): TextEdit[] {
+  const edits: TextEdit[] = []
+  const added: [string, string][] = []
+  if (block.bravais) edits.push({ at: block.bravais.at, text: cell.bravais! })
+  else added.push(['bravais', cell.bravais!])
+  const known = PARAMETER_NAMES.flatMap(name => block.parameters[name] ?? [])
+  for (const name of PARAMETER_NAMES) {
+    const value = parameters[name]
+    const stated = block.parameters[name]
+    if (value === undefined) {
+      if (block.keys.has(name)) edits.push(removeEntry(text, block.keys.get(name)!))
+      continue
+    }
+    if (stated && isSame(value, stated.value) && stays(stated.uses)) continue
+    const alike = known.find(number => number.uses.length === 0 && isSame(value, number.value))
+    const written = alike?.text ?? formatNumber(value, DIGITS)
+    if (stated) edits.push({ at: stated.at, text: written })
+    else added.push([name, written])
+  }
+  for (const key of ['vectors', 'centring'])
+    if (block.keys.has(key)) edits.push(removeEntry(text, block.keys.get(key)!))
+  return added.length > 0 ? [...edits, ...insertKeys(text, block, added)] : edits
+}
+
+/** Digits after the point of a length that is no simple number. */
+const DIGITS = 10
+
+function statedByVectors(task: Task): TextEdit[] {
+  const { crystal, text, block, cell, old, lattice, change } = task
+  const edits: TextEdit[] = []
+  const added: [string, string][] = []
+  if (block.vectors) edits.push(...rowEdits(task, block.vectors.rows as readonly VectorValue[]))
+  else added.push(['vectors', formatRows(lattice.conventional.slice(0, old.dimension))])
+  if (block.centring) edits.push({ at: block.centring.at, text: cell.centring })
+  else if (cell.centring !== 'P') added.push(['centring', cell.centring])
+  if (block.bravais && Math.abs(determinant(change)) < 1 - SAME) {
+    const type = crystal.typeOf(lattice.primitive, lattice.dimension)?.bravais
+    if (type) edits.push({ at: block.bravais.at, text: type })
+  }
+  return added.length > 0 ? [...edits, ...insertKeys(text, block, added)] : edits
+}
+
+const formatRows = (rows: readonly Vec3[]): string =>
+  `[${rows.map(row => `[${row.map(x => formatNumber(x, DIGITS)).join(', ')}]`).join(', ')}]`
+
+const NOTHING: NumberValue = { value: 0, at: [0, 0], text: '0', exact: { p: 0, q: 1 }, decimals: 0, uses: [] }
+const itemsOf = (vector: VectorValue): readonly NumberValue[] => vector.items as readonly NumberValue[]
+
+function rowEdits({ cell, old, stays }: Task, rows: readonly VectorValue[]): TextEdit[] {
+  return rows.flatMap((row, i) => {
+    const times = cell.change[i].slice(0, old.dimension).map(rational)
+    return itemsOf(row).map(({ at }, k) => {
+      const column = rows.map(other => itemsOf(other)[k] ?? NOTHING)
+      return { at, text: writeSum(sumOf(column, times), stays) }
+    })
+  })
+}
+
+// Atoms
+
+/** A fraction outside [−1/2, 3/2) is brought into [0, 1). */
+const wrapped = (sum: Sum): Sum =>
+  sum.value >= -0.5 && sum.value < 1.5 ? sum : plusWhole(sum, -Math.floor(sum.value + SAME))
+
+function atomEdits(task: Task): TextEdit[] | undefined {
+  const { crystal, change } = task
+  if (crystal.atoms.length === 0) return []
+  const kept = firstOfEach(task)
+  if (!kept) return undefined
+  const frame = crystal.document.frames.atoms
+  const fractions =
+    frame === 'cartesian' ? undefined : inverse(frame === 'primitive' ? change : task.cell.change)
+  return crystal.atoms.flatMap(({ entry, index }) => {
+    if (!kept.has(index)) return [{ at: entry.item, text: '' }]
+    if (fractions) return fractionEdits(task, entry.position!, fractions)
+    return task.rotation ? turnedEdits(entry.position!, task.rotation) : []
+  })
+}
+
+/** Indices of the atoms that stay: of those that a translation of the new lattice carries into each other, the first. */
+function firstOfEach({ crystal, change }: Task): ReadonlySet<number> | undefined {
+  const fold = Math.round(1 / Math.abs(determinant(change)))
+  if (fold === 1) return new Set(crystal.atoms.map(atom => atom.index))
+  const { symmetry } = crystal
+  if (symmetry?.translationsFold !== fold) return undefined
+  const seen = new Set<number>()
+  const kept = new Set<number>()
+  crystal.atoms.forEach((atom, i) => {
+    const site = symmetry.primitiveAtomOf[i]
+    if (!seen.has(site)) kept.add(atom.index)
+    seen.add(site)
+  })
+  return kept
+}
+
+function fractionEdits({ lattice, stays }: Task, position: VectorValue, matrix: Mat3): TextEdit[] {
+  const items = itemsOf(position)
+  const columns = transpose(matrix)
+  return items.map(({ at }, j) => {
+    if (j >= lattice.dimension) return { at, text: items[j].text }
+    const times = columns[j].map((x, i) => (i < lattice.dimension ? rational(x) : NONE))
+    return { at, text: writeSum(wrapped(sumOf(items, times)), stays) }
+  })
+}
+const NONE: Fraction = { p: 0, q: 1 }
+
+/** Cartesian components of a vector that is turned with the crystal. */
+function turnedEdits(vector: VectorValue, rotation: Mat3, scale = 1): TextEdit[] {
+  const items = itemsOf(vector)
+  const [x, y, z] = [0, 1, 2].map(i => items[i]?.value ?? 0)
+  const turned = combine([x, y, z], rotation)
+  return items.map(({ at }, i) => ({ at, text: formatCoordinate(turned[i] * scale) }))
+}
+
+// k-points
+
+function pointEdits(task: Task): TextEdit[] {
+  const { crystal, cell, change, rotation } = task
+  const { document } = crystal
+  const frame = document.frames.points
+  const vectors = (document.points?.items ?? []).flatMap(({ coordinates }) => coordinates ?? [])
+  if (frame === 'primitive') return vectors.flatMap(vector => kEdits(task, vector, change))
+  if (frame === 'conventional') return vectors.flatMap(vector => kEdits(task, vector, cell.change))
+  const factor = frame === '2pi/a' ? unitFactor(task) : 1
+  if (!rotation && factor === 1) return []
+  return vectors.flatMap(vector => turnedEdits(vector, rotation ?? IDENTITY, factor))
+}
+
+/** k-fractions are columns: κ′ = W κ, where W gives the new vectors in terms of the old ones. */
+function kEdits({ old, stays }: Task, vector: VectorValue, matrix: Mat3): TextEdit[] {
+  const items = itemsOf(vector)
+  return items.map(({ at, text }, i) => {
+    if (i >= old.dimension) return { at, text }
+    const times = items.map((_, j) => (j < old.dimension ? rational(matrix[i][j]) : NONE))
+    return { at, text: writeSum(sumOf(items, times), stays) }
+  })
+}
+
+/** How many units 2π/a of the new text one of the old is. */
+function unitFactor({ block, parameters }: Task): number {
+  const before = block.parameters.a?.value
+  const after = parameters ? parameters.a : before
+  return before && after && !isSame(before, after) ? after / before : 1
+}
+
+/**
+ * Labels of the book that the path uses: those that the new lattice's book has too stay as they are, the others become
+ * points of the file.
+ */
+function labelEdits(task: Task): { edits: TextEdit[]; kept: boolean } {
+  const { crystal, text, lattice, rotation = IDENTITY } = task
+  const { document } = crystal
+  if (document.labels === 'none' || !crystal.book) return { edits: [], kept: true }
+  const found = crystal.bookMatch(document.labels, lattice)
+  const there = new Map(
+    found?.points.map(({ label, fraction }) => [label, combine(fraction, lattice.reciprocal)]),
+  )
+  const lost: [string, string][] = []
+  let kept = true
+  for (const label of bookLabels(crystal)) {
+    const k = combine(crystal.bookPoints.get(label)!.cartesian, rotation)
+    const now = there.get(label)
+    if (!now) lost.push([label, formatVector(stated(task, k))])
+    else if (distance(k, now) > SAME_POINT * norm(lattice.reciprocal[0])) kept = false
+  }
+  if (lost.length === 0) return { edits: [], kept }
+  const edits = document.points
+    ? insertKeys(text, document.points, lost)
+    : insertKeys(text, document, [['points', `{${lost.map(([label, k]) => `${label}: ${k}`).join(', ')}}`]])
+  return { edits, kept }
+}
+
+/** Two k are one when they differ by less, relative to a reciprocal vector. */
+const SAME_POINT = 1e-6
+
+/** The labels of the book that the path, or a point between others, uses. */
+function bookLabels({ document, book, fileDefines, bookPoints }: Crystal): string[] {
+  const written = (document.path?.pieces ?? []).flatMap(piece => piece.labels.map(({ label }) => label))
+  const ends = (document.points?.items ?? []).flatMap(
+    point => point.between?.ends.map(({ label }) => label) ?? [],
+  )
+  const own = document.path?.recommended ? (book?.path.flat() ?? []) : []
+  return [...new Set([...written, ...ends, ...own])].filter(
+    label => !fileDefines(label) && bookPoints.has(label),
+  )
+}
+
+/** A Cartesian k of the new text in the frame of the file's points. */
+function stated({ crystal, lattice, parameters, block }: Task, k: Vec3): number[] {
+  const a = (parameters ? parameters.a : block.parameters.a?.value) ?? 1
+  const axes: Record<typeof crystal.document.frames.points, Mat3> = {
+    primitive: lattice.reciprocal,
+    conventional: lattice.conventionalReciprocal,
+    cartesian: IDENTITY,
+    '2pi/a': mapMatrix(IDENTITY, x => (x * 2 * Math.PI) / a),
+  }
+  return combine(k, inverse(axes[crystal.document.frames.points])).slice(0, lattice.dimension)
+}
+
+// Mesh and supercell
+
+/**
+ * A mesh on other reciprocal vectors. κ = (n + s)/N becomes κ′ = Wκ. The same points are a mesh N′ with N′ = diag where
+ * R = N′ W N⁻¹ is whole-numbered with determinant ±1; its shift is R s. Where no N′ does that, steps as fine as the old
+ * ones are taken, from Γ on.
+ */
+function meshEdits(task: Task, mesh: MeshBlock): { edits: TextEdit[]; kept: boolean } {
+  const { old, lattice, change } = task
+  const { dimension } = old
+  const shift = mesh.shift
+  if (!mesh.divisions) {
+    const isPermuted = change.every(row => row.filter(x => Math.abs(x) > SAME).length === 1)
+    if (!shift || isPermuted) return { edits: shift ? shiftEdits(task, shift, change) : [], kept: isPermuted }
+    return { edits: zeroEdits(shift), kept: false }
+  }
+  const items = itemsOf(mesh.divisions)
+  const before = [0, 1, 2].map(i => (i < dimension ? (items[i]?.value ?? 1) : 1))
+  const exactly = before.map((_, i) => (i < dimension ? commonDivisions(change[i], before) : 1))
+  const isSameMesh = isSame(product(exactly) * Math.abs(determinant(change)), product(before))
+  const steps = before.map((n, i) => norm(old.reciprocal[i]) / n)
+  const nearby = before.map((_, i) =>
+    i < dimension ? divisionsFor(norm(lattice.reciprocal[i]), finest(change[i], steps)) : 1,
+  )
+  const after = isSameMesh ? exactly : nearby
+  const edits: TextEdit[] = items.map(({ at }, i) => ({ at, text: String(after[i]) }))
+  if (!shift) return { edits, kept: isSameMesh }
+  if (!isSameMesh) return { edits: [...edits, ...zeroEdits(shift)], kept: false }
+  const matrix = change.map((row, i) => row.map((x, j) => (after[i] * x) / before[j])) as unknown as Mat3
+  return { edits: [...edits, ...shiftEdits(task, shift, matrix)], kept: true }
+}
+
+const product = (numbers: readonly number[]): number => numbers.reduce((x, y) => x * y, 1)
+
+/** The smallest n for which every n·wⱼ/Nⱼ is whole. */
+function commonDivisions(row: Vec3, divisions: readonly number[]): number {
+  return row.reduce((common, x, j) => {
+    const { p, q } = rational(x)
+    if (p === 0) return common
+    const needed = (q * divisions[j]) / gcd(Math.abs(p), q * divisions[j])
+    return (common / gcd(common, needed)) * needed
+  }, 1)
+}
+
+const gcd = (p: number, q: number): number => (q === 0 ? p : gcd(q, p % q))
+
+/** The finest of the old steps along the directions that a new vector is made of. */
+const finest = (row: Vec3, steps: readonly number[]): number =>
+  Math.min(...steps.filter((_, j) => Math.abs(row[j]) > SAME))
+const divisionsFor = (length: number, step: number): number => Math.max(1, Math.ceil(length / step - SAME))
+
+function shiftEdits({ old, stays }: Task, shift: VectorValue, matrix: Mat3): TextEdit[] {
+  const items = itemsOf(shift)
+  return items.map(({ at, text }, i) => {
+    if (i >= old.dimension) return { at, text }
+    const sum = sumOf(
+      items,
+      items.map((_, j) => (j < old.dimension ? rational(matrix[i][j]) : NONE)),
+    )
+    return { at, text: writeSum(plusWhole(sum, -Math.floor(sum.value + SAME)), stays) }
+  })
+}
+
+const zeroEdits = (vector: VectorValue): TextEdit[] => itemsOf(vector).map(({ at }) => ({ at, text: '0' }))
+
+/** The rows of a supercell in terms of the new vectors: S′ = S W⁻¹, its vectors renumbered where the axes were. */
+function supercellEdits({ crystal, text, change }: Task): TextEdit[] | undefined {
+  const { supercell, document } = crystal
+  const block = document.supercell
+  if (!block) return []
+  if (!supercell) return undefined
+  const carried = mapMatrix(multiply(supercell, inverse(change)), round)
+  if (!carried.every(row => row.every(Number.isInteger))) return undefined
+  const isPermuted = change.every(row => row.filter(x => x !== 0).length === 1 && row.every(Number.isInteger))
+  const turnsOver = determinant(carried) * determinant(supercell) < 0
+  const after = isPermuted
+    ? mapMatrix(multiply(change, carried), round)
+    : mapMatrix(carried, x => (turnsOver ? 0 - x : x))
+  const [first] = block.rows
+  if (block.diagonal && after.every((row, i) => row.every((x, j) => i === j || x === 0)))
+    return itemsOf(first!).map(({ at }, i) => ({ at, text: String(after[i][i]) }))
+  if (block.diagonal) {
+    const { dimension } = crystal
+    const rows = after.slice(0, dimension).map(row => `[${row.slice(0, dimension).join(', ')}]`)
+    return [replaceValue(text, block, `[${rows.join(', ')}]`)]
+  }
+  return block.rows.flatMap((row, i) => itemsOf(row!).map(({ at }, j) => ({ at, text: String(after[i][j]) })))
+}
+
+/** A whole number where the arithmetic left one, up to rounding. */
+const round = (x: number): number => (Math.abs(x - Math.round(x)) < 1e-6 ? Math.round(x) + 0 : x)
