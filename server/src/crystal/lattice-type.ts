@@ -379,8 +379,10 @@ function planeCell(basis: Mat3, group: readonly Mat3[]): ConventionalCell {
       const axes = rectangular(a, second)
       return { bravais: pointsIn(axes) === 1 ? 'op' : 'oc', axes }
     }
-    default:
-      return { bravais: 'mp', axes: oblique(IDENTITY[0], IDENTITY[1]) }
+    default: {
+      const acute = dot(basis[0], basis[1]) > 0
+      return { bravais: 'mp', axes: oblique(IDENTITY[0], acute ? negate(IDENTITY[1]) : IDENTITY[1]) }
+    }
   }
 }
 
