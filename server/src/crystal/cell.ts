@@ -65,7 +65,7 @@ export function anglesPossible(alpha: number, beta: number, gamma: number): { po
   ]
   for (const [name, value] of angles) {
     const limit = value > 90 ? 180 : 0
-    const by = limit === 180 ? value - 180 : -value
+    const by = limit === 180 ? value - 180 : 0 - value
     if (!(by < -ANGLE_MARGIN)) return { possible: false, reason: 'range', name, value, limit, by }
   }
   const sum = alpha + beta + gamma

@@ -16,6 +16,7 @@ import {
   add,
   angle,
   carefulCombine,
+  cross,
   determinant,
   dot,
   IDENTITY,
@@ -41,6 +42,7 @@ export type Solid =
 
 export interface VoronoiVector {
   readonly vector: Vec3
+  readonly length: number
   /** Whole numbers: the vector as a combination of the rows given. */
   readonly coefficients: Vec3
 }
@@ -48,13 +50,13 @@ export interface VoronoiVector {
 export interface Reduction {
   readonly dimension: Dimension
   /**
-   * The shorter vectors of the superbase, shortest first, with the handedness of the rows given. In two and one
-   * dimensions the remaining rows are those given.
+   * A shortest possible basis (H. Minkowski, 1905), shortest vector first, with the handedness of the rows given; in
+   * space its angles are all acute or none is. In two and one dimensions the remaining rows are those given.
    */
   readonly basis: Mat3
   /** Whole numbers: basis = change · rows given. */
   readonly change: Mat3
-  /** n + 1 vectors that add up to nothing; the first n are those of `basis`. */
+  /** n + 1 vectors that add up to nothing, shortest first; the first n have the handedness of the rows given. */
   readonly superbase: readonly Vec3[]
   /** pᵢⱼ = −vᵢ·vⱼ for each of `PAIRS[dimension]`, none below zero by more than rounding. */
   readonly products: readonly number[]
@@ -93,7 +95,7 @@ export const PAIRS: Record<Dimension, readonly (readonly [number, number])[]> = 
 /** A point this near to a wall is on it: in parts of the cell's inradius. */
 const BOUNDARY = 1e-6
 /** For cells much longer than wide: the rounding of long vectors, in parts of the cell's size, must not pass for shape. */
-const BOUNDARY_OF_SIZE = 1e-9
+const BOUNDARY_OF_SIZE = 4e-9
 /** … and at most this part of the inradius, so that the cell keeps all its directions whatever its proportions. */
 const BOUNDARY_AT_MOST = 1e-3
 /** An edge is made obtuse while it is inside out by more than this part of the shortest vector. */
@@ -107,18 +109,20 @@ const MOST_ROUNDS = 400
 
 /**
  * Distance below which two things about a Voronoi cell are one: 10⁻⁶ of its inradius, or, for needles and plates more
- * than a thousand times longer than thin, 10⁻⁹ of half the sum of its edges.
+ * than some hundred times longer than thin, 4·10⁻⁹ of half the sum of its edges.
  */
 const cellTolerance = (inradius: number, size: number): number =>
   Math.min(Math.max(BOUNDARY * inradius, BOUNDARY_OF_SIZE * size), BOUNDARY_AT_MOST * inradius)
 
-/** Work space: up to four vectors and their whole coefficients in the rows given. One reduction runs at a time. */
+/** Work space, for one reduction at a time: the vectors of the superbase and their coefficients in the rows given … */
 const v = new Float64Array(12)
 const m = new Float64Array(12)
-/** An upper bound on the number of superbase vectors is four; products and edge vectors are one a pair. */
+/** … and the product and the edge vector of each pair. */
 const p = new Float64Array(6)
 const e = new Float64Array(18)
-const dual = new Float64Array(12)
+
+const vectorAt = (i: number): Vec3 => [v[3 * i] + 0, v[3 * i + 1] + 0, v[3 * i + 2] + 0]
+const coefficientsAt = (i: number): Vec3 => [m[3 * i] + 0, m[3 * i + 1] + 0, m[3 * i + 2] + 0]
 
 const product = (i: number, j: number): number =>
   v[3 * i] * v[3 * j] + v[3 * i + 1] * v[3 * j + 1] + v[3 * i + 2] * v[3 * j + 2]
@@ -180,45 +184,22 @@ function shortenPairs(n: number): boolean {
   return changed
 }
 
-/** Fill `p`, `dual` and `e` from the superbase; gives the signed content of the first n vectors. */
-function measure(n: number, rows: Mat3): number {
-  const normal1 = rows[1]
-  const normal2 = rows[2]
-  const ax = v[0],
-    ay = v[1],
-    az = v[2]
-  const bx = n > 1 ? v[3] : normal1[0],
-    by = n > 1 ? v[4] : normal1[1],
-    bz = n > 1 ? v[5] : normal1[2]
-  const cx = n > 2 ? v[6] : normal2[0],
-    cy = n > 2 ? v[7] : normal2[1],
-    cz = n > 2 ? v[8] : normal2[2]
-  const ux = by * cz - bz * cy,
-    uy = bz * cx - bx * cz,
-    uz = bx * cy - by * cx
-  const content = ax * ux + ay * uy + az * uz
-  const d = 1 / content
-  dual.fill(0)
-  dual[0] = ux * d
-  dual[1] = uy * d
-  dual[2] = uz * d
-  if (n > 1) {
-    dual[3] = (cy * az - cz * ay) * d
-    dual[4] = (cz * ax - cx * az) * d
-    dual[5] = (cx * ay - cy * ax) * d
-  }
-  if (n > 2) {
-    dual[6] = (ay * bz - az * by) * d
-    dual[7] = (az * bx - ax * bz) * d
-    dual[8] = (ax * by - ay * bx) * d
-  }
-  const pairs = PAIRS[n as Dimension]
-  for (let k = 0; k < pairs.length; k++) {
-    const [i, j] = pairs[k]
+/** Fill `p` and `e` from the superbase. */
+function measure(n: Dimension, rows: Mat3): void {
+  const a = vectorAt(0)
+  const b = n > 1 ? vectorAt(1) : rows[1]
+  const c = n > 2 ? vectorAt(2) : rows[2]
+  const normal = cross(b, c)
+  const content = dot(a, normal)
+  const dual: Vec3[] = [scale(normal, 1 / content)]
+  if (n > 1) dual.push(scale(cross(c, a), 1 / content))
+  if (n > 2) dual.push(scale(cross(a, b), 1 / content))
+  dual.push([0, 0, 0])
+  for (let k = 0; k < PAIRS[n].length; k++) {
+    const [i, j] = PAIRS[n][k]
     p[k] = -product(i, j)
-    for (let x = 0; x < 3; x++) e[3 * k + x] = p[k] * (dual[3 * i + x] - dual[3 * j + x])
+    for (let x = 0; x < 3; x++) e[3 * k + x] = p[k] * (dual[i][x] - dual[j][x])
   }
-  return content
 }
 
 const edgeLength = (k: number): number => Math.hypot(e[3 * k], e[3 * k + 1], e[3 * k + 2])
@@ -227,8 +208,8 @@ const edgeLength = (k: number): number => Math.hypot(e[3 * k], e[3 * k + 1], e[3
  * Selling's steps until no product is positive. Each shortens the sum of the squares by 2 vᵢ·vⱼ or more, so they end;
  * the bound on their number only guards against rounding. Every step turns the handedness over; their number is returned.
  */
-function makeObtuse(n: number, rows: Mat3): number {
-  const pairs = PAIRS[n as Dimension]
+function makeObtuse(n: Dimension, rows: Mat3): number {
+  const pairs = PAIRS[n]
   for (let step = 0; step < MOST_ROUNDS; step++) {
     measure(n, rows)
     let shortest = Number.POSITIVE_INFINITY
@@ -255,9 +236,6 @@ function sortByLength(count: number): number {
   return exchanges
 }
 
-const vectorAt = (i: number): Vec3 => [v[3 * i] + 0, v[3 * i + 1] + 0, v[3 * i + 2] + 0]
-const coefficientsAt = (i: number): Vec3 => [m[3 * i] + 0, m[3 * i + 1] + 0, m[3 * i + 2] + 0]
-
 /**
  * Reduce a lattice basis to an obtuse superbase.
  * @param rows lattice vectors, one a row, in any one unit. In two (one) dimensions the rows beyond the second (first)
@@ -283,9 +261,16 @@ export function reduce(rows: Mat3, dimension: Dimension): Reduction {
     refresh(rows, n + 1)
   }
   turns += sortByLength(n + 1)
-  if (turns % 2 === 1 && n > 1) swap(0, 1)
-  const content = Math.abs(measure(n, rows))
-  return describe(rows, dimension, content)
+  if (turns % 2 === 1) turnOver(n)
+  refresh(rows, n + 1)
+  measure(n, rows)
+  return describe(rows, n)
+}
+
+/** Change the handedness of the superbase, which stays obtuse. */
+function turnOver(n: Dimension): void {
+  if (n === 2) swap(1, 2)
+  else for (let i = 0; i <= n; i++) negate(i)
 }
 
 function completeSuperbase(n: number): void {
@@ -297,73 +282,151 @@ function completeSuperbase(n: number): void {
 }
 
 /** Make the result out of the work space. */
-function describe(rows: Mat3, dimension: Dimension, content: number): Reduction {
-  const n = dimension
+function describe(rows: Mat3, n: Dimension): Reduction {
+  const voronoi = voronoiVectors(rows, n)
   const superbase: Vec3[] = []
-  const coefficients: Vec3[] = []
-  for (let i = 0; i <= n; i++) {
-    superbase.push(vectorAt(i))
-    coefficients.push(coefficientsAt(i))
-  }
-  const voronoi: VoronoiVector[] = []
-  let shortest = Number.POSITIVE_INFINITY
-  for (let subset = 1; subset < (1 << (n + 1)) - 1; subset++) {
-    const first = 31 - Math.clz32(subset & -subset)
-    const others = subset & (subset - 1)
-    let vector = superbase[first]
-    let sum = coefficients[first]
-    if (others !== 0) {
-      vector = add(vector, voronoi[others - 1].vector)
-      sum = add(sum, voronoi[others - 1].coefficients)
-    }
-    voronoi.push({ vector, coefficients: sum })
-    shortest = Math.min(shortest, norm(vector))
-  }
+  for (let i = 0; i <= n; i++) superbase.push(voronoi[(1 << i) - 1].vector)
   const products: number[] = []
   const edges: Vec3[] = []
-  let size = 0
+  const lengths: number[] = []
   for (let k = 0; k < PAIRS[n].length; k++) {
     products.push(p[k])
     edges.push([e[3 * k], e[3 * k + 1], e[3 * k + 2]])
-    size += edgeLength(k) / 2
+    lengths.push(edgeLength(k))
   }
-  const tolerance = cellTolerance(shortest / 2, size)
-  const present = presentEdges(n, products, edges, tolerance / 2)
+  const least = voronoi.reduce((x, { length }) => Math.min(x, length), Number.POSITIVE_INFINITY)
+  const size = lengths.reduce((x, y) => x + y) / 2
+  const tolerance = cellTolerance(least / 2, size)
+  const present = presentEdges(n, products, lengths, tolerance / 2)
+  const { basis, change } = shortest(rows, n, voronoi)
   return {
-    dimension,
-    basis: [superbase[0], n > 1 ? superbase[1] : rows[1], n > 2 ? superbase[2] : rows[2]],
-    change: [coefficients[0], n > 1 ? coefficients[1] : IDENTITY[1], n > 2 ? coefficients[2] : IDENTITY[2]],
+    dimension: n,
+    basis,
+    change,
     superbase,
     products,
     edges,
     present,
     voronoi,
     kind: solidOf(n, present),
-    volume: content / (n > 2 ? 1 : n > 1 ? norm(rows[2]) : norm(rows[1]) * norm(rows[2])),
+    volume: contentOf(basis, n),
     tolerance,
   }
+}
+
+/** The sums of superbase vectors, each with its opposite, which is the sum of all others. */
+function voronoiVectors(rows: Mat3, n: Dimension): VoronoiVector[] {
+  const all = (1 << (n + 1)) - 1
+  const voronoi: VoronoiVector[] = new Array(all - 1)
+  for (let subset = 1; subset < 1 << n; subset++) {
+    const first = coefficientsAt(31 - Math.clz32(subset & -subset))
+    const others = subset & (subset - 1)
+    const coefficients = others === 0 ? first : add(first, voronoi[others - 1].coefficients)
+    const vector = tidy(carefulCombine(coefficients, rows))
+    const length = norm(vector)
+    voronoi[subset - 1] = { vector, length, coefficients }
+    voronoi[all - subset - 1] = { vector: opposite(vector), length, coefficients: opposite(coefficients) }
+  }
+  return voronoi
+}
+
+const opposite = (u: Vec3): Vec3 => [0 - u[0], 0 - u[1], 0 - u[2]]
+
+/** Sets of the first n superbase vectors, one of each class modulo 2, single vectors first. */
+const CLASSES: Record<Dimension, readonly number[]> = { 1: [1], 2: [1, 2, 3], 3: [1, 2, 4, 3, 5, 6, 7] }
+
+/**
+ * The shortest basis: the shortest vector of the lattice, then always the shortest that makes a basis with those before.
+ * In up to three dimensions all of them are Voronoi vectors, because each is the shortest of its class modulo 2; and such
+ * vectors make a basis as soon as they are independent modulo 2.
+ */
+function shortest(
+  rows: Mat3,
+  n: Dimension,
+  voronoi: readonly VoronoiVector[],
+): { basis: Mat3; change: Mat3 } {
+  const chosen: number[] = []
+  const spanned = new Set([0])
+  while (chosen.length < n) {
+    let best = 0
+    let length = Number.POSITIVE_INFINITY
+    for (const set of CLASSES[n]) {
+      const candidate = voronoi[set - 1].length
+      if (spanned.has(set) || candidate >= length * (1 - SAME_LENGTH)) continue
+      best = set
+      length = candidate
+    }
+    chosen.push(best)
+    for (const set of [...spanned]) spanned.add(set ^ best)
+  }
+  const signs = bestSigns(chosen.map(set => voronoi[set - 1].vector))
+  if (handednessOf(chosen) * signs.reduce((x, y) => x * y) < 0) {
+    // Turning all three over keeps their angles; in the plane only the second can be turned.
+    for (let i = n === 2 ? 1 : 0; i < n; i++) signs[i] = -signs[i]
+  }
+  const basis = [...rows]
+  const change = [...IDENTITY]
+  chosen.forEach((set, i) => {
+    basis[i] = tidy(scale(voronoi[set - 1].vector, signs[i]))
+    change[i] = tidy(scale(voronoi[set - 1].coefficients, signs[i]))
+  })
+  return { basis: basis as unknown as Mat3, change: change as unknown as Mat3 }
+}
+
+/** Determinant of sets of superbase vectors, written as rows of zeros and ones. */
+function handednessOf(sets: readonly number[]): number {
+  const row = (i: number): Vec3 =>
+    i < sets.length ? [sets[i] & 1, (sets[i] >> 1) & 1, (sets[i] >> 2) & 1] : IDENTITY[i]
+  return determinant([row(0), row(1), row(2)])
+}
+
+/** Signs that make the angles of three vectors all acute or none acute, whichever is possible. */
+function bestSigns(vectors: readonly Vec3[]): number[] {
+  const signs = vectors.map(() => 1)
+  if (vectors.length < 3) return signs
+  const [u, v, w] = vectors
+  const sign = (a: Vec3, b: Vec3): number => {
+    const d = dot(a, b)
+    return Math.abs(d) <= ACUTE * norm(a) * norm(b) ? 0 : Math.sign(d)
+  }
+  const [uv, uw, vw] = [sign(u, v), sign(u, w), sign(v, w)]
+  const wanted = uv * uw * vw > 0 ? 1 : -1
+  const fits = (s: number) => s === 0 || s === wanted
+  for (const sv of [1, -1])
+    for (const sw of [1, -1]) if (fits(uv * sv) && fits(uw * sw) && fits(vw * sv * sw)) return [1, sv, sw]
+  return signs
+}
+
+function contentOf(rows: Mat3, n: Dimension): number {
+  if (n === 3) return Math.abs(determinant(rows))
+  return n === 2 ? norm(cross(rows[0], rows[1])) : norm(rows[0])
 }
 
 /** Which edges there are. Those kept must join the superbase into one piece, or the cell would be flat. */
 function presentEdges(
   n: Dimension,
   products: readonly number[],
-  edges: readonly Vec3[],
+  lengths: readonly number[],
   shortest: number,
 ): number {
-  const order = edges.map((_, k) => k).sort((k, l) => norm(edges[l]) - norm(edges[k]))
   let present = 0
-  for (const k of order)
-    if ((products[k] > 0 && norm(edges[k]) > shortest) || !isJoined(n, present)) present |= 1 << k
+  for (let k = 0; k < products.length; k++) if (products[k] > 0 && lengths[k] > shortest) present |= 1 << k
+  while (!isJoined(n, present)) {
+    let longest = -1
+    for (let k = 0; k < lengths.length; k++)
+      if (!(present & (1 << k)) && !(longest >= 0 && lengths[k] <= lengths[longest])) longest = k
+    present |= 1 << longest
+  }
   return present
 }
 
 function isJoined(n: Dimension, present: number): boolean {
   let reached = 1
   for (let round = 0; round < n; round++)
-    PAIRS[n].forEach(([i, j], k) => {
-      if (present & (1 << k) && reached & ((1 << i) | (1 << j))) reached |= (1 << i) | (1 << j)
-    })
+    for (let k = 0; k < PAIRS[n].length; k++) {
+      const both = (1 << PAIRS[n][k][0]) | (1 << PAIRS[n][k][1])
+      if (present & (1 << k) && reached & both) reached |= both
+    }
   return reached === (1 << (n + 1)) - 1
 }
 
@@ -380,85 +443,15 @@ function solidOf(n: Dimension, present: number): Solid {
 }
 
 export interface ShortBasis {
-  /** Shortest first, with the handedness of the rows given; in space their angles are all acute or none is. */
   readonly basis: Mat3
-  /** Whole numbers: basis = change · rows given. */
   readonly change: Mat3
   readonly lengths: readonly number[]
 }
 
-/**
- * The shortest possible basis (H. Minkowski, 1905): the first vector is the shortest of the lattice, each next one the
- * shortest that makes a basis with those before. In up to three dimensions all of them are Voronoi vectors, because a
- * vector of such a basis is the shortest in its class modulo 2.
- */
+/** The shortest basis alone, as `Reduction` has it, with its lengths. */
 export function shortBasis(rows: Mat3, dimension: Dimension): ShortBasis {
-  const { voronoi } = reduce(rows, dimension)
-  const candidates = voronoi
-    .filter((_, k) => k + 1 <= voronoi.length - k)
-    .map(({ vector, coefficients }) => ({
-      vector: tidy(vector),
-      coefficients: tidy(coefficients),
-      length: norm(vector),
-    }))
-  const chosen: typeof candidates = []
-  while (chosen.length < dimension) {
-    let best: (typeof candidates)[number] | undefined
-    for (const c of candidates)
-      if (
-        isNewModulo2(
-          c.coefficients,
-          chosen.map(x => x.coefficients),
-        ) &&
-        (!best || c.length < best.length * (1 - SAME_LENGTH))
-      )
-        best = c
-    chosen.push(best!)
-  }
-  const signs = bestSigns(chosen.map(x => x.vector))
-  const basis = [...rows]
-  const change = [...IDENTITY]
-  chosen.forEach(({ vector, coefficients }, i) => {
-    basis[i] = tidy(scale(vector, signs[i]))
-    change[i] = tidy(scale(coefficients, signs[i]))
-  })
-  if (determinant(change as unknown as Mat3) < 0) {
-    // Turning all three over keeps their angles; in the plane only the second can be turned.
-    for (let i = dimension === 2 ? 1 : 0; i < dimension; i++) {
-      basis[i] = tidy(scale(basis[i], -1))
-      change[i] = tidy(scale(change[i], -1))
-    }
-  }
-  return {
-    basis: basis as unknown as Mat3,
-    change: change as unknown as Mat3,
-    lengths: basis.slice(0, dimension).map(norm),
-  }
-}
-
-/** Is a vector of whole numbers independent of others modulo 2, as it must be to make a basis with them? */
-function isNewModulo2(u: Vec3, others: readonly Vec3[]): boolean {
-  const parity = (w: Vec3): number => w.reduce((bits, x, i) => bits | (Math.abs(x % 2) << i), 0)
-  const spanned = new Set([0])
-  for (const other of others) for (const s of [...spanned]) spanned.add(s ^ parity(other))
-  return !spanned.has(parity(u))
-}
-
-/** Signs that make the angles all acute or none acute, whichever the vectors allow. */
-function bestSigns(vectors: readonly Vec3[]): number[] {
-  const signs = vectors.map(() => 1)
-  if (vectors.length < 3) return signs
-  const small = vectors.map(w => ACUTE * norm(w))
-  const sign = (i: number, j: number): number => {
-    const d = dot(vectors[i], vectors[j])
-    return Math.abs(d) <= small[i] * norm(vectors[j]) ? 0 : Math.sign(d)
-  }
-  const [ab, ac, bc] = [sign(0, 1), sign(0, 2), sign(1, 2)]
-  const want = ab * ac * bc > 0 ? 1 : -1
-  for (const sb of [1, -1])
-    for (const sc of [1, -1])
-      if ([ab * sb, ac * sc, bc * sb * sc].every(s => s === 0 || s === want)) return [1, sb, sc]
-  return signs
+  const { basis, change } = reduce(rows, dimension)
+  return { basis, change, lengths: basis.slice(0, dimension).map(norm) }
 }
 
 /**
