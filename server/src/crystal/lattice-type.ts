@@ -136,8 +136,8 @@ function fullGroup(basis: Mat3, group: readonly Mat3[], dimension: Dimension): M
 
 /** Finite vectors that span a volume, as far as double numbers can tell. */
 export function isLattice(basis: Mat3): boolean {
-  if (!basis.flat().every(Number.isFinite)) return false
-  return Math.abs(determinant(basis)) > ROUNDING * norm(basis[0]) * norm(basis[1]) * norm(basis[2])
+  const volume = Math.abs(determinant(basis))
+  return Number.isFinite(volume) && volume > ROUNDING * norm(basis[0]) * norm(basis[1]) * norm(basis[2])
 }
 
 /** A lattice vector by its whole coefficients. */
