@@ -4,12 +4,12 @@ import { littleCoGroup } from '../crystal/kspace.ts'
 import type { Lattice } from '../crystal/lattice.ts'
 import { countOrbits, isSymmetricMesh, type Mesh, meshPoints } from '../crystal/mesh.ts'
 import { listedPoints, segmentSteps } from '../crystal/path.ts'
-import { angle, type Mat3, norm, type Vec3 } from '../crystal/vector.ts'
+import { add, angle, type Mat3, norm, scale, subtract, type Vec3 } from '../crystal/vector.ts'
 import { fold, placeInZone, zoneNumber } from '../crystal/zone.ts'
 import type { ParameterName, Severity } from '../format/model.ts'
 import type { Unit } from '../crystal/units.ts'
 import type { Crystal, PlacedPoint } from '../meaning/crystal.ts'
-import { lineOfSegment } from '../meaning/placing.ts'
+import { lineHere } from '../meaning/placing.ts'
 import { meshesOf, stepRule, walkedPath } from './sampling.ts'
 import { type Tally, tally } from './findings-json.ts'
 
@@ -264,7 +264,7 @@ function pathReport(crystal: Crystal): PathReport | undefined {
       to: to!.label,
       length: length!,
       points: steps[i] + 1,
-      ...given('line', lineOfSegment(crystal, from!.cartesian, to!.cartesian)),
+      ...given('line', lineLetter(crystal, from!.cartesian, to!.cartesian)),
     }),
   )
   return {
@@ -276,6 +276,12 @@ function pathReport(crystal: Crystal): PathReport | undefined {
     }),
   }
 }
+
+/** The book's letter for the symmetry line that a segment runs along. */
+const lineLetter = (crystal: Crystal, from: Vec3, to: Vec3): string | undefined =>
+  lineHere(crystal, add(from, scale(subtract(to, from), SOMEWHERE)))?.name
+/** An irrational part of the way: no symmetry point lies there, and no line that the segment only crosses. */
+const SOMEWHERE = (3 - Math.sqrt(5)) / 2
 
 function meshReport(crystal: Crystal): Report['mesh'] {
   const meshes = meshesOf(crystal)

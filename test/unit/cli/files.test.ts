@@ -68,7 +68,10 @@ describe('what is found', () => {
 })
 
 describe('what is read', () => {
-  const read = async (content: string | Uint8Array) => readText('f', (world.write('f', content), io()))
+  const read = (content: string | Uint8Array) => {
+    world.write('f', content)
+    return readText('f', io())
+  }
   test('a byte order mark is put aside', async () => {
     expect(await read('\ufefftitle: x\n')).toMatchObject({ text: 'title: x\n', mark: true })
     expect(await read('title: x\n')).toMatchObject({ text: 'title: x\n', mark: false })
