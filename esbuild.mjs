@@ -29,7 +29,14 @@ const common = {
   logLevel: 'warning',
   metafile: true,
 }
-const node = { ...common, platform: 'node', target: 'node20' }
+const node = {
+  ...common,
+  platform: 'node',
+  target: 'node20',
+  // A dependency asks for the address of its own file.
+  define: { ...common.define, 'import.meta.url': 'importMetaUrl' },
+  banner: { js: 'const importMetaUrl = require("node:url").pathToFileURL(__filename).href;' },
+}
 const browser = { ...common, platform: 'browser', target: 'es2022' }
 
 const builds = [
@@ -72,14 +79,16 @@ function present(options) {
 
 /** The licences of all packages that a bundle holds, as their terms ask. */
 function notices(inputs) {
-  const names = new Set(
-    inputs.flatMap(input => /^.*node_modules\/((?:@[^/]+\/)?[^/]+)\//.exec(input)?.[1] ?? []),
+  const folders = new Map(
+    inputs.flatMap(input => {
+      const [, folder, name] = /^(.*node_modules\/((?:@[^/]+\/)?[^/]+))\//.exec(input) ?? []
+      return folder ? [[name, join(root, folder)]] : []
+    }),
   )
-  return [...names].sort().map(notice).join('\n\n')
+  return [...folders].sort().map(notice).join('\n\n')
 }
 
-function notice(name) {
-  const folder = join(root, 'node_modules', name)
+function notice([name, folder]) {
   const { version, license } = JSON.parse(readFileSync(join(folder, 'package.json'), 'utf8'))
   const file = existsSync(folder) && readdirSync(folder).find(entry => /^licen[cs]e/i.test(entry))
   const text = file ? readFileSync(join(folder, file), 'utf8').trim() : `Licence: ${license}`
