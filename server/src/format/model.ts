@@ -65,10 +65,15 @@ export interface VectorValue {
 export const PARAMETER_NAMES = ['a', 'b', 'c', 'alpha', 'beta', 'gamma'] as const
 export type ParameterName = (typeof PARAMETER_NAMES)[number]
 
-/** A key and its value: `key` is the span of the key's own characters, `at` that of the value. */
+/**
+ * A key and its value: `key` is the span of the key's own characters, `at` that of the value. `item` is what to delete
+ * to remove both, with the line break; it is empty where that cannot be done, such as behind an alias. A value behind
+ * an alias has, with all that is in it, the place of the alias.
+ */
 export interface Entry {
   readonly key: Span
   readonly at: Span
+  readonly item: Span
 }
 
 export interface LatticeBlock extends Entry {
@@ -76,6 +81,7 @@ export interface LatticeBlock extends Entry {
   readonly centring?: Sourced<Centring>
   readonly parameters: Partial<Record<ParameterName, NumberValue>>
   readonly height?: NumberValue
+  /** No rows where `vectors` as a whole cannot be read. */
   readonly vectors?: Entry & { readonly rows: readonly (VectorValue | undefined)[] }
   /** The keys that stand in the block, also those whose value could not be read. */
   readonly keys: ReadonlyMap<string, Entry>
@@ -144,6 +150,7 @@ export interface SamplingBlock extends Entry {
   readonly spacing?: NumberValue
   readonly steps?: NumberValue
   readonly total?: NumberValue
+  readonly keys: ReadonlyMap<string, Entry>
 }
 
 export interface MeshBlock extends Entry {
@@ -152,6 +159,7 @@ export interface MeshBlock extends Entry {
   readonly divisions?: VectorValue
   readonly spacing?: NumberValue
   readonly shift?: VectorValue
+  readonly keys: ReadonlyMap<string, Entry>
 }
 
 export interface SupercellBlock extends Entry {
@@ -169,7 +177,10 @@ export interface Allowance {
 export interface LatticeDocument {
   /** Ordinal among the file's documents that hold anything, from 1. */
   readonly number: number
+  /** From its start marker, or the start of the file, up to the next document: every place of a file is in one. */
   readonly at: Span
+  /** Its mapping. */
+  readonly contents: Span
   readonly title?: Sourced<string>
   readonly unit: Unit
   readonly unitEntry?: Entry
@@ -180,7 +191,11 @@ export interface LatticeDocument {
   readonly timeReversal: boolean
   readonly timeReversalEntry?: Entry
   readonly frames: { readonly atoms: AtomFrame; readonly points: PointFrame }
-  readonly framesEntry?: Entry & { readonly atoms?: Entry; readonly points?: Entry }
+  readonly framesEntry?: Entry & {
+    readonly atoms?: Entry
+    readonly points?: Entry
+    readonly keys: ReadonlyMap<string, Entry>
+  }
   readonly labels: BookId
   readonly labelsEntry?: Entry
   readonly points?: Entry & { readonly items: readonly PointEntry[] }

@@ -200,12 +200,10 @@ class PathReader {
   private piece(tokens: readonly Token[], left: Token | undefined, right: Token | undefined): void {
     if (tokens.length === 0) {
       const bar = right ?? left
-      if (bar)
-        this.fail(
-          bar,
-          `No piece of the path stands ${right ? 'before' : 'after'} this \`|\`.`,
-          this.removal(bar),
-        )
+      if (!bar || bar === this.blamed) return
+      const side = right ? 'before' : 'after'
+      this.fail(bar, `No piece of the path stands ${side} this \`|\`.`, this.removal(bar))
+      this.blamed = bar
       return
     }
     const before = this.faults.length
