@@ -30,7 +30,14 @@ import {
   transpose,
   type Vec3,
 } from '../crystal/vector.ts'
-import { insertKeys, removeEntry, replaceValue } from '../format/edits.ts'
+import {
+  insertKeys,
+  removeEntry,
+  removeItems,
+  replaceValue,
+  replaceVector,
+  standsHere,
+} from '../format/edits.ts'
 import {
   type Fraction,
   type LatticeBlock,
@@ -90,26 +97,12 @@ export function restate(crystal: Crystal, text: string, cell: Cell): Restatement
     ...meshes.flatMap(mesh => mesh.edits),
     ...supercell,
   ]
-  const distinct = withoutRepeats(edits)
-  if (!distinct) return undefined
   return {
-    edits: distinct.filter(edit => text.slice(...edit.at) !== edit.text),
+    edits: edits.filter(edit => text.slice(...edit.at) !== edit.text),
     rotation: task.rotation,
     labelsKept: labels.kept,
     meshesKept: meshes.every(mesh => mesh.kept),
   }
-}
-
-/** A number that stands for several by an alias is edited once; undefined where it would have to become two. */
-function withoutRepeats(edits: readonly TextEdit[]): TextEdit[] | undefined {
-  const byPlace = new Map<string, TextEdit>()
-  for (const edit of edits) {
-    const place = edit.at.join()
-    const other = edit.at[0] === edit.at[1] ? undefined : byPlace.get(place)
-    if (other && other.text !== edit.text) return undefined
-    byPlace.set(edit.at[0] === edit.at[1] ? `${place}/${byPlace.size}` : place, edit)
-  }
-  return [...byPlace.values()]
 }
 
 interface Task {
@@ -132,6 +125,7 @@ function taskOf(crystal: Crystal, text: string, cell: Cell): Task | undefined {
   const { document, lattice: old } = crystal
   const block = document.lattice
   if (!old || !block || !crystal.atomsComplete || !pointsAreRead(crystal)) return undefined
+  if (!vectorsOf(crystal).every(vector => isInPlace(text, vector))) return undefined
   const rows = multiply(cell.change, old.conventional)
   const parameters = cell.bravais && freeParameters(cell.bravais, cellParameters(rows))
   const made = parameters
@@ -164,6 +158,20 @@ const isIdentity = (m: Mat3): boolean => m.every((row, i) => distance(row, IDENT
 
 const pointsAreRead = ({ document, points }: Crystal): boolean =>
   (document.points?.items ?? []).every(({ label }) => points.has(label))
+
+/** All vectors of the document that a restatement may touch. */
+const vectorsOf = ({ document }: Crystal): VectorValue[] =>
+  [
+    ...(document.lattice?.vectors?.rows ?? []),
+    ...(document.atoms?.items ?? []).map(({ position }) => position),
+    ...(document.points?.items ?? []).map(({ coordinates }) => coordinates),
+    ...document.meshes.flatMap(({ divisions, shift }) => [divisions, shift]),
+    ...(document.supercell?.rows ?? []),
+  ].filter(vector => vector !== undefined)
+
+/** All read, and none behind an alias: an edit there would be one of another number too. */
+const isInPlace = (text: string, { at, items }: VectorValue): boolean =>
+  standsHere(text, at) && items.every(item => item && standsHere(text, item.at))
 
 /** A parameter that the new lattice block still states with the same value. By vectors, all of them are definitions. */
 function keeps(block: LatticeBlock, parameters: Task['parameters'], name: ParameterName): boolean {
@@ -251,13 +259,14 @@ const formatRows = (rows: readonly Vec3[]): string =>
 const NOTHING: NumberValue = { value: 0, at: [0, 0], text: '0', exact: { p: 0, q: 1 }, decimals: 0, uses: [] }
 const itemsOf = (vector: VectorValue): readonly NumberValue[] => vector.items as readonly NumberValue[]
 
-function rowEdits({ cell, old, stays }: Task, rows: readonly VectorValue[]): TextEdit[] {
+function rowEdits({ text, cell, old, stays }: Task, rows: readonly VectorValue[]): TextEdit[] {
   return rows.flatMap((row, i) => {
     const times = cell.change[i].slice(0, old.dimension).map(rational)
-    return itemsOf(row).map(({ at }, k) => {
+    const numbers = row.items.map((_, k) => {
       const column = rows.map(other => itemsOf(other)[k] ?? NOTHING)
-      return { at, text: writeSum(sumOf(column, times), stays) }
+      return writeSum(sumOf(column, times), stays)
     })
+    return replaceVector(text, row, numbers)
   })
 }
 
@@ -275,11 +284,13 @@ function atomEdits(task: Task): TextEdit[] | undefined {
   const frame = crystal.document.frames.atoms
   const fractions =
     frame === 'cartesian' ? undefined : inverse(frame === 'primitive' ? change : task.cell.change)
-  return crystal.atoms.flatMap(({ entry, index }) => {
-    if (!kept.has(index)) return [{ at: entry.item, text: '' }]
+  const removed = crystal.atoms.filter(({ index }) => !kept.has(index)).map(({ entry }) => entry)
+  const moved = crystal.atoms.flatMap(({ entry, index }) => {
+    if (!kept.has(index)) return []
     if (fractions) return fractionEdits(task, entry.position!, fractions)
-    return task.rotation ? turnedEdits(entry.position!, task.rotation) : []
+    return task.rotation ? turnedEdits(task, entry.position!, task.rotation) : []
   })
+  return [...removeItems(crystal.document.atoms!, removed), ...moved]
 }
 
 /** Indices of the atoms that stay: of those that a translation of the new lattice carries into each other, the first. */
@@ -298,23 +309,27 @@ function firstOfEach({ crystal, change }: Task): ReadonlySet<number> | undefined
   return kept
 }
 
-function fractionEdits({ lattice, stays }: Task, position: VectorValue, matrix: Mat3): TextEdit[] {
+function fractionEdits({ text, lattice, stays }: Task, position: VectorValue, matrix: Mat3): TextEdit[] {
   const items = itemsOf(position)
-  const columns = transpose(matrix)
-  return items.map(({ at }, j) => {
-    if (j >= lattice.dimension) return { at, text: items[j].text }
-    const times = columns[j].map((x, i) => (i < lattice.dimension ? rational(x) : NONE))
-    return { at, text: writeSum(wrapped(sumOf(items, times)), stays) }
+  const numbers = transpose(matrix).map((column, j) => {
+    if (j >= lattice.dimension) return undefined
+    const times = column.map((x, i) => (i < lattice.dimension ? rational(x) : NONE))
+    return writeSum(wrapped(sumOf(items, times)), stays)
   })
+  return replaceVector(text, position, numbers)
 }
 const NONE: Fraction = { p: 0, q: 1 }
 
 /** Cartesian components of a vector that is turned with the crystal. */
-function turnedEdits(vector: VectorValue, rotation: Mat3, scale = 1): TextEdit[] {
+function turnedEdits({ text }: Task, vector: VectorValue, rotation: Mat3, scale = 1): TextEdit[] {
   const items = itemsOf(vector)
   const [x, y, z] = [0, 1, 2].map(i => items[i]?.value ?? 0)
   const turned = combine([x, y, z], rotation)
-  return items.map(({ at }, i) => ({ at, text: formatCoordinate(turned[i] * scale) }))
+  return replaceVector(
+    text,
+    vector,
+    items.map((_, i) => formatCoordinate(turned[i] * scale)),
+  )
 }
 
 // k-points
@@ -328,17 +343,18 @@ function pointEdits(task: Task): TextEdit[] {
   if (frame === 'conventional') return vectors.flatMap(vector => kEdits(task, vector, cell.change))
   const factor = frame === '2pi/a' ? unitFactor(task) : 1
   if (!rotation && factor === 1) return []
-  return vectors.flatMap(vector => turnedEdits(vector, rotation ?? IDENTITY, factor))
+  return vectors.flatMap(vector => turnedEdits(task, vector, rotation ?? IDENTITY, factor))
 }
 
 /** k-fractions are columns: κ′ = W κ, where W gives the new vectors in terms of the old ones. */
-function kEdits({ old, stays }: Task, vector: VectorValue, matrix: Mat3): TextEdit[] {
+function kEdits({ text, old, stays }: Task, vector: VectorValue, matrix: Mat3): TextEdit[] {
   const items = itemsOf(vector)
-  return items.map(({ at, text }, i) => {
-    if (i >= old.dimension) return { at, text }
+  const numbers = items.map((_, i) => {
+    if (i >= old.dimension) return undefined
     const times = items.map((_, j) => (j < old.dimension ? rational(matrix[i][j]) : NONE))
-    return { at, text: writeSum(sumOf(items, times), stays) }
+    return writeSum(sumOf(items, times), stays)
   })
+  return replaceVector(text, vector, numbers)
 }
 
 /** How many units 2π/a of the new text one of the old is. */
@@ -416,7 +432,7 @@ function meshEdits(task: Task, mesh: MeshBlock): { edits: TextEdit[]; kept: bool
   if (!mesh.divisions) {
     const isPermuted = change.every(row => row.filter(x => Math.abs(x) > SAME).length === 1)
     if (!shift || isPermuted) return { edits: shift ? shiftEdits(task, shift, change) : [], kept: isPermuted }
-    return { edits: zeroEdits(shift), kept: false }
+    return { edits: zeroEdits(task, shift), kept: false }
   }
   const items = itemsOf(mesh.divisions)
   const before = [0, 1, 2].map(i => (i < dimension ? (items[i]?.value ?? 1) : 1))
@@ -427,9 +443,13 @@ function meshEdits(task: Task, mesh: MeshBlock): { edits: TextEdit[]; kept: bool
     i < dimension ? divisionsFor(norm(lattice.reciprocal[i]), finest(change[i], steps)) : 1,
   )
   const after = isSameMesh ? exactly : nearby
-  const edits: TextEdit[] = items.map(({ at }, i) => ({ at, text: String(after[i]) }))
+  const edits = replaceVector(
+    task.text,
+    mesh.divisions,
+    items.map((_, i) => String(after[i])),
+  )
   if (!shift) return { edits, kept: isSameMesh }
-  if (!isSameMesh) return { edits: [...edits, ...zeroEdits(shift)], kept: false }
+  if (!isSameMesh) return { edits: [...edits, ...zeroEdits(task, shift)], kept: false }
   const matrix = change.map((row, i) => row.map((x, j) => (after[i] * x) / before[j])) as unknown as Mat3
   return { edits: [...edits, ...shiftEdits(task, shift, matrix)], kept: true }
 }
@@ -453,19 +473,23 @@ const finest = (row: Vec3, steps: readonly number[]): number =>
   Math.min(...steps.filter((_, j) => Math.abs(row[j]) > SAME))
 const divisionsFor = (length: number, step: number): number => Math.max(1, Math.ceil(length / step - SAME))
 
-function shiftEdits({ old, stays }: Task, shift: VectorValue, matrix: Mat3): TextEdit[] {
+function shiftEdits({ text, old, stays }: Task, shift: VectorValue, matrix: Mat3): TextEdit[] {
   const items = itemsOf(shift)
-  return items.map(({ at, text }, i) => {
-    if (i >= old.dimension) return { at, text }
-    const sum = sumOf(
-      items,
-      items.map((_, j) => (j < old.dimension ? rational(matrix[i][j]) : NONE)),
-    )
-    return { at, text: writeSum(plusWhole(sum, -Math.floor(sum.value + SAME)), stays) }
+  const numbers = items.map((_, i) => {
+    if (i >= old.dimension) return undefined
+    const times = items.map((_, j) => (j < old.dimension ? rational(matrix[i][j]) : NONE))
+    const sum = sumOf(items, times)
+    return writeSum(plusWhole(sum, -Math.floor(sum.value + SAME)), stays)
   })
+  return replaceVector(text, shift, numbers)
 }
 
-const zeroEdits = (vector: VectorValue): TextEdit[] => itemsOf(vector).map(({ at }) => ({ at, text: '0' }))
+const zeroEdits = ({ text }: Task, vector: VectorValue): TextEdit[] =>
+  replaceVector(
+    text,
+    vector,
+    vector.items.map(() => '0'),
+  )
 
 /** The rows of a supercell in terms of the new vectors: S′ = S W⁻¹, its vectors renumbered where the axes were. */
 function supercellEdits({ crystal, text, change }: Task): TextEdit[] | undefined {
@@ -482,13 +506,23 @@ function supercellEdits({ crystal, text, change }: Task): TextEdit[] | undefined
     : mapMatrix(carried, x => (turnsOver ? 0 - x : x))
   const [first] = block.rows
   if (block.diagonal && after.every((row, i) => row.every((x, j) => i === j || x === 0)))
-    return itemsOf(first!).map(({ at }, i) => ({ at, text: String(after[i][i]) }))
+    return replaceVector(
+      text,
+      first!,
+      first!.items.map((_, i) => String(after[i][i])),
+    )
   if (block.diagonal) {
     const { dimension } = crystal
     const rows = after.slice(0, dimension).map(row => `[${row.slice(0, dimension).join(', ')}]`)
     return [replaceValue(text, block, `[${rows.join(', ')}]`)]
   }
-  return block.rows.flatMap((row, i) => itemsOf(row!).map(({ at }, j) => ({ at, text: String(after[i][j]) })))
+  return block.rows.flatMap((row, i) =>
+    replaceVector(
+      text,
+      row!,
+      row!.items.map((_, j) => String(after[i][j])),
+    ),
+  )
 }
 
 /** A whole number where the arithmetic left one, up to rounding. */

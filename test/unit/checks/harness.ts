@@ -3,10 +3,13 @@
  */
 import { expect } from 'vitest'
 import { type DocumentFinding, Snapshot } from '../../../server/src/analysis.ts'
-import type { Fix, TextEdit } from '../../../server/src/format/model.ts'
+import { applyEdits } from '../../../server/src/format/edits.ts'
+import type { Fix } from '../../../server/src/format/model.ts'
 import { Workshop } from '../../../server/src/meaning/workshop.ts'
+import { loadSymmetryFromDisk } from '../../../server/src/symmetry-node.ts'
 import { directSymmetry } from '../../../server/src/symmetry-service.ts'
 
+loadSymmetryFromDisk()
 const workshop = new Workshop(directSymmetry)
 
 export const snapshotOf = (text: string): Snapshot => new Snapshot(text, workshop)
@@ -93,15 +96,4 @@ function fixAt(findings: readonly DocumentFinding[], offset: number, { title, ru
 export const fixesOf = (text: string, rule: string): readonly Fix[] =>
   findingsOf(text).flatMap(finding => (finding.rule === rule ? (finding.fixes ?? []) : []))
 
-/** Edits applied at once: their places all refer to the text before. Overlapping edits are a fault of the fix. */
-export function applyEdits(text: string, edits: readonly TextEdit[]): string {
-  const ordered = [...edits].sort((e, f) => f.at[0] - e.at[0] || f.at[1] - e.at[1])
-  let result = text
-  let from = Number.POSITIVE_INFINITY
-  for (const { at, text: replacement } of ordered) {
-    if (at[1] > from) throw new Error(`Edits overlap at ${at.join('–')}.`)
-    result = result.slice(0, at[0]) + replacement + result.slice(at[1])
-    from = at[0]
-  }
-  return result
-}
+export { applyEdits }

@@ -1,4 +1,5 @@
 import { combine, norm, subtract, type Vec3 } from '../../crystal/vector.ts'
+import { removeItems } from '../../format/edits.ts'
 import type { Crystal, PlacedAtom } from '../../meaning/crystal.ts'
 import { length } from '../../meaning/wording.ts'
 import type { Check, Finding } from '../check.ts'
@@ -40,7 +41,13 @@ function finding(crystal: Crystal, first: PlacedAtom, other: PlacedAtom): Findin
     message: `${nameOf(other)} is at the place of ${nameOf(first)}${exactly}${translated}.`,
     facts: { atom: other.index, other: first.index },
     related: [{ at: first.entry.position!.at, message: nameOf(first) }],
-    fixes: [{ title: `Remove ${nameOf(other)}`, safe: false, edits: [{ at: other.entry.item, text: '' }] }],
+    fixes: [
+      {
+        title: `Remove ${nameOf(other)}`,
+        safe: false,
+        edits: removeItems(crystal.document.atoms!, [other.entry]),
+      },
+    ],
   }
 }
 

@@ -1,4 +1,5 @@
 import { CENTRING_TABLES } from '../../crystal/bravais.ts'
+import { removeItems } from '../../format/edits.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import { count } from '../../meaning/wording.ts'
 import type { Check } from '../check.ts'
@@ -32,7 +33,10 @@ export const atomsWrittenOut: Check<Facts> = {
         {
           title: `Keep one of each: remove ${count(surplus.length, 'copy', 'copies')}`,
           safe: true, // The same places are taken by the same atoms.
-          edits: surplus.map(({ entry }) => ({ at: entry.item, text: '' })),
+          edits: removeItems(
+            document.atoms,
+            surplus.map(({ entry }) => entry),
+          ),
         },
       ],
     }
