@@ -205,10 +205,10 @@ space-group: Pnma
 
   test('molecules and hydrides: bonds of hydrogen, and a superhydride under pressure', () => {
     isQuiet(`
-lattice: {bravais: cP, a: 6}
+lattice: {bravais: cP, a: 10}
 atoms:
-  - H: [0.4383, 1/2, 1/2]
-  - H: [0.5617, 1/2, 1/2]
+  - H: [0.463, 1/2, 1/2]
+  - H: [0.537, 1/2, 1/2]
 `)
     // H₃S near 150 GPa: a = 3.089 Å (from memory).
     isQuiet(`

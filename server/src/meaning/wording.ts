@@ -18,7 +18,8 @@ export function plain(x: number, digits = DIGITS): string {
     const power = [...exponent.replace('+', '')].map(c => SUPERSCRIPTS[c]).join('')
     return `${mantissa.replace('-', MINUS)}·10${power}`
   }
-  const text = x.toFixed(digits).replace(/\.?0+$/, '')
+  const fixed = x.toFixed(digits)
+  const text = fixed.includes('.') ? fixed.replace(/\.?0+$/, '') : fixed
   return (text === '-0' ? '0' : text).replace('-', MINUS)
 }
 

@@ -23,7 +23,7 @@ export const atomNearlySpecial: Check<Facts> = {
     'An atom misses a more symmetric place by the rounding of a fraction, which lowers the symmetry of the crystal.',
   why: 'A program finds fewer symmetry operations: more k-points to compute, split degeneracies, and forces that should vanish.',
   wrong:
-    'lattice: {bravais: hP, a: 3.21, c: 5.21}\natoms:\n  - Mg: [0.333, 0.667, 0.25]\n  - Mg: [0.667, 0.333, 0.75]\n',
+    'lattice: {bravais: hP, a: 3.21, c: 5.21}\natoms:\n  - Mg: [0.333, 2/3, 1/4]\n  - Mg: [2/3, 1/3, 3/4]\n',
   right:
     'lattice: {bravais: hP, a: 3.21, c: 5.21}\natoms:\n  - Mg: [1/3, 2/3, 1/4]\n  - Mg: [2/3, 1/3, 3/4]\n',
   *run({ crystal }) {

@@ -25,9 +25,9 @@ export const latticeReverseSetting: Check<Facts> = {
     'The atoms of a rhombohedral crystal are far more symmetric when its hexagonal axes are read in the reverse setting.',
   why: 'Hexagonal axes here are obverse, with lattice points at (2/3, 1/3, 1/3): coordinates of the other setting give another crystal.',
   wrong:
-    'lattice: {bravais: hR, a: 4.38, c: 30.5}\natoms:\n  - Te: [0, 0, 0]\n  - Bi: [2/3, 1/3, 1/15]\n  - Bi: [1/3, 2/3, -1/15]\n  - Te: [2/3, 1/3, 0.88]\n  - Te: [1/3, 2/3, 0.12]\n',
+    'lattice: {bravais: hR, a: 4.38, c: 30.5}\natoms:\n  - Te: [0, 0, 0]\n  - Te: [0, 0, 0.21]\n  - Te: [1/3, 2/3, 1/3 - 0.21]\n  - Bi: [0, 0, 0.4]\n  - Bi: [1/3, 2/3, 1/3 - 0.4]\n',
   right:
-    'lattice: {bravais: hR, a: 4.38, c: 30.5}\natoms:\n  - Te: [0, 0, 0]\n  - Bi: [1/3, 2/3, 1/15]\n  - Bi: [2/3, 1/3, -1/15]\n  - Te: [1/3, 2/3, 0.88]\n  - Te: [2/3, 1/3, 0.12]\n',
+    'lattice: {bravais: hR, a: 4.38, c: 30.5}\natoms:\n  - Te: [0, 0, 0]\n  - Te: [0, 0, 0.21]\n  - Te: [2/3, 1/3, 1/3 - 0.21]\n  - Bi: [0, 0, 0.4]\n  - Bi: [2/3, 1/3, 1/3 - 0.4]\n',
   *run({ crystal, document }) {
     const { lattice, atoms } = crystal
     const block = document.lattice
