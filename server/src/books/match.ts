@@ -79,7 +79,7 @@ export interface BookMatch {
   readonly cell: CellParameters
   /** The numbers on which the coordinates of points depend, with the book's formula in a, b, c, α, β, γ. */
   readonly parameters: readonly { readonly name: string; readonly value: number; readonly formula: string }[]
-  /** An inequality of the variation is an equality within the tolerance: another variation may hold as well. */
+  /** An inequality of the variation is an equality within the tolerance: a small change of the cell leads to another. */
   readonly borderline: boolean
   readonly points: readonly BookPoint[]
   /** Empty where the book recommends no path. */
@@ -91,7 +91,7 @@ export interface BookMatch {
 }
 
 export interface MatchOptions {
-  /** A length: lattices this near to a border or to a higher symmetry count as being there. */
+  /** A length: lattices this near to a higher symmetry have it, those this near to a border are borderline. */
   readonly tolerance: number
   /** The crystal's, where a book tells groups of one lattice type apart; the number decides more cases. */
   readonly spaceGroup?: number
@@ -212,7 +212,9 @@ interface Cell {
   readonly axes: Mat3
   /** The numbers of CELL_NAMES. */
   readonly values: Values
-  /** The same for cells with one length or angle changed by as much as the tolerance can change it. */
+  /** Below this, a length, the vectors of two cells are alike. */
+  readonly step: number
+  /** The numbers of the cells that differ by such a step in one length or angle. */
   readonly shifted: () => readonly Values[]
 }
 
@@ -222,8 +224,8 @@ interface Choice {
   readonly cell: Cell
   /** The book's primitive vectors, whole numbers on the user's. */
   readonly basis: Mat3
-  /** 0: on a border that the book knows; 1: inside; 2: inside within the tolerance. */
-  readonly fit: 0 | 1 | 2
+  /** The variation is that of a border. */
+  readonly border: boolean
   readonly reduced: boolean
 }
 
@@ -239,38 +241,47 @@ function chooseCell(entries: readonly Variation[], lattice: IdealLattice): Choic
       return isBasis(exact, basis) ? [{ variation, cell, basis }] : []
     })
   })
-  const met = pairs.flatMap((pair): Choice[] => {
-    const fit = fitOf(pair.variation, pair.cell)
-    return fit === undefined ? [] : [{ ...pair, fit, reduced: isReduced(pair.variation, pair.cell) }]
-  })
+  const met = pairs.filter(({ variation, cell }) => missOf(variation, cell) <= cell.step)
   // The variations of a book leave no gap; should rounding open one, the cell that misses least is taken.
-  const admissible =
-    met.length > 0
-      ? met
-      : least(pairs, ({ variation, cell }) => missOf(variation, cell)).map(
-          (pair): Choice => ({ ...pair, fit: 2, reduced: false }),
-        )
+  const admissible = (
+    met.length > 0 ? met : least(pairs, ({ variation, cell }) => missOf(variation, cell))
+  ).map(
+    ({ variation, cell, basis }): Choice => ({
+      variation,
+      cell,
+      basis,
+      border: variation.zero.length > 0,
+      reduced: variation.reducedCell.every(condition => isAbove(condition, cell)),
+    }),
+  )
   const reduced = admissible.filter(choice => choice.reduced)
   // Where a centring allows no cell that is reduced in the book's sense, the formulas hold in the smallest one.
   let left = reduced.length > 0 ? reduced : least(admissible, sizeOf)
-  left = least(left, ({ fit }) => fit)
+  left = least(left, ({ border }) => (border ? 0 : 1))
   left = ownCells(left, lattice)
   left = least(left, sizeOf)
   for (const i of [0, 1, 2]) left = least(left, choice => lengthsOf(choice)[i])
   return left[0]
 }
 
-function cellsFor(entry: Variation, { bravais, axes, basis, tolerance }: IdealLattice): Cell[] {
+/**
+ * Borders between variations are no symmetries: the formulas of either side hold however near it is. So a lattice is on a
+ * border only where the zone itself takes the corners on its two sides for one; in parts of the longest axis.
+ */
+const ON_BORDER = 1e-7
+
+function cellsFor(entry: Variation, { bravais, axes, basis }: IdealLattice): Cell[] {
   const measure = bravais === 'aP' ? withReciprocal : (cell: readonly number[]) => cell
   return candidateCells(entry, bravais, axes, basis).map(candidate => {
     const { a, b, c, alpha, beta, gamma } = cellParameters(multiply(candidate, basis))
     const cell = [a, b, c, radians(alpha), radians(beta), radians(gamma)]
-    const reach = Math.max(tolerance, ROUNDING * Math.max(a, b, c))
+    const step = ON_BORDER * Math.max(a, b, c)
     let shifted: readonly Values[] | undefined
     return {
       axes: candidate,
       values: measure(cell),
-      shifted: () => (shifted ??= shiftedCells(cell, reach).map(measure)),
+      step,
+      shifted: () => (shifted ??= shiftedCells(cell, step).map(measure)),
     }
   })
 }
@@ -368,42 +379,36 @@ function withReciprocal(cell: readonly number[]): number[] {
   ]
 }
 
-/** The value of a condition in units of what the tolerance can change of it. */
-function inTolerances(condition: Formula, { values, shifted }: Cell): number {
+/** How far the vectors of a cell must shift, a length, before a condition turns to zero; negative below it. */
+function distanceFromZero(condition: Formula, { values, step, shifted }: Cell): number {
   const value = condition(values)
-  return value / shifted().reduce((sum, other) => sum + Math.abs(condition(other) - value), 0)
+  return (step * value) / shifted().reduce((sum, other) => sum + Math.abs(condition(other) - value), 0)
 }
 
-/** How well a cell meets the conditions of a variation; undefined where it does not, the tolerance allowed for. */
-function fitOf({ positive, zero }: CompiledVariation, cell: Cell): Choice['fit'] | undefined {
-  const missed = positive.filter(condition => condition(cell.values) < 0)
-  const misses = missed.map(condition => -inTolerances(condition, cell))
-  if (misses.some(miss => miss > 1)) return undefined
-  if (zero.length > 0)
-    return zero.every(condition => Math.abs(inTolerances(condition, cell)) <= 1) ? 0 : undefined
-  return misses.every(miss => miss <= MERE_ROUNDING) ? 1 : 2
-}
-/** So small a part of a tolerance is nobody's meaning: on a border, the variation must not hang on rounding. */
-const MERE_ROUNDING = 1e-5
+const isAbove = (condition: Formula, cell: Cell): boolean =>
+  condition(cell.values) >= 0 || distanceFromZero(condition, cell) >= -cell.step
 
-const isReduced = ({ reducedCell }: CompiledVariation, cell: Cell): boolean =>
-  reducedCell.every(condition => condition(cell.values) >= 0 || inTolerances(condition, cell) >= -1)
-
-/** By how many tolerances the conditions are missed at the worst. */
-const missOf = ({ positive, zero }: CompiledVariation, cell: Cell): number =>
-  Math.max(
+/** By how much, a length, a cell misses the conditions of a variation at the worst. */
+function missOf({ positive, zero }: CompiledVariation, cell: Cell): number {
+  const below = positive.filter(condition => condition(cell.values) < 0)
+  return Math.max(
     0,
-    ...positive.map(condition => -inTolerances(condition, cell)),
-    ...zero.map(condition => Math.abs(inTolerances(condition, cell))),
+    ...below.map(condition => -distanceFromZero(condition, cell)),
+    ...zero.map(condition => Math.abs(distanceFromZero(condition, cell))),
   )
+}
 
-const isBorderline = ({ variation: { positive, zero, reducedCell }, cell }: Choice): boolean =>
-  zero.length > 0 || [...positive, ...reducedCell].some(condition => inTolerances(condition, cell) <= 1)
+function isBorderline({ variation, cell, border }: Choice, tolerance: number): boolean {
+  const conditions = [...variation.positive, ...variation.reducedCell]
+  const reach = Math.max(tolerance, cell.step)
+  return border || conditions.some(condition => Math.abs(distanceFromZero(condition, cell)) <= reach)
+}
 
-function shiftedCells(cell: readonly number[], reach: number): number[][] {
+/** An angle changes most by a shift at the end of its shorter side. */
+function shiftedCells(cell: readonly number[], step: number): number[][] {
   const [a, b, c] = cell
-  const turns = [Math.min(b, c), Math.min(a, c), Math.min(a, b)].map(shorter => reach / shorter)
-  return [reach, reach, reach, ...turns].map((step, i) => cell.map((x, j) => (i === j ? x + step : x)))
+  const turns = [Math.min(b, c), Math.min(a, c), Math.min(a, b)].map(shorter => step / shorter)
+  return [step, step, step, ...turns].map((change, i) => cell.map((x, j) => (i === j ? x + change : x)))
 }
 
 /** Carry points, path and lines of the chosen cell into the user's fractions. */
@@ -434,7 +439,7 @@ function carry(choice: Choice, lattice: IdealLattice): Omit<BookMatch, 'book' | 
       value: parameterValues[i],
       formula: printed(entry.parameters![name]),
     })),
-    borderline: isBorderline(choice),
+    borderline: isBorderline(choice, lattice.tolerance),
     points,
     path: variation.path,
     lines: placeLines(variation, carried, lattice),
