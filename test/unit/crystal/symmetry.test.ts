@@ -548,6 +548,14 @@ describe('tolerance', () => {
     expect(offCentre(0.01, 0.1).spaceGroup?.number).toBe(221)
   })
 
+  test('that lets through what is no group is lowered, and that is told', () => {
+    // a and b are alike within it, b and c are, a and c are not.
+    const symmetry = found({ primitive: fromCell('oP', { a: 4, b: 4.0009, c: 4.0018 }).primitive })
+    expect(symmetry.toleranceLowered).toBe(true)
+    expect(symmetry.toleranceUsed).toBeLessThan(TOLERANCE)
+    expect(symmetry.bravais).toBe('oP')
+  })
+
   test('at its very edge gives something that holds within what is told', () => {
     const random = seeded(99)
     for (let i = 0; i < 60; i++) {
