@@ -15,6 +15,7 @@ import {
   mapMatrix,
   norm,
   scale,
+  spanned,
   subtract,
   tidy,
   transpose,
@@ -180,11 +181,6 @@ const isSizeable = (row: Vec3): boolean => {
 /** A plane lattice may be centred like C without c; a chain not at all. */
 const allowsCentring = (centring: Centring, dimension: Dimension): boolean =>
   dimension === 3 || centring === 'P' || (dimension === 2 && centring === 'C')
-
-function spanned(rows: readonly Vec3[]): number {
-  if (rows.length === 3) return Math.abs(determinant(rows as unknown as Mat3))
-  return rows.length === 2 ? norm(cross(rows[0], rows[1])) : norm(rows[0])
-}
 
 /** Complete a plane by its normal, a chain by two: z for the xy-plane, y and z for a chain along ±x. */
 function withNormals(rows: readonly Vec3[]): Mat3 {

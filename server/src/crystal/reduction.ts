@@ -24,6 +24,7 @@ import {
   multiply,
   norm,
   scale,
+  spanned,
   tidy,
   type Vec3,
 } from './vector.ts'
@@ -56,7 +57,7 @@ export interface Reduction {
   readonly basis: Mat3
   /** Whole numbers: basis = change · rows given. */
   readonly change: Mat3
-  /** n + 1 vectors that add up to nothing, shortest first; the first n have the handedness of the rows given. */
+  /** n + 1 vectors that add up to nothing; the first n have the handedness of the rows given. In order of length, in space. */
   readonly superbase: readonly Vec3[]
   /** pᵢⱼ = −vᵢ·vⱼ for each of `PAIRS[dimension]`, none below zero by more than rounding. */
   readonly products: readonly number[]
@@ -237,7 +238,9 @@ function sortByLength(count: number): number {
 }
 
 /**
- * Reduce a lattice basis to an obtuse superbase.
+ * Reduce a lattice basis: its obtuse superbase, the Voronoi vectors and the shortest basis.
+ * However skewed the basis, this ends: whole multiples take out long shears first, as in Euclid's algorithm, and
+ * vectors are made anew from whole coefficients, so that no rounding piles up.
  * @param rows lattice vectors, one a row, in any one unit. In two (one) dimensions the rows beyond the second (first)
  *   are no lattice vectors but must stand at right angles to the lattice and to each other.
  * @throws RangeError when the vectors are flat or not finite: the caller has made sure that they are neither.
@@ -309,7 +312,7 @@ function describe(rows: Mat3, n: Dimension): Reduction {
     present,
     voronoi,
     kind: solidOf(n, present),
-    volume: contentOf(basis, n),
+    volume: spanned(basis.slice(0, n)),
     tolerance,
   }
 }
@@ -346,18 +349,18 @@ function shortest(
   voronoi: readonly VoronoiVector[],
 ): { basis: Mat3; change: Mat3 } {
   const chosen: number[] = []
-  const spanned = new Set([0])
+  const reached = new Set([0])
   while (chosen.length < n) {
     let best = 0
     let length = Number.POSITIVE_INFINITY
     for (const set of CLASSES[n]) {
       const candidate = voronoi[set - 1].length
-      if (spanned.has(set) || candidate >= length * (1 - SAME_LENGTH)) continue
+      if (reached.has(set) || candidate >= length * (1 - SAME_LENGTH)) continue
       best = set
       length = candidate
     }
     chosen.push(best)
-    for (const set of [...spanned]) spanned.add(set ^ best)
+    for (const set of [...reached]) reached.add(set ^ best)
   }
   const signs = bestSigns(chosen.map(set => voronoi[set - 1].vector))
   if (handednessOf(chosen) * signs.reduce((x, y) => x * y) < 0) {
@@ -395,11 +398,6 @@ function bestSigns(vectors: readonly Vec3[]): number[] {
   for (const sv of [1, -1])
     for (const sw of [1, -1]) if (fits(uv * sv) && fits(uw * sw) && fits(vw * sv * sw)) return [1, sv, sw]
   return signs
-}
-
-function contentOf(rows: Mat3, n: Dimension): number {
-  if (n === 3) return Math.abs(determinant(rows))
-  return n === 2 ? norm(cross(rows[0], rows[1])) : norm(rows[0])
 }
 
 /** Which edges there are. Those kept must join the superbase into one piece, or the cell would be flat. */
@@ -456,8 +454,8 @@ export function shortBasis(rows: Mat3, dimension: Dimension): ShortBasis {
 
 /**
  * A basis is needlessly skewed when the product of its lengths exceeds that of the shortest basis by more than this
- * factor. Cells of the literature stay below it, monoclinic ones too whose axes follow the glide planes (C2/c gypsum
- * on the axes with β = 127°: 1.19); beyond it a mesh of equal steps and the coordinates suffer visibly.
+ * factor. Cells of the literature stay below it, monoclinic ones too whose axes follow a glide plane (a = 5.7, c = 6.5,
+ * β = 127° gives 1.19); beyond it a mesh of equal steps and the coordinates suffer visibly.
  */
 export const SKEWED = 1.25
 

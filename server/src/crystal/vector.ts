@@ -46,6 +46,14 @@ export const mapMatrix = (m: Mat3, f: (x: number) => number): Mat3 =>
 /** Angle between two vectors in degrees. */
 export const angle = (u: Vec3, v: Vec3): number => (Math.atan2(norm(cross(u, v)), dot(u, v)) * 180) / Math.PI
 
+/** What one, two or three vectors span: a length, an area or a volume; not negative. */
+export const spanned = (rows: readonly Vec3[]): number =>
+  rows.length === 3
+    ? Math.abs(dot(rows[0], cross(rows[1], rows[2])))
+    : rows.length === 2
+      ? norm(cross(rows[0], rows[1]))
+      : norm(rows[0])
+
 /** Veltkamp's constant 2²⁷ + 1: splits a double into two halves whose products are exact. */
 const SPLITTER = 134217729
 
