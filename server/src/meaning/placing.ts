@@ -83,52 +83,62 @@ export interface Stated {
 /**
  * Which point of a book some numbers mean; with `label`, whether they mean an equivalent of that one.
  * A rounding that moves the point by less than 0.02 Å⁻¹ counts, an exact fit goes before it.
+ * @param lattice the one that the book was matched to.
  */
-export function fitOf(crystal: Crystal, match: BookMatch, stated: Stated, label?: string): Fit | undefined {
-  const { lattice } = crystal
+export function fitOf(
+  crystal: Crystal,
+  match: BookMatch,
+  stated: Stated,
+  label?: string,
+  lattice = crystal.lattice,
+): Fit | undefined {
   const atlas = atlasOf(match)
   const only = label === undefined ? undefined : atlas.byLabel.get(label)
   if (!lattice || (label !== undefined && !only)) return undefined
+  const { primitive, reciprocal } = lattice
   const k = combine(stated.numbers, stated.axes)
-  const fraction = crystal.fractionOf(k)
+  const fraction = scale(apply(primitive, k), 1 / (2 * Math.PI))
   const largest = LARGEST_K_SHIFT * crystal.angstrom
   // |δfᵢ| = |δk·aᵢ|/2π ≤ |δk||aᵢ|/2π: a quick look before the exact one.
-  const limits = lattice.primitive.map(a => K_TOLERANCE + (largest * norm(a)) / (2 * Math.PI))
+  const [l0, l1, l2] = primitive.map(a => K_TOLERANCE + (largest * norm(a)) / (2 * Math.PI))
   const near = nearness(crystal, k)
-  const isFractional = stated.axes === lattice.reciprocal || stated.axes === lattice.conventionalReciprocal
+  const isFractional = stated.axes === reciprocal || stated.axes === lattice.conventionalReciprocal
   let best: Fit | undefined
-  const look = (point: BookPoint, image: Vec3): boolean => {
+  const isExact = (point: BookPoint, image: Vec3): boolean => {
     const d0 = toNearest(fraction[0] - image[0])
-    if (Math.abs(d0) > limits[0]) return false
+    if (Math.abs(d0) > l0) return false
     const d1 = toNearest(fraction[1] - image[1])
-    if (Math.abs(d1) > limits[1]) return false
+    if (Math.abs(d1) > l1) return false
     const d2 = toNearest(fraction[2] - image[2])
-    if (Math.abs(d2) > limits[2]) return false
+    if (Math.abs(d2) > l2) return false
     const miss: Vec3 = [d0, d1, d2]
-    const place = subtract(fraction, miss)
+    const fit = (how: Fit['how']): Fit => ({
+      label: point.label,
+      point,
+      fraction: subtract(fraction, miss),
+      how,
+    })
     if (isNothing(miss)) {
-      best = { label: point.label, point, fraction: place, how: 'exact' }
+      best = fit('exact')
       return true
     }
-    if (best) return false
-    const shift = crystal.cartesianOf(miss)
+    const shift = combine(miss, reciprocal)
     const size = norm(shift)
-    if (size > largest) return false
-    if (size <= near && (point.parameterDependent || !isFractional))
-      best = { label: point.label, point, fraction: place, how: 'near' }
-    else if (isWritten(stated, shift)) best = { label: point.label, point, fraction: place, how: 'rounded' }
+    if (best || size > largest) return false
+    if (size <= near && (point.parameterDependent || !isFractional)) best = fit('near')
+    else if (isWritten(stated, shift)) best = fit('rounded')
     return false
   }
-  if (only) only.images.some(image => look(only.point, image))
-  else atlas.images.some(({ point, fraction: image }) => look(point, image))
+  if (only) only.images.some(image => isExact(only.point, image))
+  else atlas.images.some(({ point, fraction: image }) => isExact(point, image))
   return best
 }
 
 const toNearest = (x: number): number => x - Math.round(x)
 const isNothing = (miss: Vec3): boolean => miss.every(x => Math.abs(x) <= K_TOLERANCE)
 
-/** How far a place moves with the lattice when its vectors move within the file's tolerance. */
-function nearness(crystal: Crystal, k: Vec3): number {
+/** How far a place moves with the lattice when its vectors move within the file's tolerance, in inverse length. */
+export function nearness(crystal: Crystal, k: Vec3): number {
   const { primitive, dimension } = crystal.lattice!
   const shortest = Math.min(...primitive.slice(0, dimension).map(norm))
   return (crystal.tolerance / shortest) * norm(k)

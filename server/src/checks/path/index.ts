@@ -1,0 +1,8 @@
+export { pathJump } from './path-jump.ts'
+export { pathLabelUnknown } from './path-label-unknown.ts'
+export { pathLeavesZone } from './path-leaves-zone.ts'
+export { pathMisses } from './path-misses.ts'
+export { pathOffSymmetry } from './path-off-symmetry.ts'
+export { pathPassesPoint } from './path-passes-point.ts'
+export { pathRepeats } from './path-repeats.ts'
+export { pathRetraces } from './path-retraces.ts'

@@ -1,0 +1,2 @@
+export { supercellLeftHanded } from './supercell-left-handed.ts'
+export { supercellSingular } from './supercell-singular.ts'
