@@ -81,14 +81,22 @@ const cut = (text: string, width: number): string =>
   displayWidth(text) <= width ? text : `${[...text].slice(0, width).join('')}…`
 
 /** `3 findings in 2 files: 1 error, 2 warnings.` */
-export function closingLine({ errors, warnings, infos }: Tally, files: number, paint: Paint): string {
-  const all = errors + warnings + infos
+export function closingLine(tally: Tally, files: number, paint: Paint): string {
+  const all = tally.errors + tally.warnings + tally.infos
   const where = count(files, 'file')
   if (all === 0) return `${paint.green('No findings')} in ${where}.`
+  return `${count(all, 'finding')} in ${where}: ${tallyInWords(tally, (severity, text) => tint(paint, severity)(text))}.`
+}
+
+/** `1 error, 2 warnings, 3 for information`, without those that there are none of. */
+export function tallyInWords(
+  { errors, warnings, infos }: Tally,
+  colour: (severity: Severity, text: string) => string = (_, text) => text,
+): string {
   const parts = [
-    errors > 0 && paint.red(count(errors, 'error')),
-    warnings > 0 && paint.yellow(count(warnings, 'warning')),
-    infos > 0 && paint.cyan(`${infos} for information`),
+    errors > 0 && colour('error', count(errors, 'error')),
+    warnings > 0 && colour('warning', count(warnings, 'warning')),
+    infos > 0 && colour('info', `${infos} for information`),
   ]
-  return `${count(all, 'finding')} in ${where}: ${parts.filter(Boolean).join(', ')}.`
+  return parts.filter(Boolean).join(', ')
 }

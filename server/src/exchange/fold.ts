@@ -24,10 +24,12 @@ export interface FoldJson {
  * @returns undefined where the crystal has no zone or its frame cannot be known.
  */
 export function foldPoint(crystal: Crystal, at: Vec3): FoldJson | undefined {
-  const { zone, dimension, pointAxes } = crystal
+  const { zone, dimension, pointAxes, document } = crystal
   if (!zone || !pointAxes) return undefined
   const k = combine(at, pointAxes)
-  const folded = fold(zone, crystal.fractionOf(k))
+  // Fractions of the primitive vectors stay as they were written: the way through space would round them.
+  const fraction = document.frames.points === 'primitive' ? at : crystal.fractionOf(k)
+  const folded = fold(zone, fraction)
   return {
     at: at.slice(0, dimension),
     fraction: folded.fraction.slice(0, dimension),

@@ -13,6 +13,7 @@ import {
   length,
   plain,
 } from '../meaning/wording.ts'
+import { tallyInWords } from './findings-text.ts'
 import type { Alignment } from './layout.ts'
 import type { MeshReport, PointReport, Report } from './report.ts'
 
@@ -79,8 +80,12 @@ function lattice({ lattice, unit, tolerance, changes }: Report): Section {
     const { bravais, dimension, parameters, vectors, volume } = lattice
     if (bravais) facts.push(['Bravais type', `${bravais}, ${BRAVAIS[bravais as BravaisType].words}`])
     facts.push(['conventional cell', cell(parameters, unit)])
-    if (changes) facts.push(['in primitive vectors', combinations(changes.conventionalFromPrimitive)])
-    facts.push([`${NAME_OF_VOLUME[dimension]} of the primitive cell`, content(volume, dimension, unit)])
+    if (changes && !isIdentity(changes.conventionalFromPrimitive))
+      facts.push(['conventional vectors', combinations(changes.conventionalFromPrimitive)])
+    facts.push([
+      `${NAME_OF_VOLUME[dimension]} of the primitive cell`,
+      content(volume, dimension, unit, DIGITS),
+    ])
     tables.push(vectorTable('a', SYMBOL[unit], vectors))
   }
   facts.push([
@@ -103,6 +108,17 @@ const cell = (parameters: Readonly<Record<string, number>>, unit: Report['unit']
 const combinations = (rows: readonly (readonly number[])[], left = ['a', 'b', 'c'], right = 'a'): string =>
   rows.map((row, i) => `${left[i]} = ${combination(row, right)}`).join(', ')
 
+const isIdentity = (rows: readonly (readonly number[])[]): boolean =>
+  rows.every((row, i) => row.every((n, j) => n === (i === j ? 1 : 0)))
+
+const bookVectors = (rows: readonly (readonly number[])[]): string =>
+  isIdentity(rows)
+    ? 'those of the file'
+    : combinations(
+        rows,
+        SUBSCRIPTS.map(i => `a${i}′`),
+      )
+
 function combination(row: readonly number[], name: string): string {
   const terms = row.flatMap((n, i) => {
     if (n === 0) return []
@@ -116,16 +132,12 @@ function combination(row: readonly number[], name: string): string {
   )
 }
 
-function reciprocal({ reciprocal, unit, changes, book }: Report): Section | undefined {
+function reciprocal({ reciprocal, unit }: Report): Section | undefined {
   if (!reciprocal) return undefined
   const { vectors, lengths, angles } = reciprocal
   const names = angles.length === 3 ? ['b₂b₃', 'b₁b₃', 'b₁b₂'] : ['b₁b₂']
   const facts: [string, string][] = [['convention', 'bᵢ·aⱼ = 2π δᵢⱼ, Cartesian k with the 2π']]
   if (angles.length > 0) facts.push(['angles', angles.map((x, i) => `${names[i]} ${degrees(x)}`).join(', ')])
-  if (changes?.bookFromPrimitive && book) {
-    const left = changes.bookFromPrimitive.map((_, i) => `a${SUBSCRIPTS[i]}′`)
-    facts.push(["the label book's primitive vectors", combinations(changes.bookFromPrimitive, left)])
-  }
   const table = vectorTable('b', INVERSE_SYMBOL[unit], vectors)
   return {
     title: 'Reciprocal lattice',
@@ -152,7 +164,7 @@ function zone({ zone, lattice, unit }: Report): Section | undefined {
     title: 'First Brillouin zone',
     facts: [
       [lattice.dimension === 3 ? 'solid' : 'shape', `${solid}: ${counts.join(', ')}`],
-      [NAME_OF_VOLUME[lattice.dimension], inverseContent(volume, lattice.dimension, unit)],
+      [NAME_OF_VOLUME[lattice.dimension], inverseContent(volume, lattice.dimension, unit, DIGITS)],
       [
         'nearest and farthest point of its boundary',
         `${inverseLength(inradius, unit, DIGITS)} and ${inverseLength(circumradius, unit, DIGITS)} from Γ`,
@@ -179,7 +191,7 @@ function symmetry({ symmetry }: Report): Section | undefined {
   }
 }
 
-function points({ points, unit, book, lattice }: Report): Section | undefined {
+function points({ points, unit, book, changes, lattice }: Report): Section | undefined {
   if (!points?.length) return undefined
   const grouped = points.some(({ littleCoGroup }) => littleCoGroup !== undefined)
   const row = (point: PointReport): string[] => [
@@ -193,7 +205,12 @@ function points({ points, unit, book, lattice }: Report): Section | undefined {
   ]
   return {
     title: 'Points',
-    facts: book ? [['label book', book.source]] : [],
+    facts: [
+      ...(book ? [['label book', book.source] as const] : []),
+      ...(changes?.bookFromPrimitive
+        ? [["the book's primitive vectors", bookVectors(changes.bookFromPrimitive)] as const]
+        : []),
+    ],
     tables: [
       {
         head: [
@@ -297,8 +314,8 @@ function meshSection(
   return { title, facts, tables: [] }
 }
 
-function findings({ findings: { errors, warnings, infos } }: Report): Section {
-  const none = errors + warnings + infos === 0
-  const all = `${count(errors, 'error')}, ${count(warnings, 'warning')}, ${infos} for information`
-  return { title: 'Findings', facts: [['findings', none ? 'none' : all]], tables: [] }
-}
+const findings = ({ findings }: Report): Section => ({
+  title: 'Findings',
+  facts: [['findings', tallyInWords(findings) || 'none']],
+  tables: [],
+})

@@ -28,9 +28,10 @@ export const inverseLength = (x: number, unit: Unit, digits = DIGITS): string =>
 export const degrees = (x: number): string => `${plain(x, 3)}°`
 const POWER = ['', '', '²', '³']
 /** A length, an area or a volume. */
-export const content = (x: number, dimension: number, unit: Unit): string => `${plain(x)} ${SYMBOL[unit]}${POWER[dimension]}`
-export const inverseContent = (x: number, dimension: number, unit: Unit): string =>
-  dimension === 1 ? inverseLength(x, unit) : `${plain(x)} ${SYMBOL[unit]}⁻${POWER[dimension]}`
+export const content = (x: number, dimension: number, unit: Unit, digits = DIGITS): string =>
+  `${plain(x, digits)} ${SYMBOL[unit]}${POWER[dimension]}`
+export const inverseContent = (x: number, dimension: number, unit: Unit, digits = DIGITS): string =>
+  dimension === 1 ? inverseLength(x, unit, digits) : `${plain(x, digits)} ${SYMBOL[unit]}⁻${POWER[dimension]}`
 
 export const cartesian = (v: readonly number[], unit?: Unit): string =>
   `(${v.map(x => plain(x)).join(', ')})${unit ? ` ${INVERSE_SYMBOL[unit]}` : ''}`

@@ -79,7 +79,7 @@ test('check answers in JSON that fits the schema', async () => {
       for (const finding of findings) expect(isFinding(finding), JSON.stringify(isFinding.errors)).toBe(true)
       expect(status).toBe(errors + warnings > 0 ? 1 : 0)
     }),
-    { numRuns: 500 },
+    { numRuns: 200 },
   )
 })
 
@@ -92,7 +92,7 @@ test('findings in words stand on one line each, and never steer the terminal', a
       // biome-ignore lint/suspicious/noControlCharactersInRegex: none of them may come out.
       expect(out).not.toMatch(/[\u0000-\u0009\u000b-\u001f\u007f-\u009f]/)
     }),
-    { numRuns: 200 },
+    { numRuns: 100 },
   )
 })
 
@@ -108,7 +108,7 @@ test('report answers in JSON that fits the schema, or says in a line why it cann
         expect(words).not.toMatch(/NaN|undefined|Infinity|\[object/)
       }
     }),
-    { numRuns: 300 },
+    { numRuns: 100 },
   )
 })
 
@@ -125,6 +125,6 @@ test('--fix makes no error, leaves nothing for a second time, and keeps what it 
       await world.run(['check', '--fix', 'x.lattice.yaml'])
       expect(world.read('x.lattice.yaml')).toBe(once)
     }),
-    { numRuns: 300 },
+    { numRuns: 100 },
   )
 })

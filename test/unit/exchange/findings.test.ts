@@ -86,7 +86,7 @@ describe('SARIF', () => {
     $schema: __,
     ...official
   } = JSON.parse(readFileSync(join(import.meta.dirname, '../../reference/sarif-2.1.0.schema.json'), 'utf8'))
-  const validate = new Ajv({ strict: false, validateFormats: false }).compile(official)
+  const validate = new Ajv({ strict: false, validateFormats: false, unicodeRegExp: false }).compile(official)
 
   test.each(NAMES)('%s fits the standard’s own schema', name => {
     expect(validate(log(checked(fixture(name)))), JSON.stringify(validate.errors)).toBe(true)
