@@ -96,11 +96,18 @@ function translationLattice(cell: AtomicCell, tolerance: number): FineLattice {
   const orders = divisors(common)
   const grid = new PositionGrid(cell, tolerance)
   const first = species.indexOf(rarest)
+  // The atom that refuted the last candidate, a displaced one perhaps, is likely to refute the next.
+  const order = [...positions.keys()]
+  const isTranslation = (t: Vec3): boolean => {
+    const refuting = order.findIndex(j => grid.nearest(add(positions[j], t), species[j]) < 0)
+    if (refuting > 0) order.unshift(...order.splice(refuting, 1))
+    return refuting < 0
+  }
   for (let i = first + 1; i < positions.length && lattice.fold < common; i++) {
     if (species[i] !== rarest) continue
     for (const t of exactValues(subtract(positions[i], positions[first]), orders, cell, 2 * tolerance)) {
       if (contains(lattice, t)) break
-      if (!positions.every((x, j) => grid.nearest(add(x, fractionsOf(t)), species[j]) >= 0)) continue
+      if (!isTranslation(fractionsOf(t))) continue
       lattice = extend(lattice, t)
       break
     }
