@@ -3,6 +3,7 @@ import { forEachPair } from '../../crystal/neighbours.ts'
 import type { Crystal, PlacedAtom } from '../../meaning/crystal.ts'
 import { length } from '../../meaning/wording.ts'
 import type { Check, Finding } from '../check.ts'
+import { contradictsVectors } from '../lattice/kinship.ts'
 import { distinctAtoms, nameOf } from './contacts.ts'
 import { few } from './few.ts'
 import { suspectedFrame, suspectedUnit } from './suspicions.ts'
@@ -26,7 +27,7 @@ export const atomsTooClose: Check<Facts> = {
   wrong: 'lattice: {bravais: cP, a: 4.12}\natoms:\n  - Cs: [0, 0, 0]\n  - Cl: [0.3, 0.2, 0.1]\n',
   right: 'lattice: {bravais: cP, a: 4.12}\natoms:\n  - Cs: [0, 0, 0]\n  - Cl: [1/2, 1/2, 1/2]\n',
   *run({ crystal }) {
-    if (suspectedFrame(crystal) || suspectedUnit(crystal)) return // They say why.
+    if (contradictsVectors(crystal) || suspectedFrame(crystal) || suspectedUnit(crystal)) return // They say why.
     const worst = new Map<PlacedAtom, Close>()
     for (const close of closePairs(crystal)) {
       const known = worst.get(close.second)

@@ -2,6 +2,7 @@ import { covalentRadius } from '../../crystal/elements.ts'
 import type { PlacedAtom } from '../../meaning/crystal.ts'
 import { plain } from '../../meaning/wording.ts'
 import type { Check } from '../check.ts'
+import { contradictsVectors } from '../lattice/kinship.ts'
 import { isWrittenOut } from './atoms-written-out.ts'
 import { distinctAtoms } from './contacts.ts'
 import { suspectedFrame, suspectedUnit } from './suspicions.ts'
@@ -33,7 +34,13 @@ export const densitySuspect: Check<Facts> = {
     const { lattice, angstrom } = crystal
     if (lattice?.dimension !== 3 || !document.atoms || crystal.atoms.length === 0 || !crystal.atomsComplete)
       return
-    if (suspectedFrame(crystal) || suspectedUnit(crystal) || isWrittenOut(crystal)) return // They say why.
+    if (
+      contradictsVectors(crystal) ||
+      suspectedFrame(crystal) ||
+      suspectedUnit(crystal) ||
+      isWrittenOut(crystal)
+    )
+      return // They say why.
     if (crystal.emptySlabs.some(gap => gap !== undefined && gap * angstrom > WIDE_GAP)) return
     const atoms = distinctAtoms(crystal)
     const volume = (lattice.volume * angstrom ** 3) / atoms.length

@@ -2,6 +2,7 @@
 import { IN_ANGSTROM, type Unit, UNITS } from '../../crystal/units.ts'
 import type { AtomFrame } from '../../format/model.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
+import { contradictsVectors } from '../lattice/kinship.ts'
 import { distinctAtoms, once, readOn, type Tightest, tightest, tightestAmong } from './contacts.ts'
 
 /**
@@ -11,6 +12,8 @@ import { distinctAtoms, once, readOn, type Tightest, tightest, tightestAmong } f
 const ORDINARY = { least: 0.8, most: 1.3 }
 const TOO_TIGHT = 0.65
 const TOO_LOOSE = 1.55
+/** One atom alone may be all that is typed so far: of the two of silicon it is at 1.73. */
+const TOO_LOOSE_ALONE = 1.8
 
 /** Their crystals are held together by less than bonds: 1.8 (argon) and over. */
 const NOBLE = new Set(['He', 'Ne', 'Ar', 'Kr', 'Xe', 'Rn'])
@@ -26,9 +29,10 @@ export interface UnitSuspicion {
 
 /** The unit in which the distances would be those of a solid, where they are not as stated. */
 export const suspectedUnit = once((crystal): UnitSuspicion | undefined => {
-  if (suspectedFrame(crystal)) return undefined
+  if (suspectedFrame(crystal) || contradictsVectors(crystal)) return undefined
   const contact = tightest(crystal)
-  if (!contact || (contact.ratio >= TOO_TIGHT && contact.ratio <= TOO_LOOSE)) return undefined
+  const loose = distinctAtoms(crystal).length === 1 ? TOO_LOOSE_ALONE : TOO_LOOSE
+  if (!contact || (contact.ratio >= TOO_TIGHT && contact.ratio <= loose)) return undefined
   if (NOBLE.has(contact.first.element) || NOBLE.has(contact.second.element)) return undefined
   for (const unit of UNITS) {
     const ratio = (contact.ratio * IN_ANGSTROM[unit]) / crystal.angstrom

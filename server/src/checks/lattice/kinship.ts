@@ -6,6 +6,7 @@ import {
   completeCell,
   type GivenParameters,
 } from '../../crystal/bravais.ts'
+import type { Crystal } from '../../meaning/crystal.ts'
 
 /** One of the 14 types (5 in the plane): centrings of one face are one type in three settings. */
 export function classOf(type: BravaisType): BravaisType {
@@ -43,6 +44,14 @@ export const isSpecialCase = (found: BravaisType, stated: BravaisType): boolean 
   GENERAL[classOf(found)]?.includes(classOf(stated)) ?? false
 
 export const isSameType = (x: BravaisType, y: BravaisType): boolean => classOf(x) === classOf(y)
+
+/** The vectors span another type than the one stated beside them: then the cell itself is in doubt. */
+export function contradictsVectors({ document, type, dimension }: Crystal): boolean {
+  const { bravais, vectors } = document.lattice ?? {}
+  if (!bravais || !vectors || !type?.bravais) return false
+  if (BRAVAIS[bravais.value].dimension !== dimension) return true
+  return !isSameType(type.bravais, bravais.value) && !isSpecialCase(type.bravais, bravais.value)
+}
 
 /** The most symmetric type of the same centring that parameters agree with; a type's own name aside. */
 export function typeThatFits(stated: BravaisType, given: GivenParameters): BravaisType | undefined {

@@ -7,7 +7,7 @@ import { formatNumber } from '../../format/numbers.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import { count, degrees, length, plain } from '../../meaning/wording.ts'
 import type { Check, Context, Finding } from '../check.ts'
-import { classOf, isSameType, isSpecialCase, named, typeThatFits } from './kinship.ts'
+import { classOf, contradictsVectors, isSameType, isSpecialCase, named, typeThatFits } from './kinship.ts'
 import { nearlySymmetric, typesNearby } from './nearby-types.ts'
 
 interface Facts {
@@ -111,7 +111,7 @@ function* vectorsAgainst(context: Context, bravais: Sourced<BravaisType>): Itera
     return
   }
   const found = type?.bravais
-  if (!found || isSameType(found, stated) || isSpecialCase(found, stated)) return
+  if (!found || !contradictsVectors(crystal)) return
   if (nearlySymmetric(crystal)?.type.bravais === classOf(stated)) return // Said by lattice-nearly-symmetric.
   const centring = meantCentring(crystal, stated)
   const misfit = misfitTo(crystal, stated)

@@ -31,7 +31,7 @@ export const latticeUnitSuspect: Check<Facts> = {
       first === second ? `${nameOf(first)} and its own copy` : `${nameOf(first)} and ${nameOf(second)}`
     yield {
       at: placeOf(context),
-      message: `${pair} are ${length(distance, crystal.unit)} apart, ${plain(contact.ratio, 2)} times the sum of their covalent radii, as in no solid; read in ${unit} (${SYMBOL[unit]}) it is an ordinary ${plain(ratio, 2)} times.${contact.ratio > 1 ? ' Or atoms are missing.' : ''}`,
+      message: `${pair} are ${length(distance, crystal.unit)} apart, ${plain(contact.ratio, 2)} times the sum of their covalent radii, as in no solid; read in ${unit} (${SYMBOL[unit]}) it is an ordinary ${plain(ratio, 2)} times.${contact.ratio > 1 ? ' Or atoms, or a centring, are missing.' : ''}`,
       facts: { unit, distance, ratio: contact.ratio },
       fixes: [{ title: `State \`unit: ${unit}\``, safe: false, edits: statement(context, unit) }],
     }
