@@ -266,7 +266,7 @@ function fixedDirections(group: readonly Mat3[], dimension: Dimension): Vec3[] {
   const normals: Vec3[] = IDENTITY.slice(dimension)
   const directions = new Map<string, Vec3>()
   const keep = (v: Vec3) => {
-    if (norm(v) === 0) return
+    if (norm(v) === 0 || v.slice(dimension).some(x => x !== 0)) return
     const direction = lowestTerms(v)
     directions.set(String(direction), direction)
     directions.set(String(tidy(scale(direction, -1))), tidy(scale(direction, -1)))
@@ -279,7 +279,7 @@ function fixedDirections(group: readonly Mat3[], dimension: Dimension): Vec3[] {
       .map(([u, v]) => cross(u, v))
       .find(v => norm(v) > 0)
     if (!line) normals.push(rows[0])
-    else if (dimension === 3 && rows.every(row => dot(row, line) === 0)) keep(line)
+    else if (rows.every(row => dot(row, line) === 0)) keep(line)
   }
   for (const [u, v] of pairs(normals)) keep(cross(u, v))
   return [...directions.values()]
