@@ -4,6 +4,7 @@ import { type KeyRow, keyRow } from './keys.ts'
 import type { AtomEntry, Fix, NumberValue, Sourced, Span, VectorValue } from './model.ts'
 import { nearest } from './nearest.ts'
 import type { ListItem, MappingEntry, MappingNode, Node, TextNode } from './nodes.ts'
+import { scalarText } from './quote.ts'
 import { kindOf, type Reader, shortened, visible } from './reader.ts'
 import type { AtomRow } from './rows.ts'
 
@@ -81,8 +82,8 @@ function readPlace(reader: Reader, node: Node, key: TextNode): AtomPlace {
   const name = `\`${shortened(key.value)}\``
   if (node.kind !== 'mapping')
     return { position: reader.value(node, PLACE, key.value, key.at) as VectorValue | undefined }
-  const { values, keys } = reader.block(node, 'atoms.*')
-  if (!keys.has('at') && !node.broken)
+  const { values, keys, unfinished } = reader.block(node, 'atoms.*')
+  if (!keys.has('at') && !unfinished)
     reader.report('key-missing', key, key.at, `${name} needs its place: \`{at: [x, y, z]}\`.`)
   return {
     name: values.get('name') as Sourced<string> | undefined,
@@ -149,7 +150,7 @@ function unknownElement(
   if (labelled && isElement(labelled)) {
     const message = `\`${shortened(symbol)}\` is no element; like atoms are told apart by a name: \`${labelled}: {at: [x, y, z], name: ${shortened(symbol)}}\`.`
     const edits = vector && [
-      { at: key.at, text: labelled },
+      { at: key.at, text: scalarText(labelled) },
       { at: [vector[0], vector[0]] as const, text: '{at: ' },
       { at: [vector[1], vector[1]] as const, text: `, name: ${symbol}}` },
     ]

@@ -82,12 +82,13 @@ class DocumentReader {
         contents,
         `A lattice file is a mapping of keys such as \`lattice:\`, not ${kindOf(contents)}.`,
       )
-    return this.assemble({ keys: new Map(), values: new Map() })
+    return this.assemble({ keys: new Map(), values: new Map(), unfinished: true })
   }
 
   /** One word may be the first key, still without its colon. */
   private noMapping(text: string): void {
-    const near = nearest(text, keysBelow('').map(keyName))
+    const names = keysBelow('').map(keyName)
+    const near = nearest(text, names) ?? names.find(name => text.length > 1 && name.startsWith(text))
     const hint = near ? ` Did you mean \`${near}:\`?` : ''
     this.reader.wrong(this.yaml.contents, `A lattice file is a mapping of keys such as \`lattice:\`.${hint}`)
   }
@@ -166,25 +167,25 @@ class DocumentReader {
   }
 
   /** What the form of a document demands beyond the form of each value. */
-  private judge(document: LatticeDocument, root: MappingNode, { values }: Block): void {
+  private judge(document: LatticeDocument, root: MappingNode, block: Block): void {
     const { reader, text } = this
     const { keys, lattice } = document
-    if (!keys.has('lattice') && !root.broken) {
+    if (!keys.has('lattice') && !root.broken && !block.unfinished) {
       const at = root.entries[0]?.key.at ?? root.at
       const edits = insertKeys(text, document, [['lattice', '{bravais: , a: }']])
       reader.report('key-missing', root, at, '`lattice` is missing: without it there is no crystal.', {
         fixes: [{ title: 'Insert `lattice`', safe: false, edits }],
       })
     }
-    const sampling = values.get('sampling') as Block | undefined
+    const sampling = partOf<Block>(block, 'sampling')
     if (sampling) this.judgeSampling(sampling, keys.get('sampling')!)
-    if (lattice) this.judgeLattice(lattice, document)
+    if (lattice) this.judgeLattice(lattice, partOf<Block>(block, 'lattice')!, document)
   }
 
   private judgeSampling(block: Block, { key }: Entry): void {
     const names = keysBelow('sampling').map(keyName)
     onlyOne(this.reader, block, names, '`sampling`')
-    if (block.keys.size === 0)
+    if (block.keys.size === 0 && !block.unfinished)
       this.reader.report(
         'key-missing',
         { aliased: false },
@@ -193,11 +194,11 @@ class DocumentReader {
       )
   }
 
-  private judgeLattice(lattice: LatticeBlock, document: LatticeDocument): void {
+  private judgeLattice(lattice: LatticeBlock, { unfinished }: Block, document: LatticeDocument): void {
     const { reader, text } = this
     const { keys } = lattice
     const here = { aliased: !standsHere(text, lattice.at) && lattice.at[1] > lattice.at[0] }
-    if (!keys.has('bravais') && !keys.has('vectors')) {
+    if (!keys.has('bravais') && !keys.has('vectors') && !unfinished) {
       const edits = insertKeys(text, lattice, [['bravais', '']])
       reader.report('key-missing', here, lattice.key, '`lattice` needs `bravais` or `vectors`.', {
         fixes: [{ title: 'Insert `bravais`', safe: false, edits }],
@@ -228,14 +229,17 @@ class DocumentReader {
 
   /** In the order of the text, without what a fault of syntax has brought with it. */
   private problems(): readonly Problem[] {
-    const syntax = this.yaml.problems
-    const faults = syntax.map(({ at }) => at[0]).sort((a, b) => a - b)
+    const { problems: syntax, doubts, uncertain } = this.yaml
     const own = this.reader.problems.filter(
-      ({ at }) => !faults.some(fault => fault >= at[0] && fault <= at[1]),
+      ({ rule, at }) =>
+        !(uncertain && OF_STRUCTURE.has(rule)) && !doubts.some(doubt => doubt >= at[0] && doubt <= at[1]),
     )
     return [...syntax, ...own].sort((a, b) => a.at[0] - b.at[0] || a.at[1] - b.at[1])
   }
 }
+
+/** What these say depends on what belongs to what. */
+const OF_STRUCTURE: ReadonlySet<string> = new Set(['key-unknown', 'key-missing', 'value-type'])
 
 const partOf = <T>({ values }: Block, name: string): T | undefined => values.get(name) as T | undefined
 

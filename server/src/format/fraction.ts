@@ -46,16 +46,28 @@ export function power(x: Fraction, exponent: number): Fraction | undefined {
   return result
 }
 
-/** Powers of ten that are safe integers. */
-const POWERS_OF_TEN = Array.from({ length: 16 }, (_, n) => 10 ** n)
+/** Powers of ten that are safe integers. Read, not computed: not every engine's `**` is exact. */
+export const POWERS_OF_TEN = Array.from({ length: 16 }, (_, n) => Number(`1e${n}`))
+
+/** mantissa × 10^exponent; undefined where a part of the fraction is no safe integer. */
+export function fromPowerOfTen(mantissa: number, exponent: number): Fraction | undefined {
+  const scale = POWERS_OF_TEN[Math.abs(exponent)]
+  if (mantissa === 0) return { p: 0, q: 1 }
+  if (scale === undefined || !Number.isSafeInteger(mantissa)) return undefined
+  if (exponent >= 0) return fraction(mantissa * scale, 1)
+  let p = mantissa
+  let twos = -exponent
+  let fives = -exponent
+  // The denominator has these two factors only: this is quicker than a general divisor, and most numbers are decimals.
+  for (; twos > 0 && p % 2 === 0; twos--) p /= 2
+  for (; fives > 0 && p % 5 === 0; fives--) p /= 5
+  return { p, q: twos === fives ? POWERS_OF_TEN[twos] : 2 ** twos * 5 ** fives }
+}
 
 /** The exact value of digits with a point, times a power of ten: `('1.25', -1)` is 1/8. */
 export function fromDecimal(digits: string, exponent = 0): Fraction | undefined {
   const point = digits.indexOf('.')
-  const after = point < 0 ? 0 : digits.length - point - 1
-  const whole = Number(point < 0 ? digits : digits.slice(0, point) + digits.slice(point + 1))
-  const shift = exponent - after
-  const scale = POWERS_OF_TEN[Math.abs(shift)]
-  if (scale === undefined) return whole === 0 ? { p: 0, q: 1 } : undefined
-  return shift < 0 ? fraction(whole, scale) : fraction(whole * scale, 1)
+  if (point < 0) return fromPowerOfTen(Number(digits), exponent)
+  const after = digits.length - point - 1
+  return fromPowerOfTen(Number(digits.slice(0, point) + digits.slice(point + 1)), exponent - after)
 }

@@ -35,13 +35,18 @@ function readMapping(reader: Reader, node: Node, row: KeyRow, name: string): Blo
 }
 
 /** The same number along all axes must be written out. */
-function readCounts(reader: Reader, node: Node, row: KeyRow, name: string): VectorValue | undefined {
+function writtenOnce(reader: Reader, node: Node, name: string): boolean {
   const text = node.kind === 'text' ? node.value.trim() : ''
-  if (!/^\d+$/.test(text)) return reader.vector(node, row, name)
+  if (!/^\d+$/.test(text)) return false
   const written = `[${text}, ${text}, ${text}]`
-  return reader.wrong(node, `${name} is a list with a number for each direction, such as \`${written}\`.`, [
+  reader.wrong(node, `${name} is a list with a number for each direction, such as \`${written}\`.`, [
     replacement(node.at, written),
   ])
+  return true
+}
+
+function readCounts(reader: Reader, node: Node, row: KeyRow, name: string): VectorValue | undefined {
+  return writtenOnce(reader, node, name) ? undefined : reader.vector(node, row, name)
 }
 
 export interface MatrixValue {
@@ -50,6 +55,7 @@ export interface MatrixValue {
 }
 
 function readMatrix(reader: Reader, node: Node, row: KeyRow, name: string): MatrixValue | undefined {
+  if (writtenOnce(reader, node, name)) return undefined
   if (node.kind === 'list' && node.length > 0 && node.items.every(({ node }) => node.kind !== 'list')) {
     const diagonal = reader.vector(node, row, name)
     return diagonal && { rows: [diagonal], diagonal: true }
@@ -111,9 +117,9 @@ type PointValue = Pick<PointEntry, 'coordinates' | 'between'>
 
 function readPoint(reader: Reader, node: Node, row: KeyRow, name: string): PointValue | undefined {
   if (node.kind !== 'mapping') return { coordinates: reader.vector(node, row, name) }
-  const { keys, values } = reader.block(node, row.path)
+  const { keys, values, unfinished } = reader.block(node, row.path)
   for (const key of ['between', 'at'])
-    if (!keys.has(key) && !node.broken)
+    if (!keys.has(key) && !unfinished)
       reader.report(
         'key-missing',
         node,
@@ -185,7 +191,13 @@ function namedMeshes(reader: Reader, node: MappingNode): MeshValue[] {
 function meshBlock(reader: Reader, node: MappingNode, name: string): Block {
   const block = reader.block(node, 'mesh')
   const both = onlyOne(reader, block, ['divisions', 'spacing'], name)
-  if (!both && !block.keys.has('divisions') && !block.keys.has('spacing') && !node.broken)
+  if (
+    !both &&
+    !block.unfinished &&
+    !block.keys.has('divisions') &&
+    !block.keys.has('spacing') &&
+    !node.broken
+  )
     reader.report('key-missing', node, node.at, `${name} needs \`divisions\` or \`spacing\`.`)
   return block
 }
@@ -227,7 +239,12 @@ function readSeverities(reader: Reader, node: Node, row: KeyRow, name: string): 
       continue
     }
     first.set(key.value, { key: key.at })
-    const severity = reader.value(value, SEVERITY, key.value, key.at) as Sourced<Severity | 'off'> | undefined
+    const what = `the severity of \`${shortened(key.value)}\``
+    const read =
+      value.kind === 'nothing'
+        ? reader.value(value, SEVERITY, key.value, key.at)
+        : reader.word(value, SEVERITY, what)
+    const severity = read as Sourced<Severity | 'off'> | undefined
     if (severity) severities.set(key.value, { ...severity, key: key.at })
   }
   return severities

@@ -196,7 +196,9 @@ class View {
       if (faults[middle] < token.offset) low = middle + 1
       else high = middle
     }
-    return low < faults.length && faults[low] <= tokenEnd(token)
+    // A fault may stand in the rest of a block scalar's header.
+    const header = token.type === 'block-scalar' ? sum(token.props) : 0
+    return low < faults.length && faults[low] <= Math.max(tokenEnd(token), token.offset + header)
   }
 
   node(token: CST.Token | undefined, offset: number): Node {
@@ -244,6 +246,9 @@ class View {
     return this.tree.cuts.span(start, end)
   }
 }
+
+const sum = (tokens: readonly CST.Token[]): number =>
+  tokens.reduce((length, token) => length + ('source' in token ? token.source.length : 0), 0)
 
 /** How YAML writes that there is no value. */
 const NOTHING: ReadonlySet<string> = new Set(['', '~', 'null', 'Null', 'NULL'])

@@ -60,21 +60,45 @@ export function evaluate(text: string, parameters: Parameters = WITHOUT_PARAMETE
   return new Expression(text, parameters).read()
 }
 
-/** The short way for what nearly all numbers are. */
+const POINT = 46
+const MINUS = 45
+const PLUS = 43
+const UNICODE_MINUS = 0x2212
+/** So many digits are an exact whole number, so that one division gives the nearest value. */
+const EXACT_DIGITS = 15
+
+/** The short way for what nearly all numbers are: a sign, digits, perhaps a point. */
 function plainDecimal(text: string): Evaluated | undefined {
-  const digits = PLAIN.exec(text)?.[1]
-  if (digits === undefined) return undefined
-  const negative = text[0] === '-' || text[0] === '\u2212'
-  const size = Number(digits)
-  if (size === Number.POSITIVE_INFINITY) return undefined
-  const point = digits.indexOf('.')
-  const positive = exact.fromDecimal(digits)
+  const first = text.charCodeAt(0)
+  const negative = first === MINUS || first === UNICODE_MINUS
+  let mantissa = 0
+  let digits = 0
+  let point = -1
+  for (let i = negative || first === PLUS ? 1 : 0; i < text.length; i++) {
+    const code = text.charCodeAt(i)
+    if (code === POINT && point < 0) point = digits
+    else if (code >= 48 && code <= 57) {
+      mantissa = mantissa * 10 + (code - 48)
+      digits++
+    } else return undefined
+  }
+  if (digits === 0 || digits > EXACT_DIGITS) return undefined
+  const decimals = point < 0 ? 0 : digits - point
+  const signed = negative ? 0 - mantissa : mantissa
   return {
-    value: negative ? 0 - size : size,
-    exact: positive && negative ? exact.negate(positive) : positive,
-    decimals: point < 0 ? 0 : digits.length - point - 1,
+    value: signed / exact.POWERS_OF_TEN[decimals],
+    exact: exact.fromPowerOfTen(signed, -decimals),
+    decimals,
     uses: NONE,
   }
+}
+
+/** Plain decimals with many digits or an uncertainty have their decimals too. */
+function decimalsOf(text: string): number | undefined {
+  const digits = PLAIN.exec(text)?.[1]
+  if (digits === undefined) return undefined
+  const point = digits.indexOf('.')
+  return point < 0 ? 0 : digits.length - point - 1
 }
 
 interface Term {
@@ -157,7 +181,14 @@ class Expression {
     if (this.fault) return { fault: this.fault }
     if (this.pending) return { pending: true }
     const { value, exact } = result!
-    return { number: { value: value + 0, exact: this.uses.length > 0 ? undefined : exact, uses: this.uses } }
+    return {
+      number: {
+        value: value + 0,
+        exact: this.uses.length > 0 ? undefined : exact,
+        decimals: decimalsOf(this.text),
+        uses: this.uses,
+      },
+    }
   }
 
   private fail(from: number, to: number, message: string, replacement?: string): undefined {

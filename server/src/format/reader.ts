@@ -1,5 +1,5 @@
 /** Nodes to values, one function for each kind of the key table. What cannot be read is undefined and a problem. */
-import { describeValue, KEYS, type KeyRow, keyName, keysBelow, type Word } from './keys.ts'
+import { KEYS, type KeyRow, keyName, keysBelow, type Word } from './keys.ts'
 import type {
   Entry,
   Fix,
@@ -13,6 +13,7 @@ import type {
   VectorValue,
 } from './model.ts'
 import { nearest } from './nearest.ts'
+import { scalarText } from './quote.ts'
 import type { MappingEntry, MappingNode, Node, TextNode } from './nodes.ts'
 import { evaluate, type Parameters } from './numbers.ts'
 import { normaliseLabel, parsePath } from './path.ts'
@@ -22,6 +23,8 @@ export interface Block {
   /** The keys that stand there and are known. */
   readonly keys: ReadonlyMap<string, Entry>
   readonly values: ReadonlyMap<string, unknown>
+  /** A key is still being typed, or a fault of syntax is near: what seems to be missing may be there. */
+  readonly unfinished: boolean
 }
 
 /** The keys of a mapping that are known, each once. */
@@ -36,6 +39,9 @@ type Read = (reader: Reader, node: Node, row: KeyRow, name: string) => unknown
 
 /** How each kind is read. */
 export type Readers = Readonly<Record<KeyRow['kind'], Read>>
+
+/** More names than this are not listed in a message. */
+const MOST_LISTED = 8
 
 const NUMBER_WORDS = ['no', 'one', 'two', 'three', 'four', 'five', 'six', 'seven', 'eight', 'nine']
 const inWords = (n: number): string => NUMBER_WORDS[n] ?? String(n)
@@ -106,8 +112,12 @@ export class Reader {
   }
 
   private unknownKey({ colon }: MappingEntry, key: TextNode, path: string): void {
-    if (key.broken || !colon) return // It is still being typed, and YAML has said so.
+    if (key.broken) return // It is still being typed, and YAML has said so.
     const names = keysBelow(path).map(keyName)
+    if (!colon) {
+      this.withoutColon(key, names)
+      return
+    }
     const near = nearest(key.value, names)
     const where = path === '' ? 'a lattice file' : `\`${path.replace('.*', '')}\``
     if (key.value === '<<') {
@@ -127,7 +137,9 @@ export class Reader {
       ? `; did you mean \`${near}\`?`
       : homes.length > 0
         ? `: it stands in ${homes.join(' or ')}.`
-        : `: known are ${names.map(name => `\`${name}\``).join(', ')}.`
+        : names.length > MOST_LISTED
+          ? '.'
+          : `: known are ${names.map(name => `\`${name}\``).join(', ')}.`
     const rename: Fix = {
       title: `Rename to \`${near}\``,
       safe: false,
@@ -135,6 +147,25 @@ export class Reader {
     }
     this.report('key-unknown', key, key.at, `\`${key.value}\` is no key of ${where}${hint}`, {
       fixes: near ? [rename] : [],
+    })
+  }
+
+  /** Inside of braces YAML has nothing against a key alone, and takes `a:5` for one. */
+  private withoutColon(key: TextNode, names: readonly string[]): void {
+    const name = /^([^\s:]+):\S/.exec(key.value)?.[1]
+    if (!name || !names.includes(name) || key.quoted) {
+      this.report(
+        'value-type',
+        key,
+        key.at,
+        `\`${shortened(key.value)}\` is a key without a colon and a value.`,
+      )
+      return
+    }
+    const at = key.place(0, name.length + 1)[1]
+    const fix: Fix = { title: 'Insert a blank', safe: false, edits: [{ at: [at, at], text: ' ' }] }
+    this.report('value-type', key, key.at, `A blank is missing after the colon of \`${name}:\`.`, {
+      fixes: [fix],
     })
   }
 
@@ -161,14 +192,15 @@ export class Reader {
       keys.set(name, { key, at, item })
       values.set(name, this.ahead.has(row) ? this.ahead.get(row) : this.value(value, row, name, key))
     }
-    return { keys, values }
+    const unfinished = node.broken || node.entries.some(({ colon }) => !colon)
+    return { keys, values, unfinished }
   }
 
   /** The value of a key; a key without one is a problem of its own. */
   value(node: Node, row: KeyRow, name: string, key: Span): unknown {
     if (node.kind !== 'nothing') return this.readers[row.kind](this, node, row, `\`${name}\``)
     if (!node.broken)
-      this.report('value-type', node, key, `\`${name}\` has no value yet: ${describeValue(row)}.`)
+      this.report('value-type', node, key, `\`${name}\` has no value yet, such as \`${row.example}\`.`)
     return undefined
   }
 
@@ -188,7 +220,7 @@ export class Reader {
     if (found) return { value: found.word, at: node.at }
     const near = meantWord(text, words)
     const hint = near ? `; did you mean \`${near}\`?` : `: it is one of ${list}.`
-    const fixes = near ? [replacement(node.at, near)] : []
+    const fixes = near ? [replacement(node.at, scalarText(near))] : []
     const rule = row.path === 'unit' ? 'unit-unknown' : 'value-type'
     this.report(rule, node, node.at, `\`${shortened(text)}\` cannot be read as ${name}${hint}`, { fixes })
     return undefined

@@ -5,6 +5,49 @@ export interface SyntaxFault {
   readonly start: number
   readonly end: number
   readonly message: string
+  /**
+   * - `local`: what stands around it can still be read.
+   * - `structure`: what belongs to what is uncertain from there on.
+   * - `unclosed`: something that is opened is not closed. It is found where that would have ended, and better told
+   *   where it begins.
+   */
+  readonly kind: 'local' | 'structure' | 'unclosed'
+}
+
+const UNCLOSED = /must (?:be sufficiently indented and )?end with a|missing closing ["']quote/i
+const LOCAL_CODES: ReadonlySet<string> = new Set([
+  'ALIAS_PROPS',
+  'BAD_ALIAS',
+  'BAD_DIRECTIVE',
+  'BAD_DQ_ESCAPE',
+  'BAD_PROP_ORDER',
+  'BAD_SCALAR_START',
+  'KEY_OVER_1024_CHARS',
+  'MULTIPLE_ANCHORS',
+  'MULTIPLE_TAGS',
+  'TAG_RESOLVE_FAILED',
+])
+const LOCAL_MESSAGES =
+  /implicit map keys need to be followed|missing , |missing space after :|must be separated|unexpected empty item|unexpected ,/i
+
+function kindOf({ code, message }: YAMLParseError): SyntaxFault['kind'] {
+  if (UNCLOSED.test(message)) return 'unclosed'
+  return LOCAL_CODES.has(code) || LOCAL_MESSAGES.test(message) ? 'local' : 'structure'
+}
+
+/** One fault of the structure brings others with it: only the first is told, and one fault at one place. */
+export function withoutConsequences<
+  F extends { readonly start: number; readonly kind?: SyntaxFault['kind'] },
+>(faults: readonly F[]): F[] {
+  const told: F[] = []
+  let structural = false
+  for (const fault of [...faults].sort((a, b) => a.start - b.start)) {
+    const isStructural = fault.kind === 'structure'
+    if ((isStructural && structural) || told.at(-1)?.start === fault.start) continue
+    structural ||= isStructural
+    told.push(fault)
+  }
+  return told
 }
 
 /** @param text the text that the error's offsets refer to. */
@@ -13,7 +56,7 @@ export function syntaxFault(error: YAMLParseError, text: string): SyntaxFault {
   const start = Math.max(0, Math.min(from, text.length))
   const end = Math.max(start, Math.min(to, text.length))
   const message = explain(error, text.slice(start, Math.min(end, start + LONGEST_QUOTE)))
-  return { start, end, message }
+  return { start, end, message, kind: kindOf(error) }
 }
 
 /** More of the text is not repeated in a message. */
@@ -32,7 +75,10 @@ const quoted = (there: string): string => (there.trim() === '' ? 'This' : `\`${t
 const BY_MESSAGE: readonly (readonly [RegExp, Explanation])[] = [
   [
     /implicit map keys need to be followed/i,
-    there => `A colon is missing after \`${there.trim()}\`: a key is written \`key: value\`.`,
+    there =>
+      there.includes(':')
+        ? `A blank is missing after the colon of \`${there.trim()}\`.`
+        : `A colon is missing after \`${there.trim()}\`: a key is written \`key: value\`.`,
   ],
   [
     /must (?:be sufficiently indented and )?end with a \]/,
@@ -52,8 +98,7 @@ const BY_MESSAGE: readonly (readonly [RegExp, Explanation])[] = [
   [/unexpected empty item|unexpected ,/i, () => 'Nothing stands between two commas, or before the first.'],
   [
     /nested mappings are not allowed/i,
-    () =>
-      'A key and its value cannot stand behind another key on one line; quote the text if the colon belongs to it.',
+    () => 'A text that holds a colon needs quotes; if a key is meant, its indentation does not fit.',
   ],
   [/block collection cannot start on same line/i, () => 'The first key goes on the line after `---`.'],
   [/all sequence items must start/i, () => 'The items of a list begin in one column.'],
@@ -78,10 +123,11 @@ const BY_CODE: Readonly<Record<string, Explanation>> = {
   BAD_PROP_ORDER: () => 'An anchor or tag stands directly before its value.',
   BAD_SCALAR_START: there => `A text that begins with ${quoted(there.slice(0, 1))} must be quoted.`,
   BLOCK_AS_IMPLICIT_KEY: () => 'A list or mapping of several lines cannot be a key.',
-  BLOCK_IN_FLOW: () => 'Inside of brackets everything is written with brackets and commas.',
+  BLOCK_IN_FLOW: () => 'Inside of brackets, entries are separated by commas and lists have brackets.',
   KEY_OVER_1024_CHARS: () => 'A key is longer than YAML allows.',
   MISSING_CHAR: () => 'Something is missing here.',
-  MULTILINE_IMPLICIT_KEY: () => 'A key stands on one line; perhaps a colon or quote is missing above.',
+  MULTILINE_IMPLICIT_KEY: () =>
+    'A key stands on one line: here the indentation does not fit, or a colon or quote is missing above.',
   MULTIPLE_ANCHORS: () => 'A value has one anchor at most.',
   MULTIPLE_TAGS: () => 'A value has one tag at most.',
   RESOURCE_EXHAUSTION: () => 'The text is nested so deeply that it is not read.',

@@ -4,12 +4,12 @@
  * is, the format says. So `%YAML 1.1` changes nothing.
  */
 import { Composer, type CST, Lexer, Parser } from 'yaml'
-import { Survey } from './anchors.ts'
+import { Survey } from './survey.ts'
 import { Cuts } from './cuts.ts'
 import type { Problem, Span } from './model.ts'
 import { blockSequences, dashOf, type Node, NothingNode, rootNode } from './nodes.ts'
 import { findRuns, type Run } from './rows.ts'
-import { type SyntaxFault, syntaxFault } from './syntax.ts'
+import { type SyntaxFault, syntaxFault, withoutConsequences } from './syntax.ts'
 
 /** Larger files are refused. 150,000 atoms fit in. */
 export const MOST_CHARACTERS = 8_000_000
@@ -33,6 +33,10 @@ export interface YamlDocument {
   readonly at: Span
   readonly contents: Node
   readonly problems: readonly Problem[]
+  /** Offsets, rising, at which a fault of syntax makes the meaning uncertain. */
+  readonly doubts: readonly number[]
+  /** The indentation or the like is at fault: what belongs to what is uncertain. */
+  readonly uncertain: boolean
 }
 
 export interface YamlFile {
@@ -74,7 +78,7 @@ const syntax = (at: Span, message: string): Problem => ({ rule: 'yaml-syntax', a
 
 function refuse(text: string): Problem | undefined {
   if (text.length > MOST_CHARACTERS) return tooLarge(text.length, MOST_CHARACTERS, '')
-  const ours = /^<{7}(?: .*)?$/m.exec(text)
+  const ours = text.includes('<<<<<<<') ? /^<{7}(?: .*)?$/m.exec(text) : null
   if (!ours || !/^>{7}(?: .*)?$/m.test(text.slice(ours.index))) return undefined
   const at: Span = [ours.index, ours.index + ours[0].length]
   return syntax(
@@ -111,6 +115,9 @@ const CORE_TAGS: ReadonlySet<string> = new Set([
   '!!seq',
   '!!map',
 ])
+
+/** Of the library or of our own. */
+type Fault = Omit<SyntaxFault, 'kind'> & { readonly kind?: SyntaxFault['kind'] }
 
 class Reading {
   private readonly cuts: Cuts
@@ -246,21 +253,25 @@ class Reading {
       i === 0 ? 0 : this.cuts.back(token.offset),
       end === this.cuts.text.length ? this.whole.length : this.cuts.back(end),
     ]
-    const anchors = new Survey(token)
-    const faults = [...composed, ...anchors.faults].sort((a, b) => a.start - b.start)
+    const survey = new Survey(token)
+    const { unclosed } = survey
+    const known = unclosed.length > 0 ? composed.filter(({ kind }) => kind !== 'unclosed') : composed
+    const all: Fault[] = [...known, ...survey.faults, ...unclosed]
+    const faults = withoutConsequences(all)
+    const uncertain = composed.some(({ kind }) => kind === 'structure')
     const problems = faults.map(fault => syntax(this.cuts.span(fault.start, fault.end), fault.message))
     problems.push(...this.strangeTags(end))
-    if (anchors.excessive) return { at, problems, contents: new NothingNode(at, false, true) }
-    const tree = {
-      cuts: this.cuts,
-      anchors,
-      faults: faults.map(fault => fault.start),
-      runs,
-      missRows: () => {
-        this.missed = true
-      },
+    const marks = [...all.map(({ start }) => start), ...unclosed.map(({ certain }) => certain)].sort(
+      (a, b) => a - b,
+    )
+    const doubts = marks.map(mark => this.cuts.back(mark))
+    if (survey.excessive)
+      return { at, problems, doubts, uncertain, contents: new NothingNode(at, false, true) }
+    const missRows = () => {
+      this.missed = true
     }
-    return { at, problems, contents: rootNode(tree, token.value, token.offset) }
+    const tree = { cuts: this.cuts, anchors: survey, faults: marks, runs, missRows }
+    return { at, problems, doubts, uncertain, contents: rootNode(tree, token.value, token.offset) }
   }
 
   /** Documents are asked in their order, so each tag is looked at once. */

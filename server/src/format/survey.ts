@@ -1,11 +1,14 @@
-/** What the aliases of a document stand for, and whether that is within reason. */
+/** One look over a document: what its aliases stand for, whether that is within reason, and what is left open. */
 import type { CST } from 'yaml'
 import { type Anchors, tokenEnd } from './nodes.ts'
 
 /** What all aliases of a document may stand for together, in characters and values. */
 const MOST = 1_000_000
 
-export interface AnchorFault {
+/** Nobody reads on after so many. */
+const MOST_UNCLOSED = 100
+
+export interface SurveyFault {
   readonly start: number
   readonly end: number
   readonly message: string
@@ -18,7 +21,9 @@ interface Anchor {
 
 /** One walk over a document. The depth of the tree is bounded by whoever has parsed it. */
 export class Survey implements Anchors {
-  readonly faults: AnchorFault[] = []
+  readonly faults: SurveyFault[] = []
+  /** What is opened and not closed, with the offset at which that is certain. */
+  readonly unclosed: (SurveyFault & { readonly certain: number })[] = []
   /** The aliases stand for so much that the document must not be read. */
   excessive = false
   /** By name, in the order of the text. */
@@ -55,13 +60,36 @@ export class Survey implements Anchors {
   private walk(token: CST.Token | null | undefined): void {
     if (!token) return
     if (token.type === 'alias') this.aliases.push(token)
+    if (token.type === 'double-quoted-scalar' || token.type === 'single-quoted-scalar') this.quotes(token)
     if (!('items' in token)) return
+    const open = this.unclosed.length
     for (const { start, key, sep, value } of token.items as CST.CollectionItem[]) {
       this.props(start, key === undefined ? value : (key ?? undefined))
       this.walk(key)
       if (sep) this.props(sep, value)
       this.walk(value)
     }
+    // What holds something unclosed is often so for that reason only.
+    if (token.type === 'flow-collection' && this.unclosed.length === open) this.brackets(token)
+  }
+
+  private brackets(token: CST.FlowCollection): void {
+    const { offset, source } = token.start
+    const closing = source === '[' ? ']' : '}'
+    if (token.end[0]?.source === closing) return
+    const what = source === '[' ? 'A list' : 'A mapping'
+    this.open(offset, tokenEnd(token), `${what} begins here and is not closed: \`${closing}\` is missing.`)
+  }
+
+  private quotes(token: CST.FlowScalar): void {
+    const { source, offset } = token
+    const quote = source[0]
+    if (source.length > 1 && source.endsWith(quote)) return
+    this.open(offset, tokenEnd(token), `A text begins here and is not closed: \`${quote}\` is missing.`)
+  }
+
+  private open(start: number, certain: number, message: string): void {
+    if (this.unclosed.length < MOST_UNCLOSED) this.unclosed.push({ start, end: start + 1, message, certain })
   }
 
   private props(props: readonly CST.SourceToken[], token: CST.Token | undefined): void {
