@@ -144,7 +144,7 @@ export const pathSegments = ({ path }: BookMatch): [string, string][] =>
   path.flatMap(piece => piece.slice(1).map((to, i): [string, string] => [piece[i], to]))
 
 /** Does the book's path join two labels, in either direction? */
-export const isJoined = (match: BookMatch, a: string, b: string): boolean =>
+const isJoined = (match: BookMatch, a: string, b: string): boolean =>
   pathSegments(match).some(([from, to]) => (from === a && to === b) || (from === b && to === a))
 
 /** Do two labels stand on the two sides of a break in the book's path, and are joined nowhere in it (U | K)? */
@@ -154,9 +154,6 @@ export function areAcrossBreak(match: BookMatch, a: string, b: string): boolean 
   const across = breaks.some(([left, right]) => (left === a && right === b) || (left === b && right === a))
   return across && !isJoined(match, a, b)
 }
-
-/** The book's path as a lattice file writes it: `Γ – X – W | U – X`; empty where the book recommends none. */
-export const canonicalPath = ({ path }: BookMatch): string => path.map(piece => piece.join(' – ')).join(' | ')
 
 export interface OtherParameter {
   readonly name: string
