@@ -62,7 +62,7 @@ export class StatusItem {
 }
 
 /** What the item shows. */
-export function view(
+function view(
   server: ServerState,
   file: StatusParams | undefined,
 ): Pick<LanguageStatusItem, 'text' | 'detail' | 'busy' | 'severity' | 'command'> {

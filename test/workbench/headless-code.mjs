@@ -4,7 +4,7 @@
 //   HEADLESS_CODE_SERVER   path of server-main.js            (required)
 //   HEADLESS_CODE_NODE     the Node to run it                (default: this one)
 //   HEADLESS_CODE_BROWSER  path of Chromium                  (default: the first one on PATH)
-//   HEADLESS_CODE_TIMEOUT  seconds before the run is failed  (default 180)
+//   HEADLESS_CODE_TIMEOUT  seconds before the run is failed  (default 600)
 //   HEADLESS_CODE_VERBOSE  1: print the workbench's console too
 import { spawn } from 'node:child_process'
 import { existsSync, mkdirSync, statSync, writeFileSync } from 'node:fs'
@@ -46,7 +46,7 @@ let hostEnd = ''
 const server = startServer()
 process.on('SIGINT', () => end(130))
 process.on('SIGTERM', () => end(143))
-setTimeout(() => end(124, 'timed out'), 1000 * Number(process.env.HEADLESS_CODE_TIMEOUT ?? 180)).unref()
+setTimeout(() => end(124, 'timed out'), 1000 * Number(process.env.HEADLESS_CODE_TIMEOUT ?? 600)).unref()
 server.on('exit', code => end(3, `the server ended early (${code})`))
 
 try {

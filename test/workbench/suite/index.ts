@@ -8,7 +8,7 @@ import * as vscode from 'vscode'
 declare const SUITES: string[]
 
 export async function run(): Promise<void> {
-  const mocha = new Mocha({ ui: 'bdd', timeout: 30_000, color: false, reporter: 'spec' })
+  const mocha = new Mocha({ ui: 'bdd', timeout: 90_000, color: false, reporter: 'spec' })
   mocha.suite.emit('pre-require', globalThis as never, '', mocha)
   for (const suite of SUITES) await suites[suite]()
   const stats = await new Promise<object>(done => {

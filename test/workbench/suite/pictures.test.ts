@@ -52,4 +52,14 @@ describe('pictures', () => {
       await window.picture(`colours-${name}`)
     })
   }
+
+  it('the status item names the crystal and counts the findings', async () => {
+    const editor = await open('lead-telluride.lattice.yaml')
+    await settled(editor.document)
+    await window.page.locator('[id="status.languageStatus"]').hover()
+    const item = window.page.locator('.hover-language-status', { hasText: 'cF' }).first()
+    await item.waitFor()
+    assert.match((await item.textContent()) ?? '', /1 error/)
+    await window.picture('status')
+  })
 })

@@ -5,7 +5,7 @@ import type { CheckedResult } from '../../../server/src/protocol.ts'
 
 export const EXTENSION = 'tarn-lane.braggline'
 /** How long the editor may take to show what the server has answered, in ms. */
-const PATIENCE = 15_000
+const PATIENCE = 30_000
 
 export const file = (name: string): vscode.Uri =>
   vscode.Uri.joinPath(vscode.workspace.workspaceFolders![0].uri, name)

@@ -1,0 +1,58 @@
+import { readFileSync } from 'node:fs'
+import { describe, expect, test } from 'vitest'
+import { CHECKS } from '../../server/src/checks/index.ts'
+
+interface Setting {
+  order?: number
+  scope?: string
+  default?: unknown
+  markdownDescription?: string
+  enum?: unknown[]
+  enumDescriptions?: string[]
+  properties?: Record<string, { enum: string[] }>
+}
+const { contributes, activationEvents } = JSON.parse(
+  readFileSync(new URL('../../package.json', import.meta.url), 'utf8'),
+) as {
+  activationEvents: string[]
+  contributes: {
+    commands: { command: string; category?: string; title: string }[]
+    configuration: { properties: Record<string, Setting> }
+  }
+}
+const settings = Object.entries(contributes.configuration.properties)
+
+describe('settings', () => {
+  test.each(settings)('%s says what it is', (name, setting) => {
+    expect(name).toMatch(/^braggline\./)
+    expect(setting).toMatchObject({
+      order: expect.any(Number),
+      scope: expect.stringMatching(/^(resource|window)$/),
+      markdownDescription: expect.stringMatching(/\.$/),
+    })
+    expect(setting).toHaveProperty('default')
+    if (setting.enum) expect(setting.enumDescriptions).toHaveLength(setting.enum.length)
+  })
+
+  test('each has a place of its own', () => {
+    expect(new Set(settings.map(([, { order }]) => order)).size).toBe(settings.length)
+  })
+
+  test('every rule can be turned off or changed in all files', () => {
+    const { properties } = contributes.configuration.properties['braggline.checks']
+    expect(Object.keys(properties!)).toEqual(expect.arrayContaining(CHECKS.map(({ id }) => id)))
+    for (const { enum: severities } of Object.values(properties!))
+      expect(severities).toEqual(['off', 'info', 'warning', 'error'])
+  })
+})
+
+test('commands are found under the name of the program', () => {
+  for (const { command, category } of contributes.commands) {
+    expect(command).toMatch(/^braggline\./)
+    expect(category).toBe('Braggline')
+  }
+})
+
+test('nothing wakes the extension but lattice files', () => {
+  for (const event of activationEvents) expect(event).toMatch(/^workspaceContains:\*\*\/\*\.lattice\.ya?ml$/)
+})
