@@ -207,17 +207,22 @@ function metricGroup(
       }
     }
   const all = found.length
-  while (!isGroup(found.map(({ W }) => W))) {
-    const worst = Math.max(...found.map(({ miss }) => miss))
+  let worst = worstOf(found)
+  // All symmetries of a metric are a group; only what fits by the tolerance alone may be none.
+  while (worst > ROUNDING * lengths[dimension - 1] && !isGroup(found.map(({ W }) => W))) {
     found = found.filter(({ miss }) => miss < worst * (1 - SAME_MISFIT))
+    worst = worstOf(found)
   }
   const group = found.map(({ W }) => W)
   return {
     group: [...group.filter(isIdentity), ...group.filter(W => !isIdentity(W))],
     lowered: found.length < all,
-    misfit: Math.max(...found.map(({ miss }) => miss)),
+    misfit: worst,
   }
 }
+
+const worstOf = (found: readonly { readonly miss: number }[]): number =>
+  found.reduce((worst, { miss }) => Math.max(worst, miss), 0)
 
 const isIdentity = (W: Mat3): boolean => W.every((row, i) => row.every((x, j) => x === IDENTITY[i][j]))
 

@@ -254,6 +254,8 @@ function describe(
   const type = spaceGroupType(answer.number)
   const sites = siteOrders(answer.orbits, operations.length)
   const ofStated = <T>(list: readonly T[]): T[] => cell.atomOf.map(atom => list[atom])
+  const stated = latticeType(input.primitive, dimension, answer.tolerance)
+  const lattice = cell.fold === 1 ? stated : latticeType(cell.basis, dimension, answer.tolerance)
   const orbits = ofStated(answer.orbits)
   const first = new Map<number, number>()
   for (const [i, orbit] of orbits.entries()) if (!first.has(orbit)) first.set(orbit, i)
@@ -279,8 +281,8 @@ function describe(
     equivalentAtoms: orbits.map(orbit => first.get(orbit)!),
     wyckoffLetters: dimension === 3 ? ofStated(answer.wyckoffLetters) : undefined,
     bravais: dimension === 3 ? bravaisOf(type.lattice) : planeBravais(operations, dimension),
-    latticeBravais: latticeType(cell.basis, dimension, answer.tolerance)?.bravais,
-    holohedry: latticeType(input.primitive, dimension, answer.tolerance)?.holohedry ?? [],
+    latticeBravais: lattice?.bravais,
+    holohedry: stated?.holohedry ?? [],
     standard: dimension === 3 ? standardCell(answer, change, cell.basis) : undefined,
     toleranceUsed: answer.tolerance,
     toleranceLowered: answer.tolerance < input.tolerance,
