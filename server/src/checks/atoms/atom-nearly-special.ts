@@ -31,9 +31,8 @@ export const atomNearlySpecial: Check<Facts> = {
     if (corrections.size === 0) return
     const gain = gained(crystal, corrections)
     if (!gain) return
-    const mattering = [...corrections.values()].filter(({ shift }) => shift > gain.tolerance)
-    const all = mattering.length > 0 ? mattering : [...corrections.values()]
-    yield* few(all.map(correction => finding(crystal, correction, gain)))
+    const mattering = [...corrections.values()].filter(({ shift }) => shift > strictTolerance(crystal))
+    yield* few(mattering.map(correction => finding(crystal, correction, gain)))
   },
 }
 
@@ -92,10 +91,12 @@ function exactValue(number: NumberValue): Fraction | undefined {
 /** Programs take atoms for symmetric within about this part of a lattice vector (common practice). */
 const PROGRAM_TOLERANCE = 1e-5
 
+const strictTolerance = ({ lattice, dimension }: Crystal): number =>
+  PROGRAM_TOLERANCE * Math.min(...lattice!.primitive.slice(0, dimension).map(norm))
+
 interface Gain {
   readonly before: string
   readonly after: string
-  readonly tolerance: number
 }
 
 /** What the exact places bring, within the file's tolerance or at least that of a stricter program. */
@@ -104,13 +105,10 @@ function gained(crystal: Crystal, corrections: ReadonlyMap<PlacedAtom, Correctio
     kind: atom.kind,
     fraction: corrections.get(atom)?.fraction ?? atom.fraction,
   }))
-  const strict =
-    PROGRAM_TOLERANCE * Math.min(...crystal.lattice!.primitive.slice(0, crystal.dimension).map(norm))
-  for (const tolerance of [crystal.tolerance, strict]) {
+  for (const tolerance of [crystal.tolerance, strictTolerance(crystal)]) {
     const before = crystal.searchWith(crystal.atoms, tolerance)
     const after = crystal.searchWith(exact, tolerance)
-    if (operations(after) > operations(before))
-      return { before: nameIn(before), after: nameIn(after), tolerance }
+    if (operations(after) > operations(before)) return { before: nameIn(before), after: nameIn(after) }
   }
   return undefined
 }

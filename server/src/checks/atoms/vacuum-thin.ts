@@ -10,6 +10,9 @@ interface Facts {
 /** In Å. Below it the sheets still feel each other (common practice: 10 to 20 Å). */
 const THINNEST = 10
 
+/** Rounding of coordinates, relative to the height. */
+const FLAT = 1e-6
+
 export const vacuumThin: Check<Facts> = {
   id: 'vacuum-thin',
   severity: 'warning',
@@ -34,7 +37,7 @@ export const vacuumThin: Check<Facts> = {
     const { unit } = crystal
     yield {
       at: height.at,
-      message: `A sheet ${length(thickness, unit, 2)} thick in a cell ${length(height.value, unit, 2)} high leaves ${length(vacuum, unit, 2)} of vacuum; it takes ${length(needed, unit, 2)} or more, a height from ${length(thickness + needed, unit, 2)}.`,
+      message: `A ${thickness < FLAT * height.value ? 'flat sheet' : `sheet ${length(thickness, unit, 2)} thick`} in a cell ${length(height.value, unit, 2)} high leaves ${length(vacuum, unit, 2)} of vacuum; it takes ${length(needed, unit, 2)} or more, a height from ${length(thickness + needed, unit, 2)}.`,
       facts: { vacuum, thickness },
     }
   },

@@ -12,7 +12,7 @@ interface Facts {
 export const latticeFlat: Check<Facts> = {
   id: 'lattice-flat',
   severity: 'error',
-  summary: 'The lattice vectors span no volume (no area, no length), or a length is not positive.',
+  summary: 'The lattice vectors span no volume (no area, no length).',
   why: 'Without a cell there is no reciprocal lattice, and nothing can be computed.',
   wrong: 'lattice:\n  vectors: [[1, 0, 0], [0, 1, 0], [1, 1, 0]]\n',
   right: 'lattice:\n  vectors: [[1, 0, 0], [0, 1.2, 0], [0, 0, 1.5]]\n',
@@ -22,14 +22,7 @@ export const latticeFlat: Check<Facts> = {
     if (!block) return
     const { fault } = crystal.build
     if (fault?.fault === 'flat') yield flat(context, block, fault)
-    if (fault?.fault === 'lengths') yield* notPositive(context, block, fault.vectors)
-    const { height } = block
-    if (height && height.value <= 0)
-      yield {
-        at: height.at,
-        message: `A height of ${length(height.value, crystal.unit)} is no period: it must be positive.`,
-        facts: { volume: 0 },
-      }
+    if (fault?.fault === 'lengths') yield* beyondNumbers(context, block, fault.vectors)
   },
 }
 
@@ -74,23 +67,20 @@ const areParallel = (u: Vec3, v: Vec3): boolean => norm(cross(u, v)) <= PARALLEL
 
 const NAMES = ['a', 'b', 'c'] as const
 
-function* notPositive(
+/** Lengths with which no double number can compute; the decoder has refused those that are not positive. */
+function* beyondNumbers(
   { crystal }: Context,
   block: LatticeBlock,
   vectors: readonly number[],
 ): Iterable<Finding<Facts>> {
   for (const i of vectors) {
-    const number = block.parameters[NAMES[i]]
     const row = block.vectors?.rows[i]
-    // What the type ties to another length (b = a) is said there.
-    const at = row?.at ?? number?.at
-    if (!at) continue
-    const value = number && !row ? number.value : norm(vectorOf(row!))
-    const wrong =
-      value <= 0 ? 'must be positive' : `is ${value > 1 ? 'too long' : 'too short'} to be computed with`
+    const number = block.parameters[NAMES[i]]
+    if (!row && !number) continue // The type ties it to another length, where it is said.
+    const value = row ? norm(vectorOf(row)) : number!.value
     yield {
-      at,
-      message: `${NAMES[i]} = ${length(value, crystal.unit)}: a lattice vector's length ${wrong}.`,
+      at: row?.at ?? number!.at,
+      message: `${NAMES[i]} = ${length(value, crystal.unit)} is too ${value > 1 ? 'long' : 'short'} a vector to be computed with.`,
       facts: { volume: 0 },
     }
   }

@@ -32,8 +32,8 @@ export const latticeNearlySymmetric: Check<Facts> = {
     const changed = changes(vectors.rows as readonly VectorValue[], rows)
     const at: Span = changed.length === 1 ? changed[0].at : vectors.at
     const cause = rounding
-      ? 'by the rounding of the digits written'
-      : `by ${share(type.misfit / norm(primitive[0]))} of a vector`
+      ? 'the rounding of the digits written'
+      : `${share(type.misfit / norm(primitive[0]))} of a vector`
     const otherwise = exactly ? `: a stricter program finds ${named(exactly)}` : ''
     const fixes: Fix[] = [
       { title: `Write the vectors of an exact ${type.bravais} lattice`, safe: false, edits: changed },

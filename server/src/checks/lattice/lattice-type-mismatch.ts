@@ -11,7 +11,7 @@ import { classOf, contradictsVectors, isSameType, isSpecialCase, named, typeThat
 import { nearlySymmetric, typesNearby } from './nearby-types.ts'
 
 interface Facts {
-  readonly stated: BravaisType
+  readonly stated?: BravaisType
   /** What the lattice is, where that is another type. */
   readonly found?: BravaisType
   /** How far vectors miss the stated type, in the file's unit. */
@@ -34,30 +34,15 @@ export const latticeTypeMismatch: Check<Facts> = {
   },
 }
 
-/** A centring that a lattice of this dimension cannot have, or that is not the type's own. */
+/** A centring that a lattice of this dimension cannot have. */
 function* centringFault({ document, crystal }: Context): Iterable<Finding<Facts>> {
-  const { centring, bravais, vectors } = document.lattice ?? {}
-  if (!centring) return
-  const facts = { stated: bravais?.value ?? 'aP' }
-  if (crystal.build.fault?.fault === 'centring')
-    yield {
-      at: centring.at,
-      message: `${crystal.dimension === 2 ? 'A plane lattice is' : 'A chain is'} not centred ${centring.value}: ${crystal.dimension === 2 ? 'only P and C are possible' : 'only P is possible'}.`,
-      facts,
-    }
-  else if (bravais && !vectors && BRAVAIS[bravais.value].centring !== centring.value)
-    yield {
-      at: centring.at,
-      message: `A lattice of type ${named(bravais.value)} has the centring ${BRAVAIS[bravais.value].centring}, not ${centring.value}.`,
-      facts,
-      fixes: [
-        {
-          title: `Replace by ${BRAVAIS[bravais.value].centring}`,
-          safe: true, // Beside a type the centring is not read.
-          edits: [{ at: centring.at, text: BRAVAIS[bravais.value].centring }],
-        },
-      ],
-    }
+  const { centring, bravais } = document.lattice ?? {}
+  if (!centring || crystal.build.fault?.fault !== 'centring') return
+  yield {
+    at: centring.at,
+    message: `${crystal.dimension === 2 ? 'A plane lattice is never' : 'A chain is never'} centred ${centring.value}: ${crystal.dimension === 2 ? 'P and C are possible' : 'only P is possible'}.`,
+    facts: { stated: bravais?.value },
+  }
 }
 
 const SYMBOL: Record<ParameterName, string> = { a: 'a', b: 'b', c: 'c', alpha: 'α', beta: 'β', gamma: 'γ' }
@@ -116,13 +101,13 @@ function* vectorsAgainst(context: Context, bravais: Sourced<BravaisType>): Itera
   const centring = meantCentring(crystal, stated)
   const misfit = misfitTo(crystal, stated)
   const remedy = centring
-    ? ` With \`centring: ${centring}\` they would: the rows are the edges of the conventional cell.`
+    ? ` With \`centring: ${centring}\` they would be: the rows are the edges of the conventional cell.`
     : misfit === undefined
       ? ''
       : ` They miss it by ${length(misfit, crystal.unit)}.`
   yield {
     at: bravais.at,
-    message: `The vectors span a lattice of type ${named(found)}${sizes(type)}, not ${named(stated)}.${remedy}`,
+    message: `The vectors span a lattice of type ${named(found)}, not ${named(stated)}: ${sizes(type!, crystal)}.${remedy}`,
     facts: { stated, found, misfit },
     related: [{ at: document.lattice!.vectors!.at, message: 'The vectors' }],
     fixes: [
@@ -147,10 +132,12 @@ function statedCentring({ document, text }: Context, centring: Centring): Fix {
 }
 
 /** The cell that was found: what the eye compares with the numbers in the file. */
-function sizes(type: LatticeType | undefined): string {
-  if (!type) return ''
-  const { a, b, c, alpha, beta, gamma } = type.cell
-  return ` (conventional cell ${[a, b, c].map(x => plain(x)).join(' × ')}, angles ${[alpha, beta, gamma].map(degrees).join(', ')})`
+function sizes({ cell }: LatticeType, { unit, dimension }: Crystal): string {
+  const { a, b, c, alpha, beta, gamma } = cell
+  if (dimension === 2)
+    return `its cell is ${plain(a)} × ${length(b, unit)} with an angle of ${degrees(gamma)}`
+  const angles = [alpha, beta, gamma].map(degrees).join(', ')
+  return `its cell is ${plain(a)} × ${plain(b)} × ${length(c, unit)} with angles of ${angles}`
 }
 
 /** The centring with which the rows would be of the stated type. */

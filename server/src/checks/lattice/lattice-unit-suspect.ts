@@ -1,4 +1,4 @@
-import { SYMBOL, type Unit } from '../../crystal/units.ts'
+import type { Unit } from '../../crystal/units.ts'
 import { insertKeys } from '../../format/edits.ts'
 import type { Span, TextEdit } from '../../format/model.ts'
 import { length, plain } from '../../meaning/wording.ts'
@@ -31,12 +31,14 @@ export const latticeUnitSuspect: Check<Facts> = {
       first === second ? `${nameOf(first)} and its own copy` : `${nameOf(first)} and ${nameOf(second)}`
     yield {
       at: placeOf(context),
-      message: `${pair} are ${length(distance, crystal.unit)} apart, ${plain(contact.ratio, 2)} times the sum of their covalent radii, as in no solid; read in ${unit} (${SYMBOL[unit]}) it is an ordinary ${plain(ratio, 2)} times.${contact.ratio > 1 ? ' Or atoms, or a centring, are missing.' : ''}`,
+      message: `${pair} are ${length(distance, crystal.unit)} apart, ${plain(contact.ratio, 2)} times the sum of their covalent radii, as in no solid; read in ${NAMES[unit]} it is an ordinary ${plain(ratio, 2)} times.${contact.ratio > 1 ? ' Or atoms, or a centring, are missing.' : ''}`,
       facts: { unit, distance, ratio: contact.ratio },
       fixes: [{ title: `State \`unit: ${unit}\``, safe: false, edits: statement(context, unit) }],
     }
   },
 }
+
+const NAMES: Record<Unit, string> = { angstrom: 'ångström', nm: 'nm', bohr: 'bohr' }
 
 function placeOf({ document }: Context): Span {
   const { unitEntry, lattice } = document

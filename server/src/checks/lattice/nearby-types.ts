@@ -1,10 +1,11 @@
 /** Lattice types that vectors miss by little, and the vectors that would have them. */
 import { BRAVAIS, type BravaisType } from '../../crystal/bravais.ts'
-import { type CellParameters, type Dimension, isLattice, latticeFromCell } from '../../crystal/lattice.ts'
+import { type CellParameters, cellParameters, type Dimension, isLattice, latticeFromCell } from '../../crystal/lattice.ts'
 import { namedSpaceGroup } from '../../crystal/space-group.ts'
 import { type LatticeType, latticeType } from '../../crystal/symmetry.ts'
 import {
   cross,
+  determinant,
   distance,
   dot,
   inverse,
@@ -85,7 +86,7 @@ function search(crystal: Crystal): NearlySymmetric | undefined {
   const most = LARGEST_SHIFT / crystal.angstrom
   for (const type of typesNearby(primitive, dimension, Math.max(most, small))) {
     if (!type.bravais || isStatedLower(crystal, type.bravais)) continue
-    const choices = symmetricPrimitives(type, dimension).map(rows =>
+    const choices = symmetricPrimitives(type, primitive, dimension).map(rows =>
       multiply(lattice.conventionalFromPrimitive, rows).slice(0, dimension),
     )
     const rounded = choices.filter(rows => isRounded(written, rows, most))
@@ -133,19 +134,29 @@ function gentlest(choices: readonly (readonly Vec3[])[], written: readonly Vecto
 }
 
 /**
- * Primitive vectors that have a type exactly, near those that have it nearly: lengths that must agree take one of the
- * values that stand there or their mean, and one axis keeps its direction, a second the plane of both.
+ * Primitive vectors that have a type exactly, near those that have it nearly. The conventional cell may lie along any of
+ * its images; lengths that must agree take one of the values that stand there or their mean; one axis keeps its
+ * direction, a second the plane of both.
  */
 function symmetricPrimitives(
-  { bravais, cell, conventional, conventionalFromPrimitive }: LatticeType,
+  { bravais, conventionalFromPrimitive, holohedry }: LatticeType,
+  primitive: Mat3,
   dimension: Dimension,
 ): Mat3[] {
-  const toPrimitive = inverse(conventionalFromPrimitive)
-  return idealCells(bravais!, cell).flatMap(ideal => {
-    const built = latticeFromCell(ideal, 'P', dimension)
-    if (!isLattice(built)) return []
-    return alignments(built.conventional, conventional, dimension).map(rows => multiply(toPrimitive, rows))
-  })
+  return holohedry
+    .filter(W => determinant(W) > 0)
+    .flatMap(W => {
+      const axes = multiply(conventionalFromPrimitive, transpose(W))
+      const conventional = multiply(axes, primitive)
+      const toPrimitive = inverse(axes)
+      return idealCells(bravais!, cellParameters(conventional)).flatMap(ideal => {
+        const built = latticeFromCell(ideal, 'P', dimension)
+        if (!isLattice(built)) return []
+        return alignments(built.conventional, conventional, dimension).map(rows =>
+          multiply(toPrimitive, rows),
+        )
+      })
+    })
 }
 
 function idealCells(bravais: BravaisType, found: CellParameters): CellParameters[] {
