@@ -1,5 +1,9 @@
 import { type Book, OBTUSE_REDUCED } from './book.ts'
 
+/**
+ * The source recommends no path; it names the symmetry lines. Monoclinic cells have the unique axis c. Its own a and c of
+ * a rhombohedral lattice, with |tᵢ|² = a² + c², are a/√3 and c/3 of the hexagonal axes used here.
+ */
 export const BRADLEY_CRACKNELL_1972: Book = {
   id: 'bradley-cracknell-1972',
   source:
@@ -280,9 +284,7 @@ export const BRADLEY_CRACKNELL_1972: Book = {
         Λ: { at: 't, t, 0' },
         Σ: { at: 't, 0, t', ends: 'Γ–X', t: '1/2' },
         Δ: { at: '0, -t, -t', ends: 'Γ–Y', t: '1/2' },
-        A: { at: '1/2+t, 1/2, 1+t' },
         C: { at: 't, -1/2, -1/2+t' },
-        B: { at: '1/2, 1/2-t, 1-t' },
         D: { at: '1/2, -t, 1/2-t' },
         G: { at: '1/2+t, t, 1/2' },
         H: { at: 't, -1/2+t, -1/2' },
@@ -290,6 +292,7 @@ export const BRADLEY_CRACKNELL_1972: Book = {
       },
       doubts: [
         'The representative of the far axis point in the cases with a strongly shorter axis is ours.',
+        'The lines A and B of the other cases are left out: here they lie outside the zone or on C and D.',
         'Letters of the lines on the zone’s surface are from memory; their places follow from the symmetry axes through the points.',
       ],
     },
@@ -310,15 +313,14 @@ export const BRADLEY_CRACKNELL_1972: Book = {
         Σ: { at: 't, 0, t', ends: 'Γ–X', t: '1/2' },
         Δ: { at: '0, -t, -t' },
         A: { at: '1/2+t, 1/2, t' },
-        C: { at: '1+t, 1/2, 1/2+t' },
         B: { at: '1/2, 1/2-t, -t' },
         D: { at: '1/2, -t, 1/2-t' },
         G: { at: '1/2+t, t, 1/2' },
-        H: { at: '1+t, 1/2+t, 1/2' },
         R: { at: '1, 1/2-t, 1/2-t' },
       },
       doubts: [
         'The representative of the far axis point in the cases with a strongly shorter axis is ours.',
+        'The lines C and H of the other cases are left out: here they lie outside the zone or on A and G.',
         'Letters of the lines on the zone’s surface are from memory; their places follow from the symmetry axes through the points.',
       ],
     },
@@ -341,13 +343,12 @@ export const BRADLEY_CRACKNELL_1972: Book = {
         A: { at: '1/2+t, 1/2, t' },
         C: { at: 't, -1/2, -1/2+t' },
         B: { at: '1/2, 1/2-t, -t' },
-        D: { at: '1/2, -t, -1/2-t' },
-        G: { at: '1/2+t, t, -1/2' },
         H: { at: 't, -1/2+t, -1/2' },
         U: { at: '1/2+t, 0, -1/2+t' },
       },
       doubts: [
         'The representative of the far axis point in the cases with a strongly shorter axis is ours.',
+        'The lines D and G of the other cases are left out: here they lie outside the zone or on B and H.',
         'Letters of the lines on the zone’s surface are from memory; their places follow from the symmetry axes through the points.',
       ],
     },
@@ -440,7 +441,7 @@ export const BRADLEY_CRACKNELL_1972: Book = {
       lines: {
         Λ: { at: 't, t, t' },
         Σ: { at: '0, t, -t', ends: 'Γ–F', t: '1/2' },
-        P: { at: '1/2+t, 1/2+t, -1/2+t' },
+        P: { at: '1/2-t, 1/2-t, -1/2-t' },
         Y: { at: 't, 1/2, -t', ends: 'L–Z', t: '1/2' },
       },
       doubts: ['The representatives of Z and F are chosen so that they lie on the zone.'],

@@ -14,6 +14,10 @@ const TRIGONAL_WITH_TWO_H: Groups = {
 /** The only space groups whose standard setting is A-centred. */
 const A_CENTRED: Groups = { numbers: range(38, 41), pointGroups: [] }
 
+/**
+ * Monoclinic cells have the unique axis b and an obtuse β, rhombohedral lattices hexagonal axes. The source takes the
+ * axes of orthorhombic cells from the setting of the space group, so that one lattice may belong to several variations.
+ */
 export const HINUMA_2017: Book = {
   id: 'hinuma-2017',
   source: 'Y. Hinuma, G. Pizzi, Y. Kumagai, F. Oba and I. Tanaka, Comput. Mater. Sci. 128, 140 (2017)',

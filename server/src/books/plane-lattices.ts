@@ -1,5 +1,6 @@
 import type { Book } from './book.ts'
 
+/** The third axis c is the unit normal of the plane. */
 export const PLANE_LATTICES: Book = {
   id: 'plane-lattices',
   source: 'common practice for plane lattices',

@@ -1,5 +1,9 @@
 import { ACUTE_REDUCED, type Book, OBTUSE_REDUCED } from './book.ts'
 
+/**
+ * Orthorhombic axes are ordered by length, monoclinic cells have the unique axis a, rhombohedral ones their own axes.
+ * Where the printed condition does not suffice for the formulas, the one that does stands here (see `doubts`).
+ */
 export const SETYAWAN_CURTAROLO_2010: Book = {
   id: 'setyawan-curtarolo-2010',
   source: 'W. Setyawan and S. Curtarolo, Comput. Mater. Sci. 49, 299 (2010)',
