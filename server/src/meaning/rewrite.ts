@@ -272,9 +272,15 @@ function rowEdits({ text, cell, old, stays }: Task, rows: readonly VectorValue[]
 
 // Atoms
 
-/** A fraction outside [−1/2, 3/2) is brought into [0, 1). */
-const wrapped = (sum: Sum): Sum =>
-  sum.value >= -0.5 && sum.value < 1.5 ? sum : plusWhole(sum, -Math.floor(sum.value + SAME))
+/** Relaxed structures have slightly negative fractions. */
+const SLIGHTLY = 0.05
+
+/** A fraction that is not one of the file's own is brought into the cell. */
+const wrapped = (sum: Sum): Sum => {
+  const isOwn = sum.single && !sum.single.negative
+  const isInside = sum.value >= -SLIGHTLY && sum.value < 1
+  return isOwn || isInside ? sum : plusWhole(sum, -Math.floor(sum.value + SAME))
+}
 
 function atomEdits(task: Task): TextEdit[] | undefined {
   const { crystal, change } = task
@@ -395,15 +401,15 @@ function labelEdits(task: Task): { edits: TextEdit[]; kept: boolean } {
 const SAME_POINT = 1e-6
 
 /** The labels of the book that the path, or a point between others, uses. */
-function bookLabels({ document, book, fileDefines, bookPoints }: Crystal): string[] {
+function bookLabels(crystal: Crystal): string[] {
+  const { document, book, bookPoints } = crystal
   const written = (document.path?.pieces ?? []).flatMap(piece => piece.labels.map(({ label }) => label))
   const ends = (document.points?.items ?? []).flatMap(
     point => point.between?.ends.map(({ label }) => label) ?? [],
   )
   const own = document.path?.recommended ? (book?.path.flat() ?? []) : []
-  return [...new Set([...written, ...ends, ...own])].filter(
-    label => !fileDefines(label) && bookPoints.has(label),
-  )
+  const labels = new Set([...written, ...ends, ...own])
+  return [...labels].filter(label => !crystal.fileDefines(label) && bookPoints.has(label))
 }
 
 /** A Cartesian k of the new text in the frame of the file's points. */
