@@ -48,7 +48,7 @@ test('checks standard input, and its exit status tells', () => {
 })
 
 test('reports the demo', () => {
-  const { status, out, err } = braggline(['report', join(ROOT, 'demo'), '--format', 'jsonl'])
+  const { status, out, err } = braggline(['report', `${ROOT}/demo/*.lattice.yaml`, '--format', 'jsonl'])
   expect({ status, err }).toEqual({ status: 0, err: '' })
   const reports = out
     .trimEnd()
@@ -100,11 +100,15 @@ describe('as a good neighbour', () => {
   })
 
   test('what it writes to a pipe arrives whole', () => {
-    const out = execFileSync(process.execPath, [CLI, 'report', join(ROOT, 'demo'), '--format', 'json'], {
-      cwd: folder,
-      encoding: 'utf8',
-      maxBuffer: 1 << 28,
-    })
+    const out = execFileSync(
+      process.execPath,
+      [CLI, 'report', `${ROOT}/demo/*.lattice.yaml`, '--format', 'json'],
+      {
+        cwd: folder,
+        encoding: 'utf8',
+        maxBuffer: 1 << 28,
+      },
+    )
     expect(Array.isArray(JSON.parse(out))).toBe(true)
   })
 })

@@ -1,29 +1,34 @@
 import pc from 'picocolors'
 import { CHECKS } from '../checks/index.ts'
 import { page } from '../checks/page.ts'
-import { type CheckedFile, checkJson, findingsJson, tally } from '../exchange/findings-json.ts'
+import {
+  type CheckedFile,
+  checkJson,
+  type FindingJson,
+  findingsJson,
+  type Tally,
+  tally,
+} from '../exchange/findings-json.ts'
 import { closingLine, findingsText } from '../exchange/findings-text.ts'
 import { harmless } from '../exchange/layout.ts'
-import { sarifLog } from '../exchange/sarif.ts'
-import type { Severity } from '../format/model.ts'
+import { type SarifPart, sarifLog, sarifPart } from '../exchange/sarif.ts'
 import { count } from '../meaning/wording.ts'
-import { coloured } from './colour.ts'
-import { documentsOf, type Engine } from './engine.ts'
-import { encoded, findFiles, type LatticeText, readText, told } from './files.ts'
+import { documentsOf, type Engine, withoutSymmetry } from './engine.ts'
+import { encoded, findFiles, type LatticeText, readText, STANDARD_INPUT } from './files.ts'
 import { type Change, fixAll } from './fixing.ts'
-import { type Io, Refusal } from './io.ts'
+import { Refusal } from './io.ts'
 import { ordinal } from './options.ts'
-import { checkTarget, deliver, replaceFile } from './output.ts'
+import { Desk, replaceFile } from './output.ts'
 import { type Call, CLEAN, DOCUMENT, FOUND, NOT_DONE, OUTPUT, OVERWRITE, type Verb } from './verb.ts'
 import { VERSION } from './version.ts'
 
-const LEVELS = {
-  error: ['error'],
-  warning: ['error', 'warning'],
-  info: ['error', 'warning', 'info'],
-  never: [],
-} as const
-type Level = keyof typeof LEVELS
+/** What makes the exit status 1, by the least severity that does. */
+const FAILS: Record<string, (tally: Tally) => boolean> = {
+  error: ({ errors }) => errors > 0,
+  warning: ({ errors, warnings }) => errors + warnings > 0,
+  info: ({ errors, warnings, infos }) => errors + warnings + infos > 0,
+  never: () => false,
+}
 
 export const check: Verb = {
   name: 'check',
@@ -38,7 +43,7 @@ export const check: Verb = {
     {
       name: 'fail-on',
       value: 'LEVEL',
-      choices: Object.keys(LEVELS),
+      choices: Object.keys(FAILS),
       help: 'The least severity that makes the exit status 1: error, warning (the default), info or never.',
     },
     {
@@ -58,106 +63,118 @@ export const check: Verb = {
   ],
 
   async run({ given, io, engine: start }: Call): Promise<number> {
-    const output = given.value('output')
-    const picked = ordinal(given, 'document')
-    checkTarget(output, given.has('overwrite'), io)
+    const desk = new Desk(io, given.value('output'), given.has('overwrite'))
+    const format = given.value('format') ?? 'text'
+    const how = { picked: ordinal(given, 'document'), fix: given.has('fix'), forPrograms: format !== 'text' }
     const { names, failures } = await findFiles(given.operands, io)
-    if (given.has('fix') && names.includes('-'))
+    if (how.fix && names.includes(STANDARD_INPUT))
       throw new Refusal('--fix needs files: standard input cannot be written back')
+    for (const failure of failures) desk.fail(failure)
+
     const engine = start()
-    const files: CheckedFile[] = []
+    const writer = WRITERS[format](desk)
+    const total = { files: 0, errors: 0, warnings: 0, infos: 0 }
     for (const [i, name] of names.entries()) {
-      engine.progress.show(`checking file ${i + 1} of ${names.length}: ${harmless(name)}`)
+      desk.progress(`checking file ${i + 1} of ${names.length}: ${harmless(name)}`)
       try {
-        const read = await readText(name, io)
-        if ('failure' in read) failures.push(told(read))
-        else
-          files.push(
-            await checkOne(engine, read, {
-              picked,
-              fix: given.has('fix'),
-              io,
-              quiet: given.value('format') !== undefined,
-            }),
-          )
+        const checked = await checkOne(engine, await readText(name, io), how, desk)
+        const { errors, warnings, infos } = tally(checked.findings)
+        total.files++
+        total.errors += errors
+        total.warnings += warnings
+        total.infos += infos
+        writer.file(checked)
       } catch (error) {
         if (!(error instanceof Refusal)) throw error
-        failures.push(error.message)
+        desk.fail(error.message)
       }
     }
-    engine.progress.clear()
-    for (const failure of failures) io.err.write(`braggline: ${failure}\n`)
-    if (files.length > 0 || given.value('format'))
-      await deliver(
-        written(files, failures, given.value('format') ?? 'text', output === undefined && coloured(io)),
-        output,
-        io,
-      )
-    if (failures.length > 0) return NOT_DONE
-    const level: readonly Severity[] = LEVELS[(given.value('fail-on') ?? 'warning') as Level]
-    return files.some(({ findings }) => findings.some(({ severity }) => level.includes(severity)))
-      ? FOUND
-      : CLEAN
+    writer.end(total)
+    await desk.close()
+    if (desk.failures.length > 0) return NOT_DONE
+    return FAILS[given.value('fail-on') ?? 'warning'](total) ? FOUND : CLEAN
   },
 }
 
 interface How {
   readonly picked: number | undefined
   readonly fix: boolean
-  readonly io: Io
   /** Standard output belongs to programs: what was mended is told on standard error. */
-  readonly quiet: boolean
+  readonly forPrograms: boolean
 }
 
 async function checkOne(
   engine: Engine,
   read: LatticeText,
-  { picked, fix, io, quiet }: How,
+  { picked, fix, forPrograms }: How,
+  desk: Desk,
 ): Promise<CheckedFile> {
   let snapshot = await engine.check(read.text)
   if (picked !== undefined) documentsOf(snapshot, read.name, picked)
   if (fix && read.path) {
     const fixed = await fixAll(engine, snapshot, picked)
     if (fixed.changes.length > 0) {
-      await replaceFile(read.path, encoded(fixed.snapshot.text, read), harmless(read.name))
-      engine.progress.clear()
-      ;(quiet ? io.err : io.out).write(mended(read.name, fixed.changes))
+      await replaceFile(read.path, encoded(fixed.snapshot.text, read), read.name)
+      const mended = changesInWords(read.name, fixed.changes)
+      if (forPrograms) desk.note(mended)
+      else desk.result(mended)
     }
     snapshot = fixed.snapshot
   }
+  for (const reason of withoutSymmetry(snapshot, read.name, picked))
+    desk.note(`braggline: ${harmless(reason)}\n`)
   const findings = snapshot.findings.filter(({ document }) => picked === undefined || document === picked)
   return { file: read.name, snapshot, findings }
 }
 
-const mended = (name: string, changes: readonly Change[]): string => {
+const changesInWords = (name: string, changes: readonly Change[]): string => {
   const lines = changes.map(
     ({ line, column, title, rule }) => `  ${line}:${column}  ${harmless(title)}  (${rule})\n`,
   )
   return `${harmless(name)}: ${count(changes.length, 'fix', 'fixes')} applied\n${lines.join('')}\n`
 }
 
-function written(
-  files: readonly CheckedFile[],
-  failures: readonly string[],
-  format: string,
-  colour: boolean,
-): string {
-  switch (format) {
-    case 'json':
-      return `${JSON.stringify(checkJson(files), null, 2)}\n`
-    case 'jsonl':
-      return files
-        .flatMap(findingsJson)
-        .map(finding => `${JSON.stringify(finding)}\n`)
-        .join('')
-    case 'sarif': {
-      const rules = CHECKS.map(rule => ({ ...rule, page: page(rule) }))
-      return `${JSON.stringify(sarifLog(files, { version: VERSION, rules, failures }), null, 2)}\n`
+interface Writer {
+  file(checked: CheckedFile): void
+  end(total: Tally & { readonly files: number }): void
+}
+
+/** What a format writes of each file at once, so that no file is kept in memory, and what at the end. */
+const WRITERS: Record<string, (desk: Desk) => Writer> = {
+  text(desk) {
+    const paint = pc.createColors(desk.coloured)
+    return {
+      file: checked => desk.result(findingsText(checked, paint)),
+      end: total => {
+        if (total.files > 0) desk.result(`${closingLine(total, total.files, paint)}\n`)
+      },
     }
-    default: {
-      const paint = pc.createColors(colour)
-      const all = tally(files.flatMap(({ findings }) => findings))
-      return `${files.map(file => findingsText(file, paint)).join('')}${closingLine(all, files.length, paint)}\n`
+  },
+  json(desk) {
+    const findings: FindingJson[] = []
+    return {
+      file: checked => findings.push(...findingsJson(checked)),
+      end: ({ files }) => desk.result(`${JSON.stringify(checkJson(findings, files), null, 2)}\n`),
     }
-  }
+  },
+  jsonl: desk => ({
+    file: checked =>
+      desk.result(
+        findingsJson(checked)
+          .map(finding => `${JSON.stringify(finding)}\n`)
+          .join(''),
+      ),
+    end: () => {},
+  }),
+  sarif(desk) {
+    const rules = CHECKS.map(rule => ({ ...rule, page: page(rule) }))
+    const parts: SarifPart[] = []
+    return {
+      file: checked => parts.push(sarifPart(checked, parts.length, rules)),
+      end: () =>
+        desk.result(
+          `${JSON.stringify(sarifLog(parts, { version: VERSION, rules, failures: desk.failures }), null, 2)}\n`,
+        ),
+    }
+  },
 }

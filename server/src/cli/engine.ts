@@ -2,8 +2,7 @@
 import { type DocumentAnalysis, Snapshot } from '../analysis.ts'
 import { count } from '../meaning/wording.ts'
 import { type SymmetryService, Workshop } from '../meaning/workshop.ts'
-import { type Io, Refusal } from './io.ts'
-import { Progress } from './progress.ts'
+import { Refusal } from './io.ts'
 
 /** A service that can say when it has nothing left to do. */
 export interface Symmetries extends SymmetryService {
@@ -12,14 +11,9 @@ export interface Symmetries extends SymmetryService {
 
 export class Engine {
   readonly #workshop: Workshop
-  readonly progress: Progress
 
-  constructor(
-    private readonly symmetries: Symmetries,
-    io: Io,
-  ) {
+  constructor(private readonly symmetries: Symmetries) {
     this.#workshop = new Workshop(symmetries)
-    this.progress = new Progress(io)
   }
 
   /** A snapshot with all its findings computed. */
@@ -27,7 +21,7 @@ export class Engine {
     let snapshot = this.#look(text)
     // Each round ends the searches of one document at least.
     for (let rounds = snapshot.documents.length; snapshot.pending && rounds > 0; rounds--) {
-      await this.progress.during('searching for the symmetry of a large cell…', this.symmetries.idle())
+      await this.symmetries.idle()
       snapshot = this.#look(text)
     }
     return snapshot
@@ -53,3 +47,18 @@ export function documentsOf(
     throw new Refusal(`${name} holds ${count(documents.length, 'crystal')}: there is no document ${picked}`)
   return [document]
 }
+
+/**
+ * Where the symmetry of a crystal could not be found: rules that need it were silent. Not told where a finding of the
+ * document says what is wrong with it.
+ */
+export const withoutSymmetry = (snapshot: Snapshot, name: string, picked: number | undefined): string[] =>
+  snapshot.documents.flatMap(({ document: { number }, crystal }) => {
+    if (!crystal.lattice || (picked !== undefined && number !== picked)) return []
+    const outcome = crystal.symmetryOutcome
+    if (outcome.state === 'found') return []
+    if (snapshot.findings.some(({ document, severity }) => document === number && severity === 'error'))
+      return []
+    const reason = outcome.state === 'failed' ? outcome.reason : 'the search did not end'
+    return [`${name}, document ${number}: nothing that needs the symmetry was checked: ${reason}`]
+  })

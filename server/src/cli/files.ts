@@ -2,7 +2,6 @@
 import { readFileSync, statSync } from 'node:fs'
 import { isAbsolute, join, relative, resolve } from 'node:path'
 import { glob, isDynamicPattern } from 'tinyglobby'
-import { harmless } from '../exchange/layout.ts'
 import { type Io, Refusal } from './io.ts'
 
 export const STANDARD_INPUT = '-'
@@ -17,12 +16,6 @@ export interface LatticeText {
   readonly text: string
   /** The file began with a byte order mark, which is no part of `text`. */
   readonly mark: boolean
-}
-
-/** A file that is there, and could not be read as text. */
-export interface Unread {
-  readonly name: string
-  readonly failure: string
 }
 
 /**
@@ -100,28 +93,32 @@ const REASONS: Record<string, string> = {
   EMFILE: 'too many open files',
 }
 
-export async function readText(name: string, io: Io): Promise<LatticeText | Unread> {
+/** @throws Refusal saying why the file could not be read as text. */
+export async function readText(name: string, io: Io): Promise<LatticeText> {
   if (name === STANDARD_INPUT) return decoded(name, undefined, await io.readInput())
   const path = resolve(io.cwd, name)
+  return decoded(name, path, bytesOf(path, name))
+}
+
+function bytesOf(path: string, name: string): Uint8Array {
   try {
-    return decoded(name, path, readFileSync(path))
+    return readFileSync(path)
   } catch (error) {
-    return { name, failure: reason(error) }
+    throw new Refusal(`${name}: ${reason(error)}`)
   }
 }
 
-function decoded(name: string, path: string | undefined, bytes: Uint8Array): LatticeText | Unread {
+function decoded(name: string, path: string | undefined, bytes: Uint8Array): LatticeText {
   if (bytes.includes(0))
-    return {
-      name,
-      failure: startsUtf16(bytes) ? 'UTF-16 text: save it as UTF-8' : 'a binary file, no lattice file',
-    }
+    throw new Refusal(
+      `${name}: ${startsUtf16(bytes) ? 'UTF-16 text: save it as UTF-8' : 'a binary file, no lattice file'}`,
+    )
   try {
     const text = new TextDecoder('utf-8', { fatal: true, ignoreBOM: true }).decode(bytes)
     const mark = text.startsWith(BYTE_ORDER_MARK)
     return { name, path, text: mark ? text.slice(1) : text, mark }
   } catch {
-    return { name, failure: 'not UTF-8 text' }
+    throw new Refusal(`${name}: not UTF-8 text`)
   }
 }
 const BYTE_ORDER_MARK = '\ufeff'
@@ -131,5 +128,3 @@ const startsUtf16 = (bytes: Uint8Array): boolean =>
 
 /** The text as it goes back into its file. */
 export const encoded = (text: string, { mark }: LatticeText): string => (mark ? BYTE_ORDER_MARK + text : text)
-
-export const told = ({ name, failure }: Unread): string => `${harmless(name)}: ${failure}`

@@ -1,15 +1,13 @@
 import { type FoldJson, foldPoint } from '../exchange/fold.ts'
-import { harmless, inColumns } from '../exchange/layout.ts'
+import { inColumns } from '../exchange/layout.ts'
 import type { Vec3 } from '../crystal/vector.ts'
 import { INVERSE_SYMBOL } from '../crystal/units.ts'
 import { evaluate } from '../format/numbers.ts'
 import type { Crystal } from '../meaning/crystal.ts'
-import { count, fractions, plain } from '../meaning/wording.ts'
-import { documentsOf } from './engine.ts'
-import { findFiles, readText, told } from './files.ts'
+import { fractions, plain } from '../meaning/wording.ts'
 import { Refusal } from './io.ts'
-import { ordinal } from './options.ts'
-import { checkTarget, deliver } from './output.ts'
+import { Desk } from './output.ts'
+import { oneCrystal } from './pick.ts'
 import { type Call, CLEAN, DOCUMENT, OUTPUT, OVERWRITE, type Verb } from './verb.ts'
 
 /** A point is written where another program's output is compared with it. */
@@ -38,33 +36,19 @@ export const fold: Verb = {
   examples: ['braggline fold lead-telluride.lattice.yaml --at "3/4,0,0" --at "1/2,1/2,1"'],
 
   async run({ given, io, engine: start }: Call): Promise<number> {
-    const output = given.value('output')
-    checkTarget(output, given.has('overwrite'), io)
+    const desk = new Desk(io, given.value('output'), given.has('overwrite'))
     const asked = given.values('at')
     if (asked.length === 0) throw new Refusal('no k-point is given: --at "k1,k2,k3"')
-    const { names, failures } = await findFiles(given.operands, io)
-    if (failures.length > 0) throw new Refusal(failures[0])
-    if (names.length > 1) throw new Refusal(`fold takes one file; these are ${names.length}`)
-    const [name] = names
-    const read = await readText(name, io)
-    if ('failure' in read) throw new Refusal(told(read))
-    const documents = documentsOf(await start().check(read.text), harmless(name), ordinal(given, 'document'))
-    if (documents.length > 1)
-      throw new Refusal(
-        `${harmless(name)} holds ${count(documents.length, 'crystal')}: pick one with --document N`,
-      )
-    const crystal = documents[0]?.crystal
-    if (!crystal?.zone)
-      throw new Refusal(`${harmless(name)} has no lattice that could be built; \`braggline check\` says why`)
-    const folded = asked.map(text => foldPoint(crystal, point(text, crystal)))
-    const known = folded.filter(one => one !== undefined)
-    if (known.length < folded.length)
-      throw new Refusal(`${harmless(name)}: the frame 2pi/a needs the lattice parameter a`)
-    await deliver(
-      given.value('format') === 'json' ? `${JSON.stringify(known, null, 2)}\n` : table(known, crystal),
-      output,
-      io,
+    const crystal = await oneCrystal(given, io, start)
+    const folded = asked.map(text => {
+      const one = foldPoint(crystal, point(text, crystal))
+      if (!one) throw new Refusal('the frame 2pi/a of the file needs the lattice parameter a')
+      return one
+    })
+    desk.result(
+      given.value('format') === 'json' ? `${JSON.stringify(folded, null, 2)}\n` : table(folded, crystal),
     )
+    await desk.close()
     return CLEAN
   },
 }
@@ -74,7 +58,7 @@ function point(text: string, { dimension, document }: Crystal): Vec3 {
   const parts = text.replace(/^\s*\[(.*)\]\s*$/s, '$1').split(',')
   const wanted = dimension === 3 ? 'three numbers' : dimension === 2 ? 'two numbers' : 'one number'
   if (parts.length !== dimension && parts.length !== 3)
-    throw new Refusal(`--at "${harmless(text)}": a k-point of this crystal has ${wanted}, parted by commas`)
+    throw new Refusal(`--at "${text}": a k-point of this crystal has ${wanted}, parted by commas`)
   const numbers = parts.map(part => {
     const result = evaluate(part.trim(), name => {
       const value = document.lattice?.parameters[name]?.value
@@ -82,11 +66,11 @@ function point(text: string, { dimension, document }: Crystal): Vec3 {
     })
     if ('number' in result) return result.number.value
     throw new Refusal(
-      `--at "${harmless(text)}": ${'fault' in result ? harmless(result.fault.message) : 'uses a number of the file that cannot be read'}`,
+      `--at "${text}": ${'fault' in result ? result.fault.message : 'uses a number of the file that cannot be read'}`,
     )
   })
   if (numbers.slice(dimension).some(x => x !== 0))
-    throw new Refusal(`--at "${harmless(text)}": a component stands along a direction without a period`)
+    throw new Refusal(`--at "${text}": a component stands along a direction without a period`)
   return [numbers[0], numbers[1] ?? 0, numbers[2] ?? 0]
 }
 

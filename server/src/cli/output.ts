@@ -2,8 +2,11 @@
 import { chmodSync, existsSync, realpathSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs'
 import { basename, dirname, join, resolve } from 'node:path'
 import { randomBytes } from 'node:crypto'
+import { harmless } from '../exchange/layout.ts'
+import { coloured } from './colour.ts'
 import { reason } from './files.ts'
 import { type Io, Refusal } from './io.ts'
+import { Progress } from './progress.ts'
 
 /**
  * Write beside the target, then rename: a reader sees the old content or the new one. A link stays a link and the
@@ -40,14 +43,58 @@ export async function replaceFile(path: string, content: string, shown: string):
 /** 128 + the number of SIGINT, as shells tell it. */
 const INTERRUPTED = 130
 
-/** Refuse early, before any work, to write over a file that is there. */
-export function checkTarget(output: string | undefined, overwrite: boolean, { cwd }: Io): void {
-  if (output !== undefined && !overwrite && existsSync(resolve(cwd, output)))
-    throw new Refusal(`${output} is there already: give --overwrite to replace it`)
-}
+/**
+ * Where a verb's words go: results to standard output as they come, or to a file in one piece at the end; all else to
+ * standard error. The progress line gives way to either.
+ */
+export class Desk {
+  readonly failures: string[] = []
+  readonly #kept: string[] = []
+  readonly #progress: Progress
 
-/** Results go to the file that was asked for, else to standard output. */
-export async function deliver(content: string, output: string | undefined, io: Io): Promise<void> {
-  if (output === undefined) io.out.write(content)
-  else await replaceFile(resolve(io.cwd, output), content, output)
+  /**
+   * @param output the file that was asked for.
+   * @throws Refusal, before any work, where it is there and may not be replaced.
+   */
+  constructor(
+    private readonly io: Io,
+    private readonly output: string | undefined,
+    overwrite: boolean,
+  ) {
+    if (output !== undefined && !overwrite && existsSync(resolve(io.cwd, output)))
+      throw new Refusal(`${output} is there already: give --overwrite to replace it`)
+    this.#progress = new Progress(io)
+  }
+
+  /** Colour goes to a terminal only. */
+  get coloured(): boolean {
+    return this.output === undefined && coloured(this.io)
+  }
+
+  progress(text: string): void {
+    this.#progress.show(text)
+  }
+
+  result(text: string): void {
+    this.#progress.clear()
+    if (this.output === undefined) this.io.out.write(text)
+    else this.#kept.push(text)
+  }
+
+  note(text: string): void {
+    this.#progress.clear()
+    this.io.err.write(text)
+  }
+
+  /** Something that could not be done; the rest is done all the same. */
+  fail(failure: string): void {
+    this.failures.push(failure)
+    this.note(`braggline: ${harmless(failure)}\n`)
+  }
+
+  async close(): Promise<void> {
+    this.#progress.clear()
+    if (this.output !== undefined && this.#kept.length > 0)
+      await replaceFile(resolve(this.io.cwd, this.output), this.#kept.join(''), this.output)
+  }
 }

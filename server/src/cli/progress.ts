@@ -19,16 +19,6 @@ export class Progress {
     this.#shown = true
   }
 
-  /** Show a line while something is awaited. */
-  async during<T>(text: string, work: Promise<T>): Promise<T> {
-    const timer = setInterval(() => this.show(text), QUIET_MS / 4)
-    try {
-      return await work
-    } finally {
-      clearInterval(timer)
-    }
-  }
-
   /** Before anything else is written, and at the end. */
   clear(): void {
     if (this.#shown) this.io.err.write(ERASE_LINE)

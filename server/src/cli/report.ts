@@ -3,12 +3,11 @@ import { harmless } from '../exchange/layout.ts'
 import { type Report, reportOf } from '../exchange/report.ts'
 import { reportMarkdown } from '../exchange/report-markdown.ts'
 import { reportText } from '../exchange/report-text.ts'
-import { coloured } from './colour.ts'
-import { documentsOf } from './engine.ts'
-import { findFiles, readText, told } from './files.ts'
+import { documentsOf, type Engine, withoutSymmetry } from './engine.ts'
+import { findFiles, type LatticeText, readText } from './files.ts'
 import { Refusal } from './io.ts'
 import { ordinal } from './options.ts'
-import { checkTarget, deliver } from './output.ts'
+import { Desk } from './output.ts'
 import { type Call, CLEAN, DOCUMENT, NOT_DONE, OUTPUT, OVERWRITE, type Verb } from './verb.ts'
 
 export const report: Verb = {
@@ -37,53 +36,48 @@ export const report: Verb = {
   ],
 
   async run({ given, io, engine: start }: Call): Promise<number> {
-    const output = given.value('output')
+    const desk = new Desk(io, given.value('output'), given.has('overwrite'))
     const picked = ordinal(given, 'document')
-    checkTarget(output, given.has('overwrite'), io)
     const { names, failures } = await findFiles(given.operands, io)
+    for (const failure of failures) desk.fail(failure)
     const engine = start()
     const reports: Report[] = []
     for (const [i, name] of names.entries()) {
-      engine.progress.show(`reporting file ${i + 1} of ${names.length}: ${harmless(name)}`)
-      const read = await readText(name, io)
-      if ('failure' in read) {
-        failures.push(told(read))
-        continue
-      }
-      const snapshot = await engine.check(read.text)
+      desk.progress(`reporting file ${i + 1} of ${names.length}: ${harmless(name)}`)
       try {
-        const documents = documentsOf(snapshot, name, picked)
-        if (documents.length === 0)
-          failures.push(`${harmless(name)}: no crystal could be read; \`braggline check\` says why`)
-        for (const analysis of documents) {
-          const { number } = analysis.document
-          reports.push(
-            reportOf(
-              name,
-              analysis,
-              snapshot.findings.filter(({ document }) => document === number),
-            ),
-          )
-          if (!analysis.crystal.lattice)
-            failures.push(
-              `${harmless(name)}: document ${number} has no lattice that could be built; \`braggline check\` says why`,
-            )
-        }
+        reports.push(...(await reportsOf(engine, await readText(name, io), picked, desk)))
       } catch (error) {
         if (!(error instanceof Refusal)) throw error
-        failures.push(error.message)
+        desk.fail(error.message)
       }
     }
-    engine.progress.clear()
-    for (const failure of failures) io.err.write(`braggline: ${failure}\n`)
-    if (reports.length > 0)
-      await deliver(
-        written(reports, given.value('format') ?? 'text', output === undefined && coloured(io)),
-        output,
-        io,
-      )
-    return failures.length > 0 ? NOT_DONE : CLEAN
+    if (reports.length > 0) desk.result(written(reports, given.value('format') ?? 'text', desk.coloured))
+    await desk.close()
+    return desk.failures.length > 0 ? NOT_DONE : CLEAN
   },
+}
+
+async function reportsOf(
+  engine: Engine,
+  { name, text }: LatticeText,
+  picked: number | undefined,
+  desk: Desk,
+): Promise<Report[]> {
+  const snapshot = await engine.check(text)
+  const documents = documentsOf(snapshot, name, picked)
+  const why = '`braggline check` says why'
+  if (documents.length === 0) desk.fail(`${name}: no crystal could be read; ${why}`)
+  for (const reason of withoutSymmetry(snapshot, name, picked)) desk.note(`braggline: ${harmless(reason)}\n`)
+  return documents.map(analysis => {
+    const { number } = analysis.document
+    if (!analysis.crystal.lattice)
+      desk.fail(`${name}: document ${number} has no lattice that could be built; ${why}`)
+    return reportOf(
+      name,
+      analysis,
+      snapshot.findings.filter(({ document }) => document === number),
+    )
+  })
 }
 
 function written(reports: readonly Report[], format: string, colour: boolean): string {

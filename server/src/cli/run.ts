@@ -1,7 +1,9 @@
 /** The command `braggline`: picks the verb, and turns everything that goes wrong into one line and a status. */
 import { harmless, inColumns, wrap } from '../exchange/layout.ts'
 import { nearest } from '../format/nearest.ts'
+import { bands } from './bands.ts'
 import { check } from './check.ts'
+import { draw } from './draw.ts'
 import { Engine, type Symmetries } from './engine.ts'
 import { explain } from './explain.ts'
 import { fold } from './fold.ts'
@@ -12,7 +14,7 @@ import { serve } from './serve.ts'
 import { CLEAN, NOT_DONE, type Verb } from './verb.ts'
 import { VERSION } from './version.ts'
 
-export const VERBS: readonly Verb[] = [check, report, fold, explain, serve]
+export const VERBS: readonly Verb[] = [check, report, fold, bands, draw, explain, serve]
 
 const WIDTH = 92
 
@@ -32,7 +34,7 @@ export async function run(argv: readonly string[], io: Io, symmetries: () => Sym
     const given = readOptions(args, [...verb.options, HELP])
     if (given.has('help')) return say(io, helpOf(verb))
     let engine: Engine | undefined
-    return await verb.run({ given, io, engine: () => (engine ??= new Engine(symmetries(), io)) })
+    return await verb.run({ given, io, engine: () => (engine ??= new Engine(symmetries())) })
   } catch (error) {
     if (!(error instanceof Refusal)) throw error
     io.err.write(`braggline: ${harmless(error.message)}\n`)

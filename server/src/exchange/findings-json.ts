@@ -47,10 +47,11 @@ export const findingsJson = ({ file, snapshot, findings }: CheckedFile): Finding
   }))
 }
 
-export const checkJson = (files: readonly CheckedFile[]): CheckJson => ({
-  findings: files.flatMap(findingsJson),
-  files: files.length,
-  ...tally(files.flatMap(({ findings }) => findings)),
+/** @param files how many were checked, those without findings included. */
+export const checkJson = (findings: readonly FindingJson[], files: number): CheckJson => ({
+  findings,
+  files,
+  ...tally(findings),
 })
 
 export function tally(findings: readonly { readonly severity: Severity }[]): Tally {

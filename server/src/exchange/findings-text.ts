@@ -45,10 +45,13 @@ function block(
     `${paint.bold(`${harmless(file)}:${line}:${column}`)}  ${colour(finding.severity)}  ${harmless(finding.message)}  ${paint.dim(`(${finding.rule})`)}`,
   ]
   const { before, marked, after } = excerpt(snapshot, finding.at)
-  lines.push(`    ${before}${marked}${after}`)
-  lines.push(
-    `    ${' '.repeat(displayWidth(before))}${colour('~'.repeat(Math.max(1, displayWidth(marked))))}`,
-  )
+  const excerptLine = `${before}${marked}${after}`
+  if (excerptLine.trim() !== '') {
+    lines.push(`    ${excerptLine}`)
+    lines.push(
+      `    ${' '.repeat(displayWidth(before))}${colour('~'.repeat(Math.max(1, displayWidth(marked))))}`,
+    )
+  }
   for (const { at, message } of finding.related ?? []) {
     const place = positions.at(at[0])
     lines.push(`  ${paint.dim(`see ${place.line}:${place.column}`)}  ${harmless(message)}`)
@@ -63,22 +66,23 @@ function excerpt(
   { text }: Snapshot,
   [start, end]: DocumentFinding['at'],
 ): Record<'before' | 'marked' | 'after', string> {
-  const stop = lineEnd(text, start)
-  const from = Math.min(start, stop)
-  const to = Math.min(end, stop)
-  let before = harmless(text.slice(lineStart(text, start), from))
-  let marked = harmless(text.slice(from, to))
-  let after = harmless(text.slice(to, stop))
-  if (displayWidth(before + marked + after) > LONGEST_EXCERPT) {
-    if (displayWidth(before) > LEAD) before = `…${[...before].slice(-LEAD).join('')}`
-    marked = cut(marked, LONGEST_EXCERPT - LEAD)
-    after = cut(after, Math.max(0, LONGEST_EXCERPT - displayWidth(before + marked)))
+  const [first, last] = [lineStart(text, start), lineEnd(text, start)]
+  const from = Math.min(start, last)
+  const to = Math.min(end, last)
+  if (last - first <= LONGEST_EXCERPT)
+    return { before: part(text, first, from), marked: part(text, from, to), after: part(text, to, last) }
+  const begin = Math.max(first, from - LEAD)
+  const stop = Math.min(last, begin + LONGEST_EXCERPT)
+  return {
+    before: (begin > first ? '…' : '') + part(text, begin, from),
+    marked: part(text, from, Math.min(to, stop)),
+    after: part(text, Math.min(to, stop), stop) + (stop < last ? '…' : ''),
   }
-  return { before, marked, after }
 }
 
-const cut = (text: string, width: number): string =>
-  displayWidth(text) <= width ? text : `${[...text].slice(0, width).join('')}…`
+/** A part of a text without the half of a character that a cut may leave, and harmless to a terminal. */
+const part = (text: string, from: number, to: number): string =>
+  harmless(text.slice(from, to).replace(/^[\udc00-\udfff]|[\ud800-\udbff]$/g, ''))
 
 /** `3 findings in 2 files: 1 error, 2 warnings.` */
 export function closingLine(tally: Tally, files: number, paint: Paint): string {

@@ -18,6 +18,8 @@ export interface Region {
 /** Positions in one text. */
 export class Positions {
   readonly #wide: boolean
+  /** Where counting got to: findings come in order, and a line may be very long. */
+  #counted = { line: -1, character: 0, column: 0 }
 
   constructor(private readonly snapshot: Snapshot) {
     this.#wide = SURROGATE.test(snapshot.text)
@@ -25,14 +27,27 @@ export class Positions {
 
   at(offset: number): Position {
     const { line, character } = this.snapshot.positionOf(offset)
-    const column = this.#wide ? [...this.snapshot.text.slice(offset - character, offset)].length : character
-    return { line: line + 1, column: column + 1 }
+    return {
+      line: line + 1,
+      column: 1 + (this.#wide ? this.#characters(line, character, offset) : character),
+    }
   }
 
   region([start, end]: Span): Region {
     const from = this.at(start)
     const to = this.at(end)
     return { ...from, endLine: to.line, endColumn: to.column }
+  }
+
+  #characters(line: number, character: number, offset: number): number {
+    const known =
+      this.#counted.line === line && this.#counted.character <= character
+        ? this.#counted
+        : { character: 0, column: 0 }
+    const between = this.snapshot.text.slice(offset - character + known.character, offset)
+    const column = known.column + [...between].length
+    this.#counted = { line, character, column }
+    return column
   }
 }
 

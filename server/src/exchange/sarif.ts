@@ -1,5 +1,6 @@
 /** Findings as SARIF 2.1.0 (OASIS standard, 2020), for code-scanning services and viewers. */
 import type {
+  ArtifactLocation,
   Fix as SarifFix,
   Location,
   Log,
@@ -34,27 +35,64 @@ export interface SarifRun {
   readonly failures: readonly string[]
 }
 
-export function sarifLog(files: readonly CheckedFile[], { version, rules, failures }: SarifRun): Log {
-  const indexOf = new Map(rules.map(({ id }, i) => [id, i]))
-  return {
-    $schema: SCHEMA,
-    version: '2.1.0',
-    runs: [
-      {
-        tool: { driver: { name: 'Braggline', version, rules: rules.map(descriptor) } },
-        invocations: [
-          {
-            executionSuccessful: failures.length === 0,
-            toolExecutionNotifications: failures.map(text => ({ level: 'error', message: { text } })),
-          },
-        ],
-        columnKind: 'unicodeCodePoints',
-        artifacts: files.map(({ file }) => ({ location: { uri: uriOf(file) } })),
-        results: files.flatMap((file, index) => results(file, index, indexOf)),
-      },
-    ],
-  }
+/** What one file adds to a log. */
+export interface SarifPart {
+  readonly file: string
+  readonly results: readonly Result[]
 }
+
+/** @param index ordinal of the file among the parts, from 0. */
+export function sarifPart(
+  { file, snapshot, findings }: CheckedFile,
+  index: number,
+  rules: readonly SarifRule[],
+): SarifPart {
+  const positions = new Positions(snapshot)
+  const uri = uriOf(file)
+  const place = (at: DocumentFinding['at']): Location => ({
+    physicalLocation: { artifactLocation: { uri, index }, region: region(positions.region(at)) },
+  })
+  const results = findings.map(({ rule, severity, message, at, related = [], fixes = [] }): Result => {
+    const ruleIndex = rules.findIndex(({ id }) => id === rule)
+    return {
+      ruleId: rule,
+      ...(ruleIndex >= 0 ? { ruleIndex } : {}),
+      level: LEVEL[severity],
+      message: { text: message },
+      locations: [place(at)],
+      ...(related.length > 0
+        ? {
+            relatedLocations: related.map(({ at, message }, id) => ({
+              id,
+              ...place(at),
+              message: { text: message },
+            })),
+          }
+        : {}),
+      ...(fixes.length > 0 ? { fixes: fixes.map(fix => sarifFix(fix, { uri, index }, positions)) } : {}),
+    }
+  })
+  return { file, results }
+}
+
+export const sarifLog = (parts: readonly SarifPart[], { version, rules, failures }: SarifRun): Log => ({
+  $schema: SCHEMA,
+  version: '2.1.0',
+  runs: [
+    {
+      tool: { driver: { name: 'Braggline', version, rules: rules.map(descriptor) } },
+      invocations: [
+        {
+          executionSuccessful: failures.length === 0,
+          toolExecutionNotifications: failures.map(text => ({ level: 'error', message: { text } })),
+        },
+      ],
+      columnKind: 'unicodeCodePoints',
+      artifacts: parts.map(({ file }) => ({ location: { uri: uriOf(file) } })),
+      results: parts.flatMap(({ results }) => results),
+    },
+  ],
+})
 
 const descriptor = ({ id, severity, summary, why, page }: SarifRule): ReportingDescriptor => ({
   id,
@@ -64,44 +102,15 @@ const descriptor = ({ id, severity, summary, why, page }: SarifRule): ReportingD
   defaultConfiguration: { level: LEVEL[severity] },
 })
 
-function results(
-  { file, snapshot, findings }: CheckedFile,
-  index: number,
-  rules: ReadonlyMap<string, number>,
-): Result[] {
-  const positions = new Positions(snapshot)
-  const place = (at: DocumentFinding['at']): Location => ({
-    physicalLocation: { artifactLocation: { uri: uriOf(file), index }, region: region(positions.region(at)) },
-  })
-  return findings.map(({ rule, severity, message, at, related = [], fixes = [] }) => ({
-    ruleId: rule,
-    ...(rules.has(rule) ? { ruleIndex: rules.get(rule) } : {}),
-    level: LEVEL[severity],
-    message: { text: message },
-    locations: [place(at)],
-    ...(related.length > 0
-      ? {
-          relatedLocations: related.map(({ at, message }, i) => ({
-            id: i,
-            ...place(at),
-            message: { text: message },
-          })),
-        }
-      : {}),
-    ...(fixes.length > 0 ? { fixes: fixes.map(fix => sarifFix(fix, file, index, positions)) } : {}),
-  }))
-}
-
 const sarifFix = (
   { title, safe, edits }: Fix,
-  file: string,
-  index: number,
+  artifactLocation: ArtifactLocation,
   positions: Positions,
 ): SarifFix => ({
   description: { text: title },
   artifactChanges: [
     {
-      artifactLocation: { uri: uriOf(file), index },
+      artifactLocation,
       replacements: edits.map(({ at, text }) => ({
         deletedRegion: region(positions.region(at)),
         insertedContent: { text },
@@ -118,6 +127,11 @@ const region = ({ line, column, endLine, endColumn }: Region): SarifRegion => ({
   endColumn,
 })
 
-/** A path as a relative URI reference; its separators stay. */
-const uriOf = (file: string): string =>
-  file === '-' ? 'stdin' : file.replaceAll('\\', '/').split('/').map(encodeURIComponent).join('/')
+/** A path as a URI: a relative one stays relative to where the command ran. */
+function uriOf(file: string): string {
+  if (file === '-') return 'stdin'
+  const path = file.replaceAll('\\', '/').split('/').map(encodeURIComponent).join('/')
+  if (path.startsWith('/')) return `file://${path}`
+  const drive = /^([A-Za-z])%3A\//.exec(path)
+  return drive ? `file:///${drive[1]}:${path.slice(drive[0].length - 1)}` : path
+}

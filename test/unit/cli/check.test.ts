@@ -1,5 +1,9 @@
 import { Ajv } from 'ajv'
 import { afterEach, beforeEach, describe, expect, test } from 'vitest'
+import type { SymmetryInput } from '../../../server/src/crystal/symmetry.ts'
+import type { SymmetryOutcome } from '../../../server/src/meaning/workshop.ts'
+import { loadSymmetryFromDisk } from '../../../server/src/symmetry-node.ts'
+import { searchSymmetry } from '../../../server/src/symmetry-service.ts'
 import { World } from './world.ts'
 
 let world: World
@@ -11,7 +15,6 @@ afterEach(() => world.remove())
 const CLEAN = 'lattice: {bravais: cF, a: 5.43}\npath: Γ – X\n'
 /** Its finding is an error: no such key. */
 const MISSPELLED = 'lattice: {bravais: cF, a: 5.43}\nmeesh: {divisions: [8, 8, 8]}\n'
-/** A finding for information only: M would be a made-up letter for a point of no name. */
 const SILENCED =
   'lattice: {bravais: cF, a: 5.43}\nmeesh: {divisions: [8, 8, 8]} # braggline: allow key-unknown\n'
 
@@ -100,6 +103,42 @@ describe('colour', () => {
   test('a file cannot steer the terminal', async () => {
     world.write('a.lattice.yaml', `title: x\n"\\e[31mkey": 1\n${CLEAN}`)
     expect((await world.run(['check', 'a.lattice.yaml'])).out).not.toContain('\u001b')
+  })
+})
+
+describe('symmetry', () => {
+  const failing = {
+    find: () => ({ outcome: { state: 'failed' as const, reason: 'the search took longer than 20 s' } }),
+    idle: async () => {},
+  }
+  test('that was not found is told once, and is no failure', async () => {
+    world.write('a.lattice.yaml', CLEAN).write('b.lattice.yaml', MISSPELLED)
+    const { status, err } = await world.run(['check', 'a.lattice.yaml'], { symmetries: failing })
+    expect(status).toBe(0)
+    expect(err).toBe(
+      'braggline: a.lattice.yaml, document 1: nothing that needs the symmetry was checked: the search took longer than 20 s\n',
+    )
+    // Where an error says already what is wrong, nothing is added.
+    expect((await world.run(['check', 'b.lattice.yaml'], { symmetries: failing })).err).toBe('')
+  })
+  test('that takes its time is waited for', async () => {
+    loadSymmetryFromDisk()
+    const jobs: { outcome: SymmetryOutcome; input: SymmetryInput }[] = []
+    const later = {
+      find(input: SymmetryInput) {
+        const job = { outcome: { state: 'pending' } as SymmetryOutcome, input }
+        jobs.push(job)
+        return job
+      },
+      async idle() {
+        for (const job of jobs) job.outcome = searchSymmetry(job.input)
+      },
+    }
+    world.write('a.lattice.yaml', `${CLEAN}---\n${CLEAN.replace('5.43', '5.5')}`)
+    const { out } = await world.run(['report', 'a.lattice.yaml', '--format', 'json'], { symmetries: later })
+    expect(
+      JSON.parse(out).map(({ symmetry }: { symmetry: { pointGroup: string } }) => symmetry.pointGroup),
+    ).toEqual(['m-3m', 'm-3m'])
   })
 })
 

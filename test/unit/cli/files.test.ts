@@ -2,7 +2,7 @@ import { chmodSync, existsSync, lstatSync, mkdirSync, readdirSync, statSync, sym
 import { afterEach, beforeEach, describe, expect, test } from 'vitest'
 import { findFiles, readText } from '../../../server/src/cli/files.ts'
 import { type Io, Refusal } from '../../../server/src/cli/io.ts'
-import { checkTarget, replaceFile } from '../../../server/src/cli/output.ts'
+import { Desk, replaceFile } from '../../../server/src/cli/output.ts'
 import { World } from './world.ts'
 
 let world: World
@@ -12,7 +12,7 @@ beforeEach(() => {
 afterEach(() => world.remove())
 
 const io = (): Io =>
-  ({ cwd: world.folder, env: {}, readInput: async () => new Uint8Array() }) as unknown as Io
+  ({ cwd: world.folder, env: {}, now: () => 0, readInput: async () => new Uint8Array() }) as unknown as Io
 const find = (...operands: string[]) => findFiles(operands, io())
 
 describe('what is found', () => {
@@ -81,12 +81,12 @@ describe('what is read', () => {
     ['UTF-16', Uint8Array.of(0xff, 0xfe, 0x61, 0), /UTF-16/],
     ['Latin-1', Uint8Array.of(0x61, 0xe5, 0x62), /not UTF-8/],
   ])('%s is refused', async (_, bytes, failure) => {
-    expect(await read(bytes)).toMatchObject({ failure: expect.stringMatching(failure) })
+    await expect(read(bytes)).rejects.toThrow(failure)
   })
   test('a folder and a path through a file', async () => {
     world.write('f', 'x')
-    expect(await readText('.', io())).toMatchObject({ failure: 'is a folder' })
-    expect(await readText('f/g', io())).toMatchObject({ failure: 'no such file or folder' })
+    await expect(readText('.', io())).rejects.toThrow('.: is a folder')
+    await expect(readText('f/g', io())).rejects.toThrow('f/g: no such file or folder')
   })
 })
 
@@ -110,9 +110,9 @@ describe('what is written', () => {
   })
   test('a file that is there needs leave', () => {
     world.write('f', 'x')
-    expect(() => checkTarget('f', false, io())).toThrow(/f is there already/)
-    expect(() => checkTarget('f', true, io())).not.toThrow()
-    expect(() => checkTarget('g', false, io())).not.toThrow()
+    expect(() => new Desk(io(), 'f', false)).toThrow(/f is there already/)
+    expect(() => new Desk(io(), 'f', true)).not.toThrow()
+    expect(() => new Desk(io(), 'g', false)).not.toThrow()
     expect(existsSync(world.path('g'))).toBe(false)
   })
 })

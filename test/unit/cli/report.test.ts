@@ -106,7 +106,7 @@ describe('fold', () => {
     [['cubic.lattice.yaml', '--at', '1,x,0'], /--at "1,x,0"/],
     [['sheet.lattice.yaml', '--at', '0,0,1'], /without a period/],
     [['two.lattice.yaml', '--at', '0,0,0'], /holds 2 crystals: pick one/],
-    [['.', '--at', '0,0,0'], /takes one file/],
+    [['.', '--at', '0,0,0'], /one file is taken; these are 3/],
   ])('%j is refused', async (args, message) => {
     const { status, out, err } = await world.run(['fold', ...args])
     expect({ status, out }).toEqual({ status: 2, out: '' })

@@ -5,10 +5,10 @@ import pc from 'picocolors'
 import { describe, expect, test } from 'vitest'
 import { CHECKS } from '../../../server/src/checks/index.ts'
 import { page } from '../../../server/src/checks/page.ts'
-import { checkJson, findingsJson } from '../../../server/src/exchange/findings-json.ts'
+import { type CheckedFile, checkJson, findingsJson } from '../../../server/src/exchange/findings-json.ts'
 import { closingLine, findingsText } from '../../../server/src/exchange/findings-text.ts'
 import { Positions } from '../../../server/src/exchange/positions.ts'
-import { sarifLog } from '../../../server/src/exchange/sarif.ts'
+import { sarifLog, sarifPart } from '../../../server/src/exchange/sarif.ts'
 import { closed } from './closed.ts'
 import { checked, fixture, NAMES } from './support.ts'
 
@@ -22,6 +22,15 @@ describe('positions', () => {
     expect(at('é')).toEqual({ line: 1, column: 9 })
     expect(at('x')).toEqual({ line: 2, column: 1 })
     expect(positions.region([0, 5])).toEqual({ line: 1, column: 1, endLine: 1, endColumn: 6 })
+  })
+  test('of findings far along one long line are right in any order', () => {
+    const { snapshot } = checked(`a: ${'😀x'.repeat(500)}\nb: 😀y\n`)
+    const positions = new Positions(snapshot)
+    const column = (offset: number) => [...snapshot.text.split('\n')[0].slice(0, offset)].length + 1
+    for (const offset of [3, 900, 903, 6, 1503, 1502])
+      expect(positions.at(offset)).toEqual({ line: 1, column: column(offset) })
+    expect(positions.at(snapshot.text.indexOf('y'))).toEqual({ line: 2, column: 5 })
+    expect(positions.at(900)).toEqual({ line: 1, column: column(900) })
   })
 })
 
@@ -58,7 +67,10 @@ describe('JSON', () => {
     expect(finding.fixes.length).toBeGreaterThan(0)
   })
   test('counts what it lists', () => {
-    const json = checkJson([checked(fixture('draft')), checked(fixture('silicon'))])
+    const json = checkJson(
+      ['draft', 'silicon'].flatMap(name => findingsJson(checked(fixture(name)))),
+      2,
+    )
     expect(json.files).toBe(2)
     expect(json.errors + json.warnings + json.infos).toBe(json.findings.length)
     expect(json.errors).toBeGreaterThan(0)
@@ -78,8 +90,8 @@ describe('JSON', () => {
 
 describe('SARIF', () => {
   const rules = CHECKS.map(rule => ({ ...rule, page: page(rule) }))
-  const log = (...files: Parameters<typeof sarifLog>[0]) =>
-    sarifLog(files, { version: '1.0.0', rules, failures: [] })
+  const log = (file: CheckedFile) =>
+    sarifLog([sarifPart(file, 0, rules)], { version: '1.0.0', rules, failures: [] })
   // OASIS, SARIF 2.1.0, JSON Schema rtm.5 (draft 4: `id` is left out, nothing else differs from draft 7 in it).
   const {
     id: _,
@@ -106,6 +118,14 @@ describe('SARIF', () => {
     const fixed = run.results!.find(({ ruleId }) => ruleId === 'key-unknown')!
     const { deletedRegion: at } = fixed.fixes![0].artifactChanges[0].replacements[0]
     expect(lines[at.startLine! - 1].slice(at.startColumn! - 1, at.endColumn! - 1)).toBe('meesh')
+  })
+  test.each([
+    ['-', 'stdin'],
+    ['/runs/a b.yaml', 'file:///runs/a%20b.yaml'],
+    ['runs\\a.yaml', 'runs/a.yaml'],
+    ['C:\\runs\\a.yaml', 'file:///C:/runs/a.yaml'],
+  ])('the file %s is %s', (file, uri) => {
+    expect(log(checked('', file)).runs[0].artifacts![0].location!.uri).toBe(uri)
   })
   test('what could not be read is told, and the run was no success', () => {
     const [run] = sarifLog([], { version: '1.0.0', rules, failures: ['a: permission denied'] }).runs

@@ -4,6 +4,7 @@
  */
 import pc from 'picocolors'
 import { describe, expect, test } from 'vitest'
+import type { DocumentFinding } from '../../../server/src/analysis.ts'
 import { tally } from '../../../server/src/exchange/findings-json.ts'
 import { closingLine, findingsText } from '../../../server/src/exchange/findings-text.ts'
 import { reportMarkdown } from '../../../server/src/exchange/report-markdown.ts'
@@ -14,18 +15,53 @@ const plain = pc.createColors(false)
 
 describe.each(NAMES)('%s', name => {
   const file = `${name}.lattice.yaml`
-  test('findings', async () => {
-    const found = checked(fixture(name), file)
-    const text = findingsText(found, plain) + closingLine(tally(found.findings), 1, plain)
-    await expect(`${text}\n`).toMatchFileSnapshot(`golden/${name}.findings.txt`)
-  })
   test('report', async () => {
     const texts = reports(fixture(name), file).map(report => reportText(report, plain))
     await expect(texts.join('\n\n')).toMatchFileSnapshot(`golden/${name}.report.txt`)
   })
   test('report in Markdown', async () => {
-    await expect(reports(fixture(name), file).map(reportMarkdown).join('\n')).toMatchFileSnapshot(
-      `golden/${name}.report.md`,
-    )
+    const texts = reports(fixture(name), file).map(reportMarkdown)
+    await expect(texts.join('\n')).toMatchFileSnapshot(`golden/${name}.report.markdown.txt`)
   })
+})
+
+test('findings', async () => {
+  const { snapshot } = checked(fixture('draft'))
+  const span = (piece: string): [number, number] => {
+    const at = snapshot.text.indexOf(piece)
+    return [at, at + piece.length]
+  }
+  // Made for this test: the sentences of real rules may be reworded on any day.
+  const findings: DocumentFinding[] = [
+    {
+      document: 1,
+      rule: 'a-rule',
+      severity: 'error',
+      at: span('[0.75, 0, 0]'),
+      message: 'What is wrong, by how much, and what would be right.',
+      related: [{ at: span('Pb'), message: 'What else it is about.' }],
+      fixes: [
+        { title: 'Replace it by something', safe: true, edits: [] },
+        { title: 'Remove it', safe: false, edits: [] },
+      ],
+    },
+    {
+      document: 1,
+      rule: 'another-rule',
+      severity: 'warning',
+      at: span('atoms:\n  - Pb'),
+      message: 'A finding over two lines.',
+    },
+    {
+      document: 1,
+      rule: 'a-third-rule',
+      severity: 'info',
+      at: [snapshot.text.length, snapshot.text.length],
+      message: 'At the end.',
+    },
+  ]
+  const text = findingsText({ file: 'draft.lattice.yaml', snapshot, findings }, plain)
+  await expect(`${text}${closingLine(tally(findings), 1, plain)}\n`).toMatchFileSnapshot(
+    'golden/findings.txt',
+  )
 })
