@@ -48,7 +48,7 @@ import {
   type TextEdit,
   type VectorValue,
 } from '../format/model.ts'
-import { formatCoordinate, formatNumber, formatVector } from '../format/numbers.ts'
+import { formatFraction, formatNumber, recogniseFraction } from '../format/numbers.ts'
 import { plusWhole, rational, type Sum, sumOf, writeSum } from './combinations.ts'
 import type { Crystal } from './crystal.ts'
 
@@ -334,7 +334,7 @@ function turnedEdits({ text }: Task, vector: VectorValue, rotation: Mat3, scale 
   return replaceVector(
     text,
     vector,
-    items.map((_, i) => formatCoordinate(turned[i] * scale)),
+    items.map((_, i) => formatNumber(turned[i] * scale, DIGITS)),
   )
 }
 
@@ -387,7 +387,7 @@ function labelEdits(task: Task): { edits: TextEdit[]; kept: boolean } {
   for (const label of bookLabels(crystal)) {
     const k = combine(crystal.bookPoints.get(label)!.cartesian, rotation)
     const now = there.get(label)
-    if (!now) lost.push([label, formatVector(stated(task, k))])
+    if (!now) lost.push([label, `[${stated(task, k).map(coordinateText).join(', ')}]`])
     else if (distance(k, now) > SAME_POINT * norm(lattice.reciprocal[0])) kept = false
   }
   if (lost.length === 0) return { edits: [], kept }
@@ -395,6 +395,12 @@ function labelEdits(task: Task): { edits: TextEdit[]; kept: boolean } {
     ? insertKeys(text, document.points, lost)
     : insertKeys(text, document, [['points', `{${lost.map(([label, k]) => `${label}: ${k}`).join(', ')}}`]])
   return { edits, kept }
+}
+
+/** A coordinate that is not made of the file's own numbers: a simple fraction where it is one. */
+function coordinateText(x: number): string {
+  const exact = recogniseFraction(x, SAME)
+  return exact ? formatFraction(exact) : formatNumber(x, DIGITS)
 }
 
 /** Two k are one when they differ by less, relative to a reciprocal vector. */
