@@ -30,7 +30,7 @@ export function readAllowances(
   const stretches = stretchesOf(text, multiline)
   for (const [i, comment] of comments.entries()) {
     const head = INSTRUCTION.exec(comment.text)
-    const rules = head && readInstruction(comment, head[0].length, problems)
+    const rules = head && readInstruction(text, comment, head[0].length, problems)
     if (!rules) continue
     const [from, to] = stretches.get(targets[i]) ?? [targets[i], targets[i]]
     for (let line = from; line <= to; line++) allowances.push({ line, rules })
@@ -67,10 +67,12 @@ function stretchesOf(
 }
 
 function readInstruction(
-  { at, text }: Comment,
+  whole: string,
+  { at }: Comment,
   start: number,
   problems: Problem[],
 ): Sourced<string>[] | undefined {
+  const text = whole.slice(...at)
   const word = /^[^\s,:]*/.exec(text.slice(start))![0]
   const place: Span = [at[0] + start, at[0] + start + word.length]
   if (word !== ALLOW) {

@@ -179,9 +179,9 @@ function namedMeshes(reader: Reader, node: MappingNode): MeshValue[] {
     if (earlier) reader.repeatedKey(key.value, earlier.named, entry)
     else if (value.kind === 'mapping') {
       const named = { name: key.value, key: key.at, at: value.at, item }
-      meshes.set(key.value, { named, block: meshBlock(reader, value, `\`${key.value}\``) })
+      meshes.set(key.value, { named, block: meshBlock(reader, value, `\`${shortened(key.value)}\``) })
     } else if (!value.broken) {
-      const message = `\`${key.value}\` has no value yet: a mesh such as \`{divisions: [12, 12, 12]}\`.`
+      const message = `\`${shortened(key.value)}\` has no value yet: a mesh such as \`{divisions: [12, 12, 12]}\`.`
       reader.report('value-type', key, key.at, message)
     }
   }

@@ -336,25 +336,24 @@ function blockItem(
   return [start, itemStart(items[1])]
 }
 
-/** The item and one of the commas beside it. */
+/**
+ * The item and the comma after it. The last one leaves a comma before it, which YAML allows: so any items of a
+ * collection can be removed together.
+ */
 function flowItem(
   collection: CST.FlowCollection,
   items: readonly CST.CollectionItem[],
   i: number,
 ): [number, number] {
   const start = itemStart(items[i])
-  const end = itemEnd(items[i])
   // After the last item there may be one that holds a comma and comments only.
   const trailing = collection.items[collection.items.length - 1]
   const following = items[i + 1] ?? (trailing === items[i] ? undefined : trailing)
   const comma = following?.start.findIndex(({ type }) => type === 'comma') ?? -1
-  if (following && i < items.length - 1 && comma >= 0) {
-    const after = following.start.slice(comma + 1)
-    const blank = after[0]?.type === 'space' ? after[0].source.length : 0
-    return [start, following.start[comma].offset + 1 + blank]
-  }
-  if (i > 0) return [itemEnd(items[i - 1]), end]
-  return [start, following && comma >= 0 ? following.start[comma].offset + 1 : end]
+  if (!following || comma < 0) return [start, itemEnd(items[i])]
+  const after = following.start[comma + 1]
+  const blanks = i < items.length - 1 && after?.type === 'space' ? after.source.length : 0
+  return [start, following.start[comma].offset + 1 + blanks]
 }
 
 /** All block sequences under a token. */

@@ -145,7 +145,7 @@ export class Reader {
       safe: false,
       edits: [{ at: key.at, text: near ?? '' }],
     }
-    this.report('key-unknown', key, key.at, `\`${key.value}\` is no key of ${where}${hint}`, {
+    this.report('key-unknown', key, key.at, `\`${shortened(key.value)}\` is no key of ${where}${hint}`, {
       fixes: near ? [rename] : [],
     })
   }
@@ -171,17 +171,12 @@ export class Reader {
 
   /** The first stands; the second is a problem. */
   repeatedKey(name: string, first: { readonly key: Span }, { key, item }: MappingEntry): void {
-    const removal: Fix = { title: `Remove this \`${name}\``, safe: false, edits: [{ at: item, text: '' }] }
-    this.report(
-      'key-repeated',
-      key,
-      key.at,
-      `\`${name}\` stands here a second time; the first one is used.`,
-      {
-        fixes: item[0] < item[1] ? [removal] : [],
-        related: [{ at: first.key, message: `\`${name}\` stands here first.` }],
-      },
-    )
+    const shown = `\`${shortened(name)}\``
+    const removal: Fix = { title: `Remove this ${shown}`, safe: false, edits: [{ at: item, text: '' }] }
+    this.report('key-repeated', key, key.at, `${shown} stands here a second time; the first one is used.`, {
+      fixes: item[0] < item[1] ? [removal] : [],
+      related: [{ at: first.key, message: `${shown} stands here first.` }],
+    })
   }
 
   /** All values of a mapping by their rows. */
@@ -198,9 +193,14 @@ export class Reader {
 
   /** The value of a key; a key without one is a problem of its own. */
   value(node: Node, row: KeyRow, name: string, key: Span): unknown {
-    if (node.kind !== 'nothing') return this.readers[row.kind](this, node, row, `\`${name}\``)
+    if (node.kind !== 'nothing') return this.readers[row.kind](this, node, row, `\`${shortened(name)}\``)
     if (!node.broken)
-      this.report('value-type', node, key, `\`${name}\` has no value yet, such as \`${row.example}\`.`)
+      this.report(
+        'value-type',
+        node,
+        key,
+        `\`${shortened(name)}\` has no value yet, such as \`${row.example}\`.`,
+      )
     return undefined
   }
 

@@ -55,7 +55,11 @@ export function syntaxFault(error: YAMLParseError, text: string): SyntaxFault {
   const [from, to] = error.pos
   const start = Math.max(0, Math.min(from, text.length))
   const end = Math.max(start, Math.min(to, text.length))
-  const message = explain(error, text.slice(start, Math.min(end, start + LONGEST_QUOTE)))
+  const there = text
+    .slice(start, Math.min(end, start + LONGEST_QUOTE))
+    .replace(/\s+/g, ' ')
+    .trim()
+  const message = explain(error, there)
   return { start, end, message, kind: kindOf(error) }
 }
 
@@ -69,7 +73,7 @@ function explain({ code, message }: YAMLParseError, there: string): string {
 
 type Explanation = (there: string) => string
 
-const quoted = (there: string): string => (there.trim() === '' ? 'This' : `\`${there.trim()}\``)
+const quoted = (there: string): string => (there === '' ? 'This' : `\`${there}\``)
 
 /** The library has one code for several faults: its own message tells them apart. */
 const BY_MESSAGE: readonly (readonly [RegExp, Explanation])[] = [
@@ -77,8 +81,8 @@ const BY_MESSAGE: readonly (readonly [RegExp, Explanation])[] = [
     /implicit map keys need to be followed/i,
     there =>
       there.includes(':')
-        ? `A blank is missing after the colon of \`${there.trim()}\`.`
-        : `A colon is missing after \`${there.trim()}\`: a key is written \`key: value\`.`,
+        ? `A blank is missing after the colon of \`${there}\`.`
+        : `A colon is missing after \`${there}\`: a key is written \`key: value\`.`,
   ],
   [
     /must (?:be sufficiently indented and )?end with a \]/,

@@ -1,0 +1,100 @@
+/** Reading never fails, and what it gives is well formed, whatever the text. */
+import fc from 'fast-check'
+import { describe, expect, test } from 'vitest'
+import { decode, decodeWhole } from '../../server/src/format/decode.ts'
+import type { DecodedFile, Span } from '../../server/src/format/model.ts'
+import { shuffled, spiced, spicy, spoiled } from './format-samples.ts'
+
+const RUNS = Number(process.env.FUZZ_RUNS ?? 250)
+
+/** All spans in a value, by the path of their names. */
+function* spansOf(value: unknown, name = ''): Generator<{ name: string; span: Span }> {
+  if (value === null || typeof value !== 'object') return
+  if (value instanceof Map) {
+    for (const [key, inner] of value) yield* spansOf(inner, `${name}.${key}`)
+  } else if (Array.isArray(value)) {
+    for (const [i, inner] of value.entries()) yield* spansOf(inner, `${name}[${i}]`)
+  } else {
+    for (const [key, inner] of Object.entries(value)) {
+      if (SPAN_NAMES.has(key) && Array.isArray(inner) && typeof inner[0] === 'number')
+        yield { name: `${name}.${key}`, span: inner as unknown as Span }
+      else yield* spansOf(inner, `${name}.${key}`)
+    }
+  }
+}
+const SPAN_NAMES = new Set(['at', 'key', 'item', 'separator', 'contents'])
+
+const RULES = new Set([
+  'yaml-syntax',
+  'key-unknown',
+  'key-missing',
+  'key-repeated',
+  'value-type',
+  'number-malformed',
+  'unit-unknown',
+  'element-unknown',
+])
+
+function validate(text: string, file: DecodedFile): void {
+  for (const { name, span } of spansOf(file)) {
+    const [start, end] = span
+    expect(
+      Number.isInteger(start) && Number.isInteger(end) && start >= 0 && end >= start && end <= text.length,
+      `${name} ${span} in ${JSON.stringify(text)}`,
+    ).toBe(true)
+  }
+  const all = [...file.problems, ...file.documents.flatMap(document => document.problems)]
+  for (const problem of all) {
+    expect(RULES).toContain(problem.rule)
+    expect(problem.message, problem.message).toMatch(/^\S[^\n]*[.?]$/)
+    for (const fix of problem.fixes ?? []) expect(fix.title).toMatch(/^[A-Z]/)
+  }
+  // Every place is in exactly one document.
+  let from = 0
+  for (const { at } of file.documents) {
+    expect(at[0]).toBe(from)
+    from = at[1]
+  }
+  if (file.documents.length > 0) expect(from).toBe(text.length)
+  for (const [i, { number }] of file.documents.entries()) expect(number).toBe(i + 1)
+  const lines = text.split('\n').length
+  for (const { line, rules } of file.allowances) {
+    expect(line).toBeLessThanOrEqual(lines)
+    for (const { value, at } of rules) expect(text.slice(...at)).toBe(value)
+  }
+}
+
+/** JSON shows maps as pairs, so that two files can be compared as a whole. */
+const asJson = (file: DecodedFile): string =>
+  JSON.stringify(file, (_key, value) => (value instanceof Map ? [...value] : value))
+
+describe.each([
+  ['samples with stretches replaced', spoiled],
+  ['lines of samples in any order', shuffled],
+  ['signs of the format alone', spicy],
+  ['any text', fc.string({ unit: 'binary', maxLength: 60 })],
+])('%s', (_name, texts) => {
+  test('gives a well-formed file', () => {
+    fc.assert(
+      fc.property(texts, text => validate(text, decode(text))),
+      { numRuns: RUNS },
+    )
+  })
+  test('the short way for lists of atoms agrees with the long one', () => {
+    fc.assert(
+      fc.property(texts, text => {
+        expect(asJson(decode(text))).toBe(asJson(decodeWhole(text)))
+      }),
+      { numRuns: RUNS },
+    )
+  })
+})
+
+test('the short way agrees with the long one on long lists, whatever stands in and around them', () => {
+  fc.assert(
+    fc.property(spiced, text => {
+      expect(asJson(decode(text))).toBe(asJson(decodeWhole(text)))
+    }),
+    { numRuns: RUNS },
+  )
+})
