@@ -61,6 +61,8 @@ export interface ScenePoint {
   readonly severity?: SceneSeverity
   /** Where it stands in the text: its definition, else its first mention in the path. */
   readonly range?: TextRange
+  /** Every place where its label stands in the path. */
+  readonly mentions: readonly TextRange[]
 }
 
 export interface SceneSegment {
@@ -103,6 +105,8 @@ export interface Scene {
   }
   /** b₁ b₂ b₃, as many as there are dimensions. */
   readonly reciprocal: readonly Triple[]
+  /** Where the direct vectors stand, in the order of b₁ b₂ b₃; empty where the file gives parameters. */
+  readonly vectorRanges: readonly (TextRange | null)[]
   readonly points: readonly ScenePoint[]
   readonly segments: readonly SceneSegment[]
   readonly wedge?: SceneSolid
@@ -112,3 +116,86 @@ export interface Scene {
   /** The zone, its points and its path in words. */
   readonly words: readonly string[]
 }
+
+export interface DocumentParams {
+  readonly uri: string
+  readonly version: number
+  /** Ordinal in the file, from 1; the first where it is not said. */
+  readonly document?: number
+}
+export interface SceneResult {
+  readonly version: number
+  readonly scene: Scene | null
+  /** Why there is nothing to draw. */
+  readonly reason?: string
+  /** A search for symmetry is still running: the wedge and the meshes come with the next answer. */
+  readonly pending: boolean
+  /** Where each document of the file stands, so that the view can follow the cursor from one to the next. */
+  readonly documents: readonly TextRange[]
+}
+export const SCENE = 'braggline/scene'
+
+/** A parabola in one segment as a Bézier curve: energies in eV at its start, of its control point and at its end. */
+export type BandBranch = readonly [from: number, middle: number, to: number, degeneracy: number]
+
+export interface BandSegment {
+  readonly piece: number
+  readonly from: { readonly label: string; readonly k: Triple }
+  readonly to: { readonly label: string; readonly k: Triple }
+  /** Distance along the path at its start, inverse length. */
+  readonly start: number
+  readonly length: number
+  readonly branches: readonly BandBranch[]
+}
+
+/** Empty-lattice bands along the path: all states below `top`. */
+export interface Bands {
+  readonly unit: string
+  /** Of the whole path; distances run on over a break. */
+  readonly length: number
+  /** In eV. */
+  readonly top: number
+  /** The joints of the path; two names at a break. */
+  readonly ticks: readonly { readonly distance: number; readonly names: readonly SceneName[] }[]
+  readonly segments: readonly BandSegment[]
+}
+export interface BandsResult {
+  readonly version: number
+  readonly bands: Bands | null
+}
+export const BANDS = 'braggline/bands'
+
+export interface AppendParams extends DocumentParams {
+  readonly labels: readonly string[]
+  /** Begin a new piece with them; else they go on from the path's last point. */
+  readonly newPiece: boolean
+}
+export interface AppendResult {
+  readonly version: number
+  readonly edits: readonly { readonly range: TextRange; readonly newText: string }[]
+}
+/** The edits that write labels at the end of the path; null where it cannot be written to (behind an alias, say). */
+export const APPEND_TO_PATH = 'braggline/appendToPath'
+
+export interface ZoneSolidParams extends DocumentParams {
+  /** From 2. */
+  readonly n: number
+}
+/** The n-th zone, all its pieces in one; null where it takes too many. */
+export interface ZoneSolidResult {
+  readonly version: number
+  readonly solid: SceneSolid | null
+}
+export const ZONE_SOLID = 'braggline/zoneSolid'
+
+export interface FigureParams extends DocumentParams {
+  readonly kind: 'zone' | 'bands'
+  /** Where the eye stands: degrees from z, and about z from x. */
+  readonly view?: readonly [theta: number, phi: number]
+}
+/** A vector figure; null where there is nothing to draw. */
+export interface FigureResult {
+  readonly version: number
+  readonly svg: string | null
+}
+export const FIGURE = 'braggline/figure'

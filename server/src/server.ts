@@ -17,19 +17,35 @@ import { DEFAULT_SETTINGS, type Settings, Snapshot } from './analysis.ts'
 import type { Severities } from './checks/run.ts'
 import type { Severity } from './format/model.ts'
 import { diagnostics } from './language/diagnostics.ts'
+import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
 import { hover } from './language/hover.ts'
 import { recommendedPathEdit } from './language/recommended-path.ts'
 import { statusOf } from './language/status.ts'
+import { bandsAnswer, documentOf, figureAnswer, sceneAnswer, zoneSolidAnswer } from './language/zone-view.ts'
 import { symbols } from './language/symbols.ts'
 import { Workshop } from './meaning/workshop.ts'
 import {
+  APPEND_TO_PATH,
+  type AppendParams,
+  type AppendResult,
+  BANDS,
+  type BandsResult,
   CHECKED,
   type CheckedParams,
   type CheckedResult,
+  type DocumentParams,
+  FIGURE,
+  type FigureParams,
+  type FigureResult,
   RECOMMENDED_PATH,
   type RecommendedPathParams,
+  SCENE,
+  type SceneResult,
   STATUS,
+  ZONE_SOLID,
+  type ZoneSolidParams,
+  type ZoneSolidResult,
 } from './protocol.ts'
 import { type StartWorker, WorkerSymmetry } from './symmetry-service.ts'
 
@@ -206,6 +222,46 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     guard('recommended path', null, ({ uri, position }: RecommendedPathParams) => {
       const snapshot = snapshotOf(uri)
       return snapshot ? recommendedPathEdit(snapshot, position) : null
+    }),
+  )
+
+  // The zone view. What needs a search for symmetry is left out of a picture until the search has ended.
+  connection.onRequest(
+    SCENE,
+    guard('scene', null, ({ uri, document }: DocumentParams): SceneResult | null => {
+      const snapshot = snapshotOf(uri)
+      return snapshot ? sceneAnswer(snapshot, document) : null
+    }),
+  )
+  connection.onRequest(
+    BANDS,
+    guard('bands', null, ({ uri, document }: DocumentParams): BandsResult | null => {
+      const snapshot = snapshotOf(uri)
+      return snapshot ? bandsAnswer(snapshot, document) : null
+    }),
+  )
+  connection.onRequest(
+    ZONE_SOLID,
+    guard('zone solid', null, ({ uri, document, n }: ZoneSolidParams): ZoneSolidResult | null => {
+      const snapshot = snapshotOf(uri)
+      return snapshot ? zoneSolidAnswer(snapshot, document, n) : null
+    }),
+  )
+  connection.onRequest(
+    FIGURE,
+    guard('figure', null, (params: FigureParams): FigureResult | null => {
+      const snapshot = snapshotOf(params.uri)
+      return snapshot ? figureAnswer(snapshot, params) : null
+    }),
+  )
+  connection.onRequest(
+    APPEND_TO_PATH,
+    guard('append to path', null, ({ uri, version, document, labels, newPiece }: AppendParams): AppendResult | null => {
+      const snapshot = snapshotOf(uri)
+      const analysis = snapshot && documentOf(snapshot, document)
+      if (!analysis || snapshot.version !== version) return null
+      const edits = appendToPathEdits(snapshot, analysis, labels, newPiece)
+      return edits && { version, edits }
     }),
   )
 

@@ -54,16 +54,16 @@ export function zoneFigure(scene: Scene, { view, size = SIZE, colours }: FigureO
     ...outsideLinks(scene, camera, paint),
     ...points.map(({ k, label }) => {
       const [x, y] = camera.project(k)
-      return `<circle class="point" data-label="${escape(label)}" cx="${n(x)}" cy="${n(y)}" r="2.6" fill="${paint.ink}"/>`
+      return `<circle class="point" data-label="${escapeXml(label)}" cx="${n(x)}" cy="${n(y)}" r="2.6" fill="${paint.ink}"/>`
     }),
     ...labels(scene, points, camera, paint),
   ]
   const { width, height } = camera
-  const title = escape(scene.title || `First zone: ${scene.zone.solid}`)
+  const title = escapeXml(scene.title || `First zone: ${scene.zone.solid}`)
   return [
     `<svg xmlns="http://www.w3.org/2000/svg" width="${n(width)}" height="${n(height)}" viewBox="0 0 ${n(width)} ${n(height)}" role="img" font-family="Georgia, 'Times New Roman', serif" font-size="${FONT}">`,
     `<title>${title}</title>`,
-    `<desc>${escape(scene.words.join(' '))}</desc>`,
+    `<desc>${escapeXml(scene.words.join(' '))}</desc>`,
     `<rect width="100%" height="100%" fill="${paint.background}"/>`,
     ...body,
     '</svg>',
@@ -73,10 +73,8 @@ export function zoneFigure(scene: Scene, { view, size = SIZE, colours }: FigureO
 
 const n = (x: number): string => String(Math.round(x * 1000) / 1000 + 0)
 
-export const escape = (text: string): string =>
-  text
-    .replace(/[&<>"]/g, c => `&#${c.charCodeAt(0)};`)
-    .replace(/[\u0000-\u0008\u000b\u000c\u000e-\u001f]/g, '\ufffd')
+export const escapeXml = (text: string): string =>
+  text.replace(/[&<>"]/g, c => `&#${c.charCodeAt(0)};`).replace(/[^\P{Cc}\t\n\r]/gu, '\ufffd')
 
 const dot = (u: Triple, v: Triple): number => u[0] * v[0] + u[1] * v[1] + u[2] * v[2]
 const along = (u: Triple, v: Triple, t: number): Triple => [
@@ -283,7 +281,7 @@ function pathSegment({ from, to, piece }: SceneSegment, camera: Camera, { path }
       camera,
       from.k,
       to.k,
-      `class="path" data-piece="${piece + 1}" data-from="${escape(from.label)}" data-to="${escape(to.label)}" stroke="${path}" stroke-width="2.2" stroke-linecap="round"`,
+      `class="path" data-piece="${piece + 1}" data-from="${escapeXml(from.label)}" data-to="${escapeXml(to.label)}" stroke="${path}" stroke-width="2.2" stroke-linecap="round"`,
     ),
     arrowHead(camera, from.k, to.k, 0.56, path, 8),
   ]
@@ -345,9 +343,9 @@ function labels(
     taken.push(box)
     const style = kind === 'vector' ? ' font-weight="bold"' : ' font-style="italic"'
     const sub = name.sub
-      ? `<tspan font-size="${n(FONT * 0.7)}" font-style="normal" dy="4">${escape(name.sub)}</tspan>`
+      ? `<tspan font-size="${n(FONT * 0.7)}" font-style="normal" dy="4">${escapeXml(name.sub)}</tspan>`
       : ''
-    return `<text class="${kind}-label" x="${n(box.x + box.w / 2)}" y="${n(box.y + box.h * 0.78)}" text-anchor="middle" fill="${ink}" stroke="${background}" stroke-width="3" stroke-linejoin="round" paint-order="stroke"${style}>${escape(name.base)}${sub}</text>`
+    return `<text class="${kind}-label" x="${n(box.x + box.w / 2)}" y="${n(box.y + box.h * 0.78)}" text-anchor="middle" fill="${ink}" stroke="${background}" stroke-width="3" stroke-linejoin="round" paint-order="stroke"${style}>${escapeXml(name.base)}${sub}</text>`
   }
   const vectors = scene.reciprocal.map((b, i) =>
     set({ base: 'b', sub: String(i + 1) }, camera.project(b), 'vector'),

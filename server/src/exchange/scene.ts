@@ -43,6 +43,7 @@ export function sceneOf(snapshot: Snapshot, ordinal = 0): Scene | undefined {
     unit: INVERSE_SYMBOL[crystal.unit],
     zone: { ...solid(zone), solid: zone.solid, inradius: zone.inradius, circumradius: zone.circumradius },
     reciprocal: lattice.reciprocal.slice(0, lattice.dimension),
+    vectorRanges: (document.lattice?.vectors?.rows ?? []).map(row => (row ? marks.range(row.at) : null)),
     points,
     segments,
     wedge: wedge && solid(wedge),
@@ -89,36 +90,36 @@ class Marks {
 }
 
 /** `X1` is set as X with the subscript 1. */
-const nameOf = (label: string): SceneName => {
-  const sub = /\d*$/.exec(label)![0]
-  return { base: label.slice(0, label.length - sub.length), sub }
+export const nameOf = (label: string): SceneName => {
+  const [, base, sub, primes] = /^(.*?)(\d*)('*)$/s.exec(label)!
+  return { base: base + primes.replaceAll("'", '′'), sub }
 }
 
 function pointsOf(crystal: Crystal, zone: Zone, marks: Marks): ScenePoint[] {
-  const onPath = new Map<string, Span | undefined>()
+  const onPath = new Map<string, Span[]>()
   for (const { piece } of crystal.pieces)
-    for (const { label, at } of piece.labels) if (!onPath.has(label)) onPath.set(label, at)
+    for (const { label, at } of piece.labels) onPath.set(label, [...(onPath.get(label) ?? []), at])
   for (const { labels } of walkedPath(crystal))
-    for (const label of labels) if (!onPath.has(label)) onPath.set(label, undefined)
+    for (const label of labels) if (!onPath.has(label)) onPath.set(label, [])
 
   const all = [
     ...crystal.points.values(),
     ...[...crystal.bookPoints.values()].filter(({ label }) => !crystal.fileDefines(label)),
   ]
   return all.map(point => {
-    const at: Span | undefined = point.entry
-      ? [point.entry.key[0], point.entry.at[1]]
-      : onPath.get(point.label)
+    const mentions = onPath.get(point.label) ?? []
+    const at: Span | undefined = point.entry ? [point.entry.key[0], point.entry.at[1]] : mentions[0]
     return {
       ...placed(crystal, zone, point),
       named: point.origin === 'file' || onPath.has(point.label),
       severity: at && marks.worstWithin(at),
       range: at && marks.range(at),
+      mentions: mentions.map(mention => marks.range(mention)),
     }
   })
 }
 
-function placed(crystal: Crystal, zone: Zone, point: PlacedPoint): Omit<ScenePoint, 'named'> {
+function placed(crystal: Crystal, zone: Zone, point: PlacedPoint): Omit<ScenePoint, 'named' | 'mentions'> {
   const { place } = placeInZone(zone, point.cartesian)
   return {
     label: point.label,
