@@ -27,7 +27,8 @@ describe('pictures', () => {
 
   async function hoverAt(editor: vscode.TextEditor, position: vscode.Position, text: string): Promise<void> {
     editor.selection = new vscode.Selection(position, position)
-    await vscode.commands.executeCommand('editor.action.showHover')
+    // By default the command turns to a hover that is still shown.
+    await vscode.commands.executeCommand('editor.action.showHover', { focus: 'noAutoFocus' })
     await window.page.locator('.monaco-hover:visible', { hasText: text }).first().waitFor()
   }
 
