@@ -109,8 +109,8 @@ export function tightestContact(
   return best
 }
 
-/** Times the cube root of the volume an atom has: in a close packing the nearest neighbour is at 1.12. */
-const FIRST_REACH = 0.8
+/** Times the cube root of the volume an atom has: in a close packing the nearest neighbour is at 1.12, else nearer. */
+const FIRST_REACH = 1.2
 
 const shortestVector = ({ basis, dimension }: Sites): Vec3 => {
   const rows = reduce(basis, dimension).basis.slice(0, dimension)

@@ -1,4 +1,5 @@
 import { combine, distance, inverse, norm, type Vec3 } from '../../crystal/vector.ts'
+import { fraction } from '../../format/fraction.ts'
 import type { Fraction, NumberValue } from '../../format/model.ts'
 import { formatFraction } from '../../format/numbers.ts'
 import type { Crystal, PlacedAtom } from '../../meaning/crystal.ts'
@@ -36,8 +37,8 @@ export const atomNearlySpecial: Check<Facts> = {
   },
 }
 
-/** Denominators of special positions whose decimals never end; 1/8 and 3/8 are written out in full. */
-const DENOMINATORS = [3, 6, 12]
+/** Special positions are twelfths where their decimals never end; eighths are written out in full. */
+const DENOMINATOR = 12
 /** What arithmetic leaves between equal fractions. */
 const SAME = 1e-9
 
@@ -81,11 +82,11 @@ function correctionsOf(crystal: Crystal): Map<PlacedAtom, Correction> {
 
 /** The fraction that a number is a rounding of, where it is not the fraction itself. */
 function exactValue(number: NumberValue): Fraction | undefined {
-  for (const q of DENOMINATORS) {
-    const p = Math.round(number.value * q)
-    if (Math.abs(number.value - p / q) > SAME && p % q !== 0 && isRoundingOf(number, p / q)) return { p, q }
-  }
-  return undefined
+  const p = Math.round(number.value * DENOMINATOR)
+  const exact = p / DENOMINATOR
+  const isEnding = p % 3 === 0
+  if (isEnding || Math.abs(number.value - exact) <= SAME || !isRoundingOf(number, exact)) return undefined
+  return fraction(p, DENOMINATOR)
 }
 
 /** Programs take atoms for symmetric within about this part of a lattice vector (common practice). */
