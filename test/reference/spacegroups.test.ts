@@ -117,6 +117,24 @@ test('the standard cell has the handbook’s lattice parameters where the handbo
   }
 })
 
+test('the standard origin of a centrosymmetric crystal is a centre of inversion (origin choice 2)', () => {
+  const random = generator(13)
+  let centres = 0
+  for (const crystal of HANDBOOK) {
+    const shift: Vec3 = [random(), random(), random()]
+    const primitive = primitiveOf(crystal)
+    const shifted = { ...primitive, positions: primitive.positions.map(x => add(x, shift)) }
+    const { operations, standard } = found(inBasis(shifted, unimodular(random)))
+    const inversion = operations.find(({ rotation }) => String(rotation) === '-1,0,0,0,-1,0,0,0,-1')
+    if (!inversion) continue
+    centres++
+    const { origin } = standard!
+    const moved = subtract(add(apply(inversion.rotation, origin), inversion.translation), origin)
+    for (const x of moved) expect(Math.abs(x - Math.round(x)), crystal.name).toBeLessThan(1e-3)
+  }
+  expect(centres).toBeGreaterThan(40)
+})
+
 describe('a second library agrees', () => {
   test('on the handbook crystals, also skewed and as supercells', () => {
     const random = generator(3)

@@ -42,7 +42,7 @@ export interface LibraryAnswer {
   readonly lattice: string
   /** Rows: the standard cell's vectors as combinations of the rows of `basis`. */
   readonly standardFromCell: Mat3
-  /** Fractions of the standard cell are standard = inverse transpose of `standardFromCell` · x + this shift. */
+  /** The standard cell's origin in fractions of the cell that was handed in. */
   readonly standardOrigin: Vec3
   /** Turns the standard cell's vectors, as they lie in space, into the library's idealised orientation (columns). */
   readonly standardRotation: Mat3

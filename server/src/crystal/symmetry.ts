@@ -15,7 +15,6 @@ import {
   type PrimitiveCell,
 } from './translations.ts'
 import {
-  add,
   apply,
   combine,
   determinant,
@@ -362,44 +361,10 @@ function planeBravais(operations: readonly Operation[], dimension: Dimension): B
 
 function standardCell(answer: LibraryAnswer, change: Mat3, primitive: Mat3): StandardCell {
   const fromPrimitive = mapMatrix(multiply(answer.standardFromCell, change), whole)
-  // standard = P⁻ᵀ x + s vanishes at the origin x = −Pᵀ s.
-  const origin = scale(combine(answer.standardOrigin, fromPrimitive), -1)
   return {
     fromPrimitive,
     vectors: multiply(fromPrimitive, primitive),
-    origin,
+    origin: combine(answer.standardOrigin, change),
     rotation: answer.standardRotation,
-  }
-}
-
-export interface SpecialPosition {
-  /** The exact place, in the fractions that were handed in. */
-  readonly position: Vec3
-  /** Order of the site symmetry there. */
-  readonly order: number
-  /** How far it is from the place handed in, a length. */
-  readonly distance: number
-}
-
-/**
- * The most symmetric place near a given one: the mean of the images under all operations that bring it back to within
- * `reach`.
- * @param position fractions of the stated cell.
- * @param stated the rows of the stated cell, as in the input.
- * @param reach a length, well under the distance between atoms.
- */
-export function specialPosition(symmetry: Symmetry, position: Vec3, reach: number): SpecialPosition {
-  const { dimension, operations, primitive, primitiveFromStated } = symmetry
-  const x = combine(position, inverse(primitiveFromStated))
-  const offsets: Vec3[] = []
-  for (const { rotation, translation } of operations) {
-    const offset = nearestImage(subtract(add(apply(rotation, x), translation), x), dimension)
-    if (norm(combine(offset, primitive)) <= reach) offsets.push(offset)
-  }
-  const mean = scale(offsets.reduce(add), 1 / offsets.length)
-  return {
-    position: add(position, combine(mean, primitiveFromStated)),
-    order: offsets.length,
-    distance: norm(combine(mean, primitive)),
   }
 }

@@ -8,7 +8,6 @@ import {
   latticeType,
   namedSpaceGroup,
   spaceGroupSymbols,
-  specialPosition,
   type Symmetry,
   type SymmetryInput,
 } from '../../../server/src/crystal/symmetry.ts'
@@ -575,33 +574,6 @@ describe('tolerance', () => {
         symmetry.operations.length,
       )
     }
-  })
-})
-
-describe('the special position near a place', () => {
-  test('of a rounded third', () => {
-    const primitive = fromCell('hP', { a: 3.2094, c: 5.2105 }).primitive
-    const symmetry = found({
-      primitive,
-      positions: [
-        [1 / 3, 2 / 3, 1 / 4],
-        [2 / 3, 1 / 3, 3 / 4],
-      ],
-      species: [12, 12],
-    })
-    const near = specialPosition(symmetry, [0.333, 0.667, 0.25], 0.01)
-    expect(near.order).toBe(12)
-    near.position.forEach((x, i) => {
-      expect(x).toBeCloseTo([1 / 3, 2 / 3, 1 / 4][i], 12)
-    })
-    // 1/3000 of a along both axes, at 120° with opposite signs: a √3/3000.
-    expect(near.distance).toBeCloseTo((3.2094 * Math.sqrt(3)) / 3000, 9)
-  })
-
-  test('is the place itself where it is general, and keeps the cell that it was given in', () => {
-    const symmetry = found({})
-    expect(specialPosition(symmetry, [0.11, 0.23, 0.37], 0.1)).toMatchObject({ order: 1, distance: 0 })
-    expect(specialPosition(symmetry, [2.4999, -0.5, 0.5], 0.01).position).toEqual([2.5, -0.5, 0.5])
   })
 })
 
