@@ -8,13 +8,15 @@ import { Engine, type Symmetries } from './engine.ts'
 import { explain } from './explain.ts'
 import { fold } from './fold.ts'
 import { type Io, Refusal } from './io.ts'
+import { mesh } from './mesh.ts'
 import { HELP, type OptionSpec, readOptions } from './options.ts'
+import { path } from './path.ts'
 import { report } from './report.ts'
 import { serve } from './serve.ts'
 import { CLEAN, NOT_DONE, type Verb } from './verb.ts'
 import { VERSION } from './version.ts'
 
-export const VERBS: readonly Verb[] = [check, report, fold, bands, draw, explain, serve]
+export const VERBS: readonly Verb[] = [check, report, path, mesh, fold, bands, draw, explain, serve]
 
 const WIDTH = 92
 

@@ -69,3 +69,16 @@ export function pathPoints(segments: readonly KnownSegment[]): PathPoint[] {
 }
 
 const placeOf = ({ fraction, cartesian, label }: PlacedPoint) => ({ fraction, cartesian, label })
+
+/**
+ * For each point of `pathPoints` the unit vector along the segment that it ends or lies in; at the start of a piece, along
+ * the one that it begins. The limit at Γ of a polar crystal depends on it. Zero on a segment without length.
+ */
+export function pointDirections(segments: readonly KnownSegment[]): Vec3[] {
+  return segments.flatMap(({ piece, from, to, length, steps }, i) => {
+    const along = subtract(to.cartesian, from.cartesian)
+    const direction = length > 0 ? scale(along, 1 / length) : along
+    const begins = segments[i - 1]?.piece !== piece
+    return Array.from({ length: steps + (begins ? 1 : 0) }, () => direction)
+  })
+}
