@@ -77,7 +77,8 @@ function readInstruction(
   const place: Span = [at[0] + start, at[0] + start + word.length]
   if (word !== ALLOW) {
     const near = nearest(word, [ALLOW])
-    const message = `A comment can say \`braggline: allow RULE\`; \`${word}\` is no instruction.`
+    const what = word === '' ? 'here is nothing' : `\`${word}\` is no instruction`
+    const message = `A comment can say \`braggline: allow RULE\`; ${what}.`
     const fixes = near
       ? [{ title: `Replace by \`${near}\``, safe: true, edits: [{ at: place, text: near }] }]
       : []

@@ -136,7 +136,9 @@ const BY_NAME: ReadonlyMap<string, string> = new Map([
   ['cesium', 'Cs'],
   ['sulphur', 'S'],
   ['deuterium', 'H'],
+  ['d', 'H'],
   ['tritium', 'H'],
+  ['t', 'H'],
 ])
 
 /** @param vector the place where it stands as a bare list, so that a name can be put beside it. */

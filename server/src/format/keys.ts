@@ -474,11 +474,15 @@ export const KEYS: readonly KeyRow[] = [
 ]
 
 const BY_PATH: ReadonlyMap<string, KeyRow> = new Map(KEYS.map(row => [row.path, row]))
-const parentOf = ({ path }: KeyRow): string => path.slice(0, Math.max(0, path.lastIndexOf('.')))
+/** The path of the mapping that a row's key stands in; `''` is the document itself. */
+export function parentPath({ path }: KeyRow): string {
+  return path.slice(0, Math.max(0, path.lastIndexOf('.')))
+}
+
 const BELOW: ReadonlyMap<string, readonly KeyRow[]> = new Map(
   ['', ...BY_PATH.keys()].map(path => [
     path,
-    KEYS.filter(row => parentOf(row) === path && keyName(row) !== '*'),
+    KEYS.filter(row => parentPath(row) === path && keyName(row) !== '*'),
   ]),
 )
 

@@ -115,17 +115,14 @@ function readPoints(reader: Reader, node: Node, _row: KeyRow, name: string): Poi
 
 type PointValue = Pick<PointEntry, 'coordinates' | 'between'>
 
-function readPoint(reader: Reader, node: Node, row: KeyRow, name: string): PointValue | undefined {
+function readPoint(reader: Reader, node: Node, row: KeyRow, name: string, key: Span): PointValue | undefined {
   if (node.kind !== 'mapping') return { coordinates: reader.vector(node, row, name) }
   const { keys, values, unfinished } = reader.block(node, row.path)
-  for (const key of ['between', 'at'])
-    if (!keys.has(key) && !unfinished)
-      reader.report(
-        'key-missing',
-        node,
-        node.at,
-        `${name} needs \`${key}\`: \`{between: [Γ, X], at: 0.85}\`.`,
-      )
+  const missing = ['between', 'at'].filter(needed => !keys.has(needed)).map(needed => `\`${needed}\``)
+  if (missing.length > 0 && !unfinished) {
+    const message = `${name} needs ${missing.join(' and ')}: \`{between: [Γ, X], at: 0.85}\`.`
+    reader.report('key-missing', node, key, message)
+  }
   const between = values.get('between') as ReturnType<Reader['ends']>
   return between && { between: { ...between, fraction: values.get('at') as NumberValue | undefined } }
 }
@@ -137,15 +134,19 @@ export interface MeshValue {
   readonly block: Block
 }
 
-function readMeshes(reader: Reader, node: Node, row: KeyRow, name: string): MeshValue[] | undefined {
+function readMeshes(
+  reader: Reader,
+  node: Node,
+  row: KeyRow,
+  name: string,
+  key: Span,
+): MeshValue[] | undefined {
   if (node.kind !== 'mapping') {
     const fixes = node.kind === 'list' ? [wrapped(node.at, 'divisions')] : []
     const example = `\`mesh: ${row.example}\``
     return reader.wrong(node, `${name} is a mapping, such as ${example}, not ${kindOf(node)}.`, fixes)
   }
-  if (node.entries.length === 0)
-    return reader.wrong(node, `${name} has no \`divisions\` and no \`spacing\` yet.`)
-  return isOneMesh(node) ? [{ block: meshBlock(reader, node, name) }] : namedMeshes(reader, node)
+  return isOneMesh(node) ? [{ block: meshBlock(reader, node, name, key) }] : namedMeshes(reader, node)
 }
 
 const wrapped = ([start, end]: Span, key: string) => ({
@@ -160,6 +161,7 @@ const wrapped = ([start, end]: Span, key: string) => ({
 /** A known key, or a value that is no mesh itself, speaks for one mesh. */
 function isOneMesh(node: MappingNode): boolean {
   const names = keysBelow('mesh').map(keyName)
+  if (node.entries.length === 0) return true
   return node.entries.some(({ key, value }) => {
     if (key.kind !== 'text' || names.includes(key.value)) return true
     return value.kind === 'nothing' ? nearest(key.value, names) !== undefined : value.kind !== 'mapping'
@@ -179,7 +181,7 @@ function namedMeshes(reader: Reader, node: MappingNode): MeshValue[] {
     if (earlier) reader.repeatedKey(key.value, earlier.named, entry)
     else if (value.kind === 'mapping') {
       const named = { name: key.value, key: key.at, at: value.at, item }
-      meshes.set(key.value, { named, block: meshBlock(reader, value, `\`${shortened(key.value)}\``) })
+      meshes.set(key.value, { named, block: meshBlock(reader, value, `\`${shortened(key.value)}\``, key.at) })
     } else if (!value.broken) {
       const message = `\`${shortened(key.value)}\` has no value yet: a mesh such as \`{divisions: [12, 12, 12]}\`.`
       reader.report('value-type', key, key.at, message)
@@ -188,7 +190,7 @@ function namedMeshes(reader: Reader, node: MappingNode): MeshValue[] {
   return [...meshes.values()]
 }
 
-function meshBlock(reader: Reader, node: MappingNode, name: string): Block {
+function meshBlock(reader: Reader, node: MappingNode, name: string, key: Span): Block {
   const block = reader.block(node, 'mesh')
   const both = onlyOne(reader, block, ['divisions', 'spacing'], name)
   if (
@@ -198,7 +200,7 @@ function meshBlock(reader: Reader, node: MappingNode, name: string): Block {
     !block.keys.has('spacing') &&
     !node.broken
   )
-    reader.report('key-missing', node, node.at, `${name} needs \`divisions\` or \`spacing\`.`)
+    reader.report('key-missing', node, key, `${name} needs \`divisions\` or \`spacing\`.`)
   return block
 }
 

@@ -466,9 +466,11 @@ class Expression {
       }
     } else if (!this.match(NUMBER)) this.position++
     const piece = this.text.slice(from, this.position)
-    const before = /[\p{L}\p{N}_]+$/u.exec(this.text.slice(0, from).trimEnd())?.[0]
-    const example = before && piece !== '(' ? `, such as \`${before}*${piece}\`` : ', such as `*`'
-    return this.fail(from, this.position, `An operator is missing before \`${piece}\`${example}.`)
+    const gap = /\s*$/.exec(this.text.slice(0, from))![0] !== ''
+    const missing = gap ? 'An operator or a comma is missing' : 'An operator is missing'
+    const before = /[\p{L}\p{N}_]+$/u.exec(this.text.slice(0, from))?.[0]
+    const example = before && piece !== '(' ? `, such as \`${before}*${piece}\`` : ''
+    return this.fail(from, this.position, `${missing} before \`${piece}\`${example}.`)
   }
 }
 

@@ -1,5 +1,5 @@
 /** Nodes to values, one function for each kind of the key table. What cannot be read is undefined and a problem. */
-import { KEYS, type KeyRow, keyName, keysBelow, type Word } from './keys.ts'
+import { KEYS, type KeyRow, keyName, keysBelow, parentPath, type Word } from './keys.ts'
 import type {
   Entry,
   Fix,
@@ -17,13 +17,14 @@ import { scalarText } from './quote.ts'
 import type { MappingEntry, MappingNode, Node, TextNode } from './nodes.ts'
 import { evaluate, type Parameters } from './numbers.ts'
 import { normaliseLabel, parsePath } from './path.ts'
+import { lineEnd } from './text.ts'
 
 /** A mapping whose keys the table knows, with the values that could be read. */
 export interface Block {
   /** The keys that stand there and are known. */
   readonly keys: ReadonlyMap<string, Entry>
   readonly values: ReadonlyMap<string, unknown>
-  /** A key is still being typed, or a fault of syntax is near: what seems to be missing may be there. */
+  /** A key is misspelled or still being typed, or a fault of syntax is near: what seems to be missing may be there. */
   readonly unfinished: boolean
 }
 
@@ -34,8 +35,8 @@ export interface KnownEntry extends Entry {
   readonly row: KeyRow
 }
 
-/** Reads a value of some kind; `name` is what messages call it, in backticks where it is a key. */
-type Read = (reader: Reader, node: Node, row: KeyRow, name: string) => unknown
+/** Reads a value of some kind; `name` is what messages call it, in backticks where it is a key, and `key` where that stands. */
+type Read = (reader: Reader, node: Node, row: KeyRow, name: string, key: Span) => unknown
 
 /** How each kind is read. */
 export type Readers = Readonly<Record<KeyRow['kind'], Read>>
@@ -45,6 +46,7 @@ const MOST_LISTED = 8
 
 const NUMBER_WORDS = ['no', 'one', 'two', 'three', 'four', 'five', 'six', 'seven', 'eight', 'nine']
 const inWords = (n: number): string => NUMBER_WORDS[n] ?? String(n)
+const countOf = (n: number): string => (n === 0 ? 'is none' : n === 1 ? 'is one' : `are ${inWords(n)}`)
 const numbers = (n: number): string => `${inWords(n)} number${n === 1 ? '' : 's'}`
 
 export class Reader {
@@ -80,7 +82,12 @@ export class Reader {
 
   /** The value is of a wrong kind. */
   wrong(node: Node, message: string, fixes: readonly Fix[] = []): undefined {
-    if (!node.broken) this.report('value-type', node, node.at, message, { fixes })
+    // Of a block, its first line is enough to look at.
+    const at: Span = [
+      node.at[0],
+      node.aliased ? node.at[1] : Math.min(node.at[1], lineEnd(this.source, node.at[0])),
+    ]
+    if (!node.broken) this.report('value-type', node, at, message, { fixes })
     return undefined
   }
 
@@ -129,14 +136,14 @@ export class Reader {
       )
       return
     }
-    const elsewhere = KEYS.filter(row => keyName(row) === key.value).map(({ path }) =>
-      path.slice(0, path.lastIndexOf('.')),
+    const elsewhere = KEYS.filter(row => keyName(row) === key.value && !row.path.includes('*'))
+    const homes = elsewhere.map(row =>
+      parentPath(row) === '' ? 'at the top level' : `in \`${parentPath(row)}\``,
     )
-    const homes = elsewhere.filter(home => !home.includes('*')).map(home => `\`${home}\``)
     const hint = near
       ? `; did you mean \`${near}\`?`
       : homes.length > 0
-        ? `: it stands in ${homes.join(' or ')}.`
+        ? `: it belongs ${homes.join(' or ')}.`
         : names.length > MOST_LISTED
           ? '.'
           : `: known are ${names.map(name => `\`${name}\``).join(', ')}.`
@@ -154,12 +161,9 @@ export class Reader {
   private withoutColon(key: TextNode, names: readonly string[]): void {
     const name = /^([^\s:]+):\S/.exec(key.value)?.[1]
     if (!name || !names.includes(name) || key.quoted) {
-      this.report(
-        'value-type',
-        key,
-        key.at,
-        `\`${shortened(key.value)}\` is a key without a colon and a value.`,
-      )
+      const hint = /^\d+$/.test(key.value) ? '; the decimal sign is a point.' : '.'
+      const message = `\`${shortened(key.value)}\` is a key without a colon and a value${hint}`
+      this.report('value-type', key, key.at, message)
       return
     }
     const at = key.place(0, name.length + 1)[1]
@@ -187,13 +191,16 @@ export class Reader {
       keys.set(name, { key, at, item })
       values.set(name, this.ahead.has(row) ? this.ahead.get(row) : this.value(value, row, name, key))
     }
-    const unfinished = node.broken || node.entries.some(({ colon }) => !colon)
+    const known = new Set(keysBelow(path).map(keyName))
+    const unknown = node.entries.filter(({ key }) => key.kind !== 'text' || !known.has(key.value))
+    const isDoubtful = path === '' ? unknown.some(({ key }) => meansRequired(key)) : unknown.length > 0
+    const unfinished = node.broken || isDoubtful || node.entries.some(({ colon }) => !colon)
     return { keys, values, unfinished }
   }
 
   /** The value of a key; a key without one is a problem of its own. */
   value(node: Node, row: KeyRow, name: string, key: Span): unknown {
-    if (node.kind !== 'nothing') return this.readers[row.kind](this, node, row, `\`${shortened(name)}\``)
+    if (node.kind !== 'nothing') return this.readers[row.kind](this, node, row, `\`${shortened(name)}\``, key)
     if (!node.broken)
       this.report(
         'value-type',
@@ -279,10 +286,7 @@ export class Reader {
     if (node.broken) return undefined
     const { length } = node
     if (row.length === undefined ? length < 1 || length > 3 : length !== row.length)
-      return this.wrong(
-        node,
-        `${name} takes ${wanted}; here ${length === 1 ? 'is' : 'are'} ${inWords(length)}.`,
-      )
+      return this.wrong(node, `${name} takes ${wanted}; here ${countOf(length)}.`)
     const items = node.items.map(({ node: item }) => this.component(item, row, name))
     return { at: node.at, items }
   }
@@ -325,7 +329,7 @@ export class Reader {
       const fixes: Fix[] = node.flow ? [{ title: 'Write it as one row', safe: false, edits }] : []
       this.wrong(node, `${name} is ${wanted}; each row is a list in brackets.`, fixes)
     } else if (!node.broken && (node.length < 1 || node.length > 3))
-      this.wrong(node, `${name} is ${wanted}; here are ${inWords(node.length)}.`)
+      this.wrong(node, `${name} is ${wanted}; here ${countOf(node.length)}.`)
     else if (!node.broken) return node.items.map(({ node: item }) => this.rowOf(item, row, name))
     return []
   }
@@ -340,11 +344,7 @@ export class Reader {
   ends(node: Node, name: string): { at: Span; ends: readonly [PathLabel, PathLabel] } | undefined {
     if (node.kind !== 'list') return this.wrong(node, `${name} is a list of two labels, not ${kindOf(node)}.`)
     if (node.broken) return undefined
-    if (node.length !== 2)
-      return this.wrong(
-        node,
-        `${name} takes two labels; here ${node.length === 1 ? 'is' : 'are'} ${inWords(node.length)}.`,
-      )
+    if (node.length !== 2) return this.wrong(node, `${name} takes two labels; here ${countOf(node.length)}.`)
     const [from, to] = node.items.map(({ node: item }) => this.label(item))
     return from && to && { at: node.at, ends: [from, to] }
   }
@@ -354,6 +354,7 @@ export class Reader {
     const text = node.value.trim()
     const label = normaliseLabel(text)
     if (label !== undefined) return { label, at: node.at, text }
+    if (text === '') return this.wrong(node, 'A label is missing here.')
     return this.wrong(
       node,
       `\`${shortened(text)}\` is no label: a label is a letter, then letters, digits and primes.`,
@@ -401,19 +402,27 @@ export class Reader {
   }
 }
 
+/** In shorter words one other letter makes another word: `pm` is not a misspelled `nm`. */
+const SHORTEST_MISSPELLED = 3
+
 /** The word that a misspelled one was probably meant to be. */
 function meantWord(text: string, words: readonly Word[]): string | undefined {
   const folded = text.toLowerCase()
   const known = words.find(({ word, meant, also }) =>
     [word, ...(meant ?? []), ...(also ?? [])].some(other => other.toLowerCase() === folded),
   )
-  return (
-    known?.word ??
-    nearest(
-      text,
-      words.map(({ word }) => word),
-    )
+  if (known || text.length < SHORTEST_MISSPELLED) return known?.word
+  return nearest(
+    text,
+    words.map(({ word }) => word),
   )
+}
+
+/** A misspelled key that is probably the one which a document must have. */
+function meansRequired(key: Node): boolean {
+  const rows = keysBelow('')
+  const near = key.kind === 'text' ? nearest(key.value, rows.map(keyName)) : undefined
+  return rows.some(row => row.required && keyName(row) === near)
 }
 
 export function kindOf(node: Node): string {

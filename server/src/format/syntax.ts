@@ -1,5 +1,6 @@
 /** Faults of YAML's syntax in words of our own: what is wrong there, and what would be right. */
 import type { YAMLParseError } from 'yaml'
+import { lineEnd } from './text.ts'
 
 export interface SyntaxFault {
   readonly start: number
@@ -35,16 +36,17 @@ function kindOf({ code, message }: YAMLParseError): SyntaxFault['kind'] {
   return LOCAL_CODES.has(code) || LOCAL_MESSAGES.test(message) ? 'local' : 'structure'
 }
 
-/** One fault of the structure brings others with it: only the first is told, and one fault at one place. */
+/** One fault of the structure brings others with it: only the first is told, and no other on its line or at its place. */
 export function withoutConsequences<
   F extends { readonly start: number; readonly kind?: SyntaxFault['kind'] },
->(faults: readonly F[]): F[] {
+>(faults: readonly F[], text: string): F[] {
   const told: F[] = []
-  let structural = false
+  let structural: F | undefined
   for (const fault of [...faults].sort((a, b) => a.start - b.start)) {
     const isStructural = fault.kind === 'structure'
-    if ((isStructural && structural) || told.at(-1)?.start === fault.start) continue
-    structural ||= isStructural
+    if (told.at(-1)?.start === fault.start) continue
+    if (structural && (isStructural || fault.start < lineEnd(text, structural.start))) continue
+    if (isStructural) structural = fault
     told.push(fault)
   }
   return told
@@ -54,7 +56,9 @@ export function withoutConsequences<
 export function syntaxFault(error: YAMLParseError, text: string): SyntaxFault {
   const [from, to] = error.pos
   const start = Math.max(0, Math.min(from, text.length))
-  const end = Math.max(start, Math.min(to, text.length))
+  // An escape sequence is a backslash and what follows.
+  const length = error.code === 'BAD_DQ_ESCAPE' ? 2 : to - from
+  const end = Math.max(start, Math.min(from + length, text.length))
   const there = text
     .slice(start, Math.min(end, start + LONGEST_QUOTE))
     .replace(/\s+/g, ' ')
@@ -113,6 +117,14 @@ const BY_MESSAGE: readonly (readonly [RegExp, Explanation])[] = [
     /unexpected block-seq-ind on same line/i,
     () => 'A list that begins with `- ` goes on the line after its key.',
   ],
+  [
+    /not a yaml token/i,
+    () => 'After `|` or `>` the text begins on the next line; one that holds them needs quotes.',
+  ],
+  [
+    /at node end/i,
+    there => `Something is missing before ${quoted(there)}, such as a comma, an operator or a quote.`,
+  ],
   [/block scalar/i, () => 'The lines of a block text are indented more than its key, and all alike.'],
   [/unexpected flow-(?:seq|map)-end/i, there => `${quoted(there)} closes nothing that is open.`],
 ]
@@ -126,7 +138,7 @@ const BY_CODE: Readonly<Record<string, Explanation>> = {
   BAD_INDENT: () => 'The indentation does not fit what stands above.',
   BAD_PROP_ORDER: () => 'An anchor or tag stands directly before its value.',
   BAD_SCALAR_START: there => `A text that begins with ${quoted(there.slice(0, 1))} must be quoted.`,
-  BLOCK_AS_IMPLICIT_KEY: () => 'A list or mapping of several lines cannot be a key.',
+  BLOCK_AS_IMPLICIT_KEY: () => 'The indentation here fits nothing that stands above.',
   BLOCK_IN_FLOW: () => 'Inside of brackets, entries are separated by commas and lists have brackets.',
   KEY_OVER_1024_CHARS: () => 'A key is longer than YAML allows.',
   MISSING_CHAR: () => 'Something is missing here.',

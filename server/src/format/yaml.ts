@@ -257,7 +257,7 @@ class Reading {
     const { unclosed } = survey
     const known = unclosed.length > 0 ? composed.filter(({ kind }) => kind !== 'unclosed') : composed
     const all: Fault[] = [...known, ...survey.faults, ...unclosed]
-    const faults = withoutConsequences(all)
+    const faults = withoutConsequences(all, this.cuts.text)
     const uncertain = composed.some(({ kind }) => kind === 'structure')
     const problems = faults.map(fault => syntax(this.cuts.span(fault.start, fault.end), fault.message))
     problems.push(...this.strangeTags(end))
