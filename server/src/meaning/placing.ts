@@ -30,11 +30,15 @@ import type { Crystal } from './crystal.ts'
 import { isRoundingOf, LARGEST_K_SHIFT } from './rounding.ts'
 import { acrossLine, isOn, lowestTerms, wholeDirection } from './whole-vectors.ts'
 
-/** Every equivalent of every point of a book, modulo reciprocal vectors. */
+/** Every equivalent of every point of a book, modulo reciprocal vectors. Flat, because rules go through it at each edit. */
 interface Atlas {
   readonly points: readonly BookPoint[]
-  readonly images: readonly { readonly point: BookPoint; readonly fraction: Vec3 }[]
-  readonly byLabel: ReadonlyMap<string, { readonly point: BookPoint; readonly images: readonly Vec3[] }>
+  /** Fractions of image i are at 3i, 3i + 1, 3i + 2. */
+  readonly fractions: Float64Array
+  /** The point of which it is an image. */
+  readonly owners: readonly BookPoint[]
+  /** First and last image (not included) by label. */
+  readonly ranges: ReadonlyMap<string, readonly [start: number, end: number]>
 }
 
 /** A match depends on the lattice alone, and outlives the edits of points. */
@@ -43,17 +47,29 @@ const atlases = new WeakMap<BookMatch, Atlas>()
 function atlasOf(match: BookMatch): Atlas {
   let atlas = atlases.get(match)
   if (!atlas) {
-    const byLabel = new Map(
-      match.points.map(point => [point.label, { point, images: star(point.fraction, match.holohedry) }]),
-    )
-    const images = [...byLabel.values()].flatMap(({ point, images }) =>
-      images.map(fraction => ({ point, fraction })),
-    )
-    atlas = { points: match.points, images, byLabel }
+    const ranges = new Map<string, [number, number]>()
+    const owners: BookPoint[] = []
+    const fractions: number[] = []
+    for (const point of match.points) {
+      const images = star(point.fraction, match.holohedry)
+      ranges.set(point.label, [owners.length, owners.length + images.length])
+      for (const image of images) {
+        owners.push(point)
+        fractions.push(...image)
+      }
+    }
+    atlas = { points: match.points, fractions: Float64Array.from(fractions), owners, ranges }
     atlases.set(match, atlas)
   }
   return atlas
 }
+
+const wholeOf = ({ owners }: Atlas): readonly [number, number] => [0, owners.length]
+const imageAt = ({ fractions }: Atlas, i: number): Vec3 => [
+  fractions[3 * i],
+  fractions[3 * i + 1],
+  fractions[3 * i + 2],
+]
 
 /** The k-group of the lattice, on columns of primitive fractions. */
 export const latticeGroup = (crystal: Crystal): readonly Mat3[] | undefined =>
@@ -93,44 +109,37 @@ export function fitOf(
   lattice = crystal.lattice,
 ): Fit | undefined {
   const atlas = atlasOf(match)
-  const only = label === undefined ? undefined : atlas.byLabel.get(label)
-  if (!lattice || (label !== undefined && !only)) return undefined
+  const { fractions, owners } = atlas
+  const range = label === undefined ? wholeOf(atlas) : atlas.ranges.get(label)
+  if (!lattice || !range) return undefined
   const { primitive, reciprocal } = lattice
   const k = combine(stated.numbers, stated.axes)
   const fraction = scale(apply(primitive, k), 1 / (2 * Math.PI))
+  const [f0, f1, f2] = fraction
   const largest = LARGEST_K_SHIFT * crystal.angstrom
   // |δfᵢ| = |δk·aᵢ|/2π ≤ |δk||aᵢ|/2π: a quick look before the exact one.
   const [l0, l1, l2] = primitive.map(a => K_TOLERANCE + (largest * norm(a)) / (2 * Math.PI))
   const near = nearness(crystal, k)
   const isFractional = stated.axes === reciprocal || stated.axes === lattice.conventionalReciprocal
   let best: Fit | undefined
-  const isExact = (point: BookPoint, image: Vec3): boolean => {
-    const d0 = toNearest(fraction[0] - image[0])
-    if (Math.abs(d0) > l0) return false
-    const d1 = toNearest(fraction[1] - image[1])
-    if (Math.abs(d1) > l1) return false
-    const d2 = toNearest(fraction[2] - image[2])
-    if (Math.abs(d2) > l2) return false
+  for (let i = range[0]; i < range[1]; i++) {
+    const d0 = toNearest(f0 - fractions[3 * i])
+    if (Math.abs(d0) > l0) continue
+    const d1 = toNearest(f1 - fractions[3 * i + 1])
+    if (Math.abs(d1) > l1) continue
+    const d2 = toNearest(f2 - fractions[3 * i + 2])
+    if (Math.abs(d2) > l2) continue
     const miss: Vec3 = [d0, d1, d2]
-    const fit = (how: Fit['how']): Fit => ({
-      label: point.label,
-      point,
-      fraction: subtract(fraction, miss),
-      how,
-    })
-    if (isNothing(miss)) {
-      best = fit('exact')
-      return true
-    }
+    const point = owners[i]
+    const place = subtract(fraction, miss)
+    if (isNothing(miss)) return { label: point.label, point, fraction: place, how: 'exact' }
     const shift = combine(miss, reciprocal)
     const size = norm(shift)
-    if (best || size > largest) return false
-    if (size <= near && (point.parameterDependent || !isFractional)) best = fit('near')
-    else if (isWritten(stated, shift)) best = fit('rounded')
-    return false
+    if (best || size > largest) continue
+    if (size <= near && (point.parameterDependent || !isFractional))
+      best = { label: point.label, point, fraction: place, how: 'near' }
+    else if (isWritten(stated, shift)) best = { label: point.label, point, fraction: place, how: 'rounded' }
   }
-  if (only) only.images.some(image => isExact(only.point, image))
-  else atlas.images.some(({ point, fraction: image }) => isExact(point, image))
   return best
 }
 
@@ -144,13 +153,16 @@ export function nearness(crystal: Crystal, k: Vec3): number {
   return (crystal.tolerance / shortest) * norm(k)
 }
 
+/** What arithmetic leaves between two equal numbers of the size of one. */
+const SAME_NUMBER = 1e-9
+
 /** Are the digits written those of the place that lies `shift` before them? */
 function isWritten({ values, numbers, axes }: Stated, shift: Vec3): boolean {
   const volume = dot(axes[0], cross(axes[1], axes[2]))
   return values.every((value, i) => {
     const across = cross(axes[(i + 1) % 3], axes[(i + 2) % 3])
     const miss = dot(shift, across) / volume
-    return Math.abs(miss) <= K_TOLERANCE / 1000 || isRoundingOf(value, numbers[i] - miss)
+    return Math.abs(miss) <= SAME_NUMBER || isRoundingOf(value, numbers[i] - miss)
   })
 }
 
@@ -165,12 +177,18 @@ export function bookPointHere(crystal: Crystal, k: Vec3): BookPoint | undefined 
     const miss: Vec3 = reduce ? [toNearest(raw[0]), toNearest(raw[1]), toNearest(raw[2])] : raw
     return isNothing(miss) || (point.parameterDependent && norm(crystal.cartesianOf(miss)) <= near)
   }
-  const { points, images } = atlasOf(book)
-  return (
-    points.find(point => isAt(point, point.fraction, false)) ??
-    images.find(image => isAt(image.point, image.fraction, true))?.point
-  )
+  const atlas = atlasOf(book)
+  const own = atlas.points.find(point => isAt(point, point.fraction, false))
+  if (own) return own
+  const { owners, fractions } = atlas
+  for (let i = 0; i < owners.length; i++) {
+    if (Math.abs(toNearest(fraction[0] - fractions[3 * i])) > FAR) continue
+    if (isAt(owners[i], imageAt(atlas, i), true)) return owners[i]
+  }
+  return undefined
 }
+/** Fractions that differ by more are another point, whatever the tolerance. */
+const FAR = 0.05
 
 export interface NearPoint {
   readonly label: string
@@ -188,16 +206,12 @@ export function nearestBookPoint(crystal: Crystal, k: Vec3, label?: string): Nea
   if (!book || !zone) return undefined
   const atlas = atlasOf(book)
   let best: { point: BookPoint; size: number; miss: Vec3 } | undefined
-  const look = (point: BookPoint, image: Vec3) => {
-    const miss = shortestEquivalent(zone, subtract(k, crystal.cartesianOf(image)))
+  const range = label === undefined ? wholeOf(atlas) : (atlas.ranges.get(label) ?? [0, 0])
+  for (let i = range[0]; i < range[1]; i++) {
+    const miss = shortestEquivalent(zone, subtract(k, crystal.cartesianOf(imageAt(atlas, i))))
     const size = norm(miss)
     // The first of several at one distance wins, whatever rounding does.
-    if (!best || size < best.size - K_TOLERANCE * zone.inradius) best = { point, size, miss }
-  }
-  if (label === undefined) for (const { point, fraction } of atlas.images) look(point, fraction)
-  else {
-    const only = atlas.byLabel.get(label)
-    for (const image of only?.images ?? []) look(only!.point, image)
+    if (!best || size < best.size - K_TOLERANCE * zone.inradius) best = { point: atlas.owners[i], size, miss }
   }
   if (!best) return undefined
   const cartesian = subtract(k, best.miss)
@@ -239,38 +253,42 @@ export interface Passed {
   readonly fraction: Vec3
 }
 
-/** The book points, equivalents counted, on the straight line between two places (fractions), ends included, in order. */
+/**
+ * The book points, equivalents counted, on the straight line between two places (fractions), ends included, in order.
+ * None on a line over more than `LONGEST_LINE` reciprocal vectors.
+ */
 export function bookPointsAlong(match: BookMatch, [from, to]: Ends): Passed[] {
   const along = subtract(to, from)
   const main = along.reduce((best, x, i) => (Math.abs(x) > Math.abs(along[best]) ? i : best), 0)
   const step = along[main]
-  if (step === 0) return []
+  if (step === 0 || !(Math.abs(step) <= LONGEST_LINE)) return []
   const passed: Passed[] = []
   const slack = K_TOLERANCE / Math.abs(step)
-  for (const { point, fraction } of atlasOf(match).images) {
-    const start = fraction[main] - from[main]
+  const { owners, fractions } = atlasOf(match)
+  for (let i = 0; i < owners.length; i++) {
+    const start = fractions[3 * i + main] - from[main]
     const [low, high] = step > 0 ? [-start, step - start] : [step - start, -start]
     for (let whole = Math.ceil(low - K_TOLERANCE); whole <= high + K_TOLERANCE; whole++) {
       const at = (start + whole) / step
       if (at < -slack || at > 1 + slack) continue
-      const place = add(from, scale(along, at))
-      if (!isNothing(roundedDifference(place, fraction))) continue
-      if (passed.some(other => other.point === point && Math.abs(other.at - at) <= slack)) continue
-      passed.push({ point, at, fraction: place })
+      if (!isWhole(from[0] + at * along[0] - fractions[3 * i])) continue
+      if (!isWhole(from[1] + at * along[1] - fractions[3 * i + 1])) continue
+      if (!isWhole(from[2] + at * along[2] - fractions[3 * i + 2])) continue
+      if (passed.some(other => other.point === owners[i] && Math.abs(other.at - at) <= slack)) continue
+      passed.push({ point: owners[i], at, fraction: add(from, scale(along, at)) })
     }
   }
   return passed.sort((p, q) => p.at - q.at)
 }
 
-const roundedDifference = (u: Vec3, v: Vec3): Vec3 => [
-  toNearest(u[0] - v[0]),
-  toNearest(u[1] - v[1]),
-  toNearest(u[2] - v[2]),
-]
+/** A longer line is a slip of the pen: its points would be counted by the thousand, and nobody would want them named. */
+const LONGEST_LINE = 50
+
+const isWhole = (x: number): boolean => Math.abs(toNearest(x)) <= K_TOLERANCE
 
 /** The symmetry line on which a point lies. */
 export interface LineHere {
-  /** The book points between which it lies, the nearer to Γ first. */
+  /** The book points between which it lies; Γ comes first. */
   readonly ends?: readonly [string, string]
   /** How far from the first end, 0 … 1. */
   readonly part?: number
@@ -294,9 +312,8 @@ export function lineHere(crystal: Crystal, k: Vec3, tolerance = K_TOLERANCE): Li
   const after = passed.find(({ at }) => at > HERE)
   const name = nameOfLine(book, fraction)
   if (!before || !after) return { name }
-  const ends = [before, after].sort(
-    (p, q) => norm(crystal.cartesianOf(p.fraction)) - norm(crystal.cartesianOf(q.fraction)),
-  )
+  const size = ({ point }: Passed): number => norm(crystal.cartesianOf(point.fraction))
+  const ends = [before, after].sort((p, q) => size(p) - size(q))
   const part = Math.abs(HERE - ends[0].at) / (after.at - before.at)
   return { ends: [ends[0].point.label, ends[1].point.label], part, name }
 }

@@ -5,7 +5,7 @@ import type { PathPiece } from '../../format/model.ts'
 import { displayLabel } from '../../format/path.ts'
 import type { Check } from '../check.ts'
 import { offer } from '../points/numbers.ts'
-import { type CheckedSegment, nameOf, segmentsOf } from './segments.ts'
+import { type CheckedSegment, nameOf, segmentsOf, subjectOf } from './segments.ts'
 
 interface Facts {
   readonly from: string
@@ -34,6 +34,7 @@ export const pathJump: Check<Facts> = {
         at: segment.at,
         message: `${nameOf(checked)} is no segment of the book's path: ${why} between them, \`${segment.from.text} | ${segment.to.text}\`.`,
         facts: { from: a, to: b },
+        hides: [{ rule: 'path-off-symmetry', subject: subjectOf(checked) }],
         fixes: mayBreak(piece.piece, index) ? offer('Break the path here', breakSegment(text, segment)) : [],
       }
     }

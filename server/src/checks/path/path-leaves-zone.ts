@@ -4,11 +4,12 @@ import type { Ends } from '../../crystal/kspace.ts'
 import { standsHere } from '../../format/edits.ts'
 import type { Fix } from '../../format/model.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
-import { cartesian, plain } from '../../meaning/wording.ts'
+import { bookPointHere } from '../../meaning/placing.ts'
+import { plain } from '../../meaning/wording.ts'
 import type { Check, Context } from '../check.ts'
-import { excessOf } from '../points/diagnosis.ts'
-import { definePoints, offer, statedPlace } from '../points/numbers.ts'
-import { type CheckedSegment, nameOf, type PathEnd, segmentsOf } from './segments.ts'
+import { baseOf, excessOf } from '../points/diagnosis.ts'
+import { cartesianPlace, definePoints, offer, statedPlace } from '../points/numbers.ts'
+import { type CheckedSegment, nameOf, type PathEnd, segmentsOf, subjectOf } from './segments.ts'
 
 interface Facts {
   readonly from: string
@@ -23,11 +24,11 @@ export const pathLeavesZone: Check<Facts> = {
   severity: 'warning',
   summary: 'A segment crosses the boundary of the first Brillouin zone.',
   why: 'Beyond it the bands are those of another line inside: the plot goes on under a label that means another point.',
-  wrong: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [0.8, 0.1, 0.2]}\npath: Γ – X | L – Q\n',
-  right: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [1/2, 1/4, 1/2]}\npath: Γ – X | L – Q\n',
+  wrong: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [0.8, 0.1, 0.2]}\npath: Γ – L – Q\n',
+  right: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [1/2, 1/4, 1/2]}\npath: Γ – L – Q\n',
   *run(context) {
     const { crystal } = context
-    const { zone, unit } = crystal
+    const { zone } = crystal
     if (!zone) return
     for (const checked of segmentsOf(crystal)) {
       const { segment, from, to, ends } = checked
@@ -37,7 +38,7 @@ export const pathLeavesZone: Check<Facts> = {
       if (outside.length === 0) continue
       const crossing = crossingOf(crystal, zone, ends, outside.includes(from))
       const where = crossing
-        ? `${outside.includes(from) ? 'enters' : 'leaves'} the first zone at ${statedPlace(crystal, crossing.fraction)}, k = ${cartesian(crystal.cartesianOf(crossing.fraction), unit)}, ${plain(crossing.at, 3)} of the way`
+        ? `${outside.includes(from) ? 'enters' : 'leaves'} the first zone at ${statedPlace(crystal, crossing.fraction)}, k = ${cartesianPlace(crystal, crossing.fraction)}, ${plain(crossing.at, 3)} of the way`
         : 'runs outside the first zone'
       const areBookPoints = from.bookLabel !== undefined && to.bookLabel !== undefined
       yield {
@@ -45,7 +46,10 @@ export const pathLeavesZone: Check<Facts> = {
         ...(areBookPoints && { severity: 'info' as const }),
         message: `${nameOf(checked)} ${where}.`,
         facts: { from: from.point.label, to: to.point.label, at: crossing?.at, crossing: crossing?.fraction },
-        hides: outside.map(({ point }) => ({ rule: 'point-outside-zone', subject: `point:${point.label}` })),
+        hides: [
+          { rule: 'path-off-symmetry', subject: subjectOf(checked) },
+          ...outside.map(({ point }) => ({ rule: 'point-outside-zone', subject: `point:${point.label}` })),
+        ],
         fixes: foldedFix(context, zone, checked),
       }
     }
@@ -126,14 +130,18 @@ class Names {
   of(k: Vec3, side: 'start' | 'end'): string {
     const known = this.places.find(({ fraction }) => norm(subtract(fraction, k)) < NOTHING)
     if (known) return known.label
-    const label = this.free(
-      this.isEnd(k, side)
-        ? `${this.ends[side === 'start' ? 0 : 1].point.label}'`
-        : this.ends.map(({ point }) => point.label).join(''),
-    )
+    const label = this.free(this.baseFor(k, side))
     this.places.push({ label, fraction: k })
     this.definitions.push([label, statedPlace(this.crystal, k)])
     return label
+  }
+
+  /** An equivalent of a book point, or of an end, is a primed one; else the two ends name the place between them. */
+  private baseFor(k: Vec3, side: 'start' | 'end'): string {
+    const here = bookPointHere(this.crystal, this.crystal.cartesianOf(k))
+    if (here) return `${here.label}'`
+    if (this.isEnd(k, side)) return `${this.ends[side === 'start' ? 0 : 1].point.label}'`
+    return this.ends.map(({ point }) => baseOf(point.label)).join('')
   }
 
   /** Is the place the segment's end, moved by a reciprocal vector? */

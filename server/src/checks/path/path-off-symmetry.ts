@@ -2,7 +2,7 @@ import { segmentSymmetry } from '../../crystal/kspace.ts'
 import type { Mat3 } from '../../crystal/vector.ts'
 import { latticeGroup } from '../../meaning/placing.ts'
 import type { Check } from '../check.ts'
-import { nameOf, segmentsOf } from './segments.ts'
+import { nameOf, segmentsOf, subjectOf } from './segments.ts'
 
 interface Facts {
   readonly from: string
@@ -26,6 +26,7 @@ export const pathOffSymmetry: Check<Facts> = {
       if (segmentSymmetry(ends, group, dimension, tolerance).freedom !== dimension) continue
       yield {
         at: segment.at,
+        subject: subjectOf(checked),
         message: `${nameOf(checked)} lies on no symmetry line${dimension === 3 ? ' or plane' : ''} of the lattice.`,
         facts: { from: from.point.label, to: to.point.label },
       }

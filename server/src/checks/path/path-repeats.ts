@@ -1,4 +1,4 @@
-import { norm } from '../../crystal/vector.ts'
+import { K_TOLERANCE } from '../../crystal/kspace.ts'
 import { removeSegment } from '../../format/edits.ts'
 import { displayLabel } from '../../format/path.ts'
 import type { Check } from '../check.ts'
@@ -15,14 +15,14 @@ export const pathRepeats: Check<Facts> = {
   severity: 'warning',
   summary: 'A segment of the path has length zero.',
   why: 'The same k-point is computed several times, and plots divide by the length.',
-  wrong: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – X – M\n',
-  right: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – M\n',
+  wrong: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – X – M – Γ – R\n',
+  right: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – M – Γ – R\n',
   *run({ crystal, document, text }) {
     const { zone } = crystal
     if (!zone) return
     for (const checked of segmentsOf(crystal)) {
-      const { segment, from, to, ends, length, tolerance } = checked
-      if (length > tolerance * Math.max(...zone.reciprocal.map(norm))) continue
+      const { segment, from, to, ends, length } = checked
+      if (length > K_TOLERANCE * zone.inradius) continue
       const [a, b] = [from.point.label, to.point.label]
       const same =
         a === b ? 'its ends are one point' : `${displayLabel(a)} and ${displayLabel(b)} are one point`

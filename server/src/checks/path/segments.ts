@@ -114,6 +114,9 @@ function segmentOfBook(
   return found < 0 ? undefined : found
 }
 
+/** What a finding about a segment is about, so that another finding of the same segment can hide it. */
+export const subjectOf = ({ segment }: CheckedSegment): string => `segment:${segment.at[0]}`
+
 /** `Γ–X`, as the messages write it. */
 export const nameOf = ({ from, to }: CheckedSegment): string =>
   `${displayLabel(from.point.label)}–${displayLabel(to.point.label)}`

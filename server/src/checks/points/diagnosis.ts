@@ -2,8 +2,12 @@
  * What is the matter with the points of a file: each gets one cause at most, and a cause that several share is found
  * once, so that one mistake gives one finding. The rules of points and of the path ask here.
  */
+import { compiled } from '../../books/book.ts'
+import { evaluateForm } from '../../books/formula.ts'
 import { labelInOtherBooks } from '../../books/lookup.ts'
-import type { BookPoint } from '../../books/match.ts'
+import { BOOKS } from '../../books/index.ts'
+import type { BookMatch, BookPoint } from '../../books/match.ts'
+import { PLANE_LATTICES } from '../../books/plane-lattices.ts'
 import { fixedDimensions, K_TOLERANCE, littleCoGroup } from '../../crystal/kspace.ts'
 import { apply, combine, dot, inverse, norm, subtract, tidy, type Vec3 } from '../../crystal/vector.ts'
 import { placeInZone } from '../../crystal/zone.ts'
@@ -14,6 +18,7 @@ import { bookPointHere, type Fit, fitOf, latticeGroup, nearness, type Stated } f
 import { isRoundingOf, LARGEST_K_SHIFT, uncertainty } from '../../meaning/rounding.ts'
 import { acrossLine, acrossPlane, isOn, wholeDirection } from '../../meaning/whole-vectors.ts'
 import {
+  bookReadings,
   centredReadings,
   frameReadings,
   otherBooks,
@@ -34,6 +39,8 @@ export type Cause =
     }
   /** The book's point for other values of the parameters on which it depends. */
   | { readonly kind: 'stale'; readonly own: BookPoint }
+  /** A point that the book has for cells of another shape only, told by `condition`. */
+  | { readonly kind: 'other-shape'; readonly condition: string }
   /** A label of the book at another place; `swap` is the label that stands at its place. */
   | { readonly kind: 'mismatch'; readonly own: BookPoint; readonly here?: BookPoint; readonly swap?: string }
   /** No label of the book, at a place of the book. */
@@ -106,10 +113,15 @@ class Examination {
     return { points: new Map(points.map(item => [item.point.label, item])), whole }
   }
 
-  /** Other readings are tried where a label does not fit, and a missing centring where labels are none of the book. */
+  /** Other readings are tried where a label does not fit, other books and a missing centring where labels are none of the book. */
   private readings(): Reading[] {
     if (this.suspects.length > 0) return readingsOf(this.crystal)
-    return this.cases.filter(({ own }) => !own).length >= SEVERAL ? centredReadings(this.crystal) : []
+    const own = this.cases.filter(({ own }) => !own)
+    const isNamed = own.some(({ here, point }) => here && !isVariantOf(point.label, here))
+    return [
+      ...(isNamed ? bookReadings(this.crystal) : []),
+      ...(own.length >= SEVERAL ? centredReadings(this.crystal) : []),
+    ]
   }
 
   private caseOf(point: PlacedPoint): Case {
@@ -190,7 +202,9 @@ class Examination {
 
   /** Points without labels of the book speak for another frame when all are places of the book there. */
   private readingOfLoosePoints(): Reading | undefined {
-    const loose = this.cases.filter(({ own, here, stated }) => !own && !here && stated)
+    const loose = this.cases.filter(
+      ({ own, here, stated }) => !own && stated && (!here || isReciprocalVector(here)),
+    )
     const anyFit = this.cases.some(({ own, fit }) => own && fit && !isLabelOfGamma(own.label))
     if (loose.length < SEVERAL || anyFit) return undefined
     // On a line of the stated frame a point may well be meant: Δ half-way looks like a corner of another frame.
@@ -260,9 +274,13 @@ class Examination {
       const rounded = this.roundedTo(item, here)
       if (rounded) return rounded
       if (here.how === 'rounded') return undefined
-      return isVariantOf(point.label, here) ? undefined : { kind: 'unnamed', here }
+      // Of a point of another zone the rule about that says what it is.
+      const isElsewhere = excessOf(this.crystal, here.fraction) !== undefined
+      return isElsewhere || isVariantOf(point.label, here) ? undefined : { kind: 'unnamed', here }
     }
     if (!stated) return undefined
+    const shape = otherShape(this.crystal, point, slackOf(this.crystal, stated).fraction)
+    if (shape) return shape
     const onElement = roundedToElement(this.crystal, stated, point.fraction)
     if (onElement) return onElement
     return this.twoPiOf(item)
@@ -325,12 +343,17 @@ const hasLabel = ({ book }: Reading, label: string): boolean =>
 const isLabelOf = ({ point }: Fit, label: string): boolean =>
   point.label === label || point.equivalentTo.includes(label)
 
+/** Γ of another zone. */
+const isReciprocalVector = ({ label, fraction }: Fit): boolean =>
+  isLabelOfGamma(label) && norm(fraction) > SAME
+
 /** `K'` and `K2` are names for equivalents of K. */
 function isVariantOf(label: string, { point }: Fit): boolean {
   const base = baseOf(label)
   return [point.label, ...point.equivalentTo].some(other => baseOf(other) === base)
 }
-const baseOf = (label: string): string => label.replace(/[0-9']+$/, '')
+/** A label without its index and primes. */
+export const baseOf = (label: string): string => label.replace(/[0-9']+$/, '')
 
 /** The numbers of a point with the axes that they refer to; undefined where they cannot be read. */
 function statedOf(crystal: Crystal, { coordinates }: PointEntry): Stated | undefined {
@@ -362,16 +385,56 @@ function slackOf(crystal: Crystal, { values, axes }: Stated): Slack {
 
 /** Does a point lie where the book's point would lie for other parameters of the cell? */
 function isStale({ book }: Crystal, fraction: Vec3, own: BookPoint, slack: number): boolean {
-  if (!book || !own.parameterDependent) return false
-  const directions = own.slopes.flatMap(slope => {
-    const direction = slope.some(x => x !== 0) ? wholeDirection(slope) : undefined
+  return (
+    book !== undefined &&
+    own.parameterDependent &&
+    isInFamily(book, fraction, own.fraction, own.slopes, slack)
+  )
+}
+
+/** Is a place, or an equivalent, one of those to which the parameters can move a point? */
+function isInFamily(
+  book: BookMatch,
+  fraction: Vec3,
+  one: Vec3,
+  slopes: readonly Vec3[],
+  slack: number,
+): boolean {
+  const directions = slopes.flatMap(slope => {
+    const direction = norm(slope) > 0 ? wholeDirection(slope) : undefined
     return direction ? [direction] : []
   })
   if (directions.length === 0) return false
   const across = acrossAll(directions)
   const tolerance = Math.max(K_TOLERANCE, slack)
-  return book.holohedry.some(R => isOn(subtract(apply(R, fraction), own.fraction), across, tolerance))
+  return book.holohedry.some(R => isOn(subtract(apply(R, fraction), one), across, tolerance))
 }
+
+/** A letter that the book has for another variation of this lattice type, at a place where that has it for some cell. */
+function otherShape(
+  { book, document }: Crystal,
+  { label, fraction }: PlacedPoint,
+  slack: number,
+): Cause | undefined {
+  if (!book?.bravais || document.labels === 'none') return undefined
+  const { variations } = book.book === PLANE_LATTICES.id ? PLANE_LATTICES : BOOKS[document.labels]
+  for (const variation of variations) {
+    if (variation.bravais !== book.bravais || !Object.hasOwn(variation.points, label)) continue
+    const { parameterNames, points } = compiled(variation)
+    const { forms } = points.find(point => point.label === label)!
+    // The cell of the book is the same for all variations of a type: κ = M⁻¹ κ′.
+    const back = inverse(book.bookFromPrimitive)
+    const one = apply(back, forms.map(form => evaluateForm(form, NO_PARAMETERS)) as unknown as Vec3)
+    const slopes = parameterNames.map((_, i) =>
+      apply(back, forms.map(form => form.coefficients[i]) as unknown as Vec3),
+    )
+    if (isInFamily(book, fraction, one, slopes, slack))
+      return { kind: 'other-shape', condition: variation.condition }
+  }
+  return undefined
+}
+/** All zero. No variation has more. */
+const NO_PARAMETERS = new Float64Array(16)
 
 /** The whole vectors at right angles to some directions; none where the directions leave no room. */
 function acrossAll([first, ...others]: readonly Vec3[]): readonly Vec3[] {

@@ -1,17 +1,27 @@
 /** How the rules of points write coordinates: in messages, and into the file. */
-import { combine, inverse, type Mat3, type Vec3 } from '../../crystal/vector.ts'
+import { combine, inverse, type Mat3, norm, type Vec3 } from '../../crystal/vector.ts'
 import { insertKeys, type NewKey, replaceVector, scalarText } from '../../format/edits.ts'
 import type { Fix, LatticeDocument, PointEntry, TextEdit } from '../../format/model.ts'
 import { formatCoordinate } from '../../format/numbers.ts'
 import { displayLabel } from '../../format/path.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
-import { fractions } from '../../meaning/wording.ts'
+import { cartesian, fractions } from '../../meaning/wording.ts'
 import type { Context } from '../check.ts'
 import { type Diagnosis, numbersOf } from './diagnosis.ts'
 
 /** A place as the file would state it: `[1/2, 0, 1/2]`. */
 export const statedPlace = (crystal: Crystal, fraction: Vec3): string =>
   fractions(numbersOf(crystal, fraction), crystal.dimension)
+
+/** The same in space: `(0, 0.8678, 0.8678) Å⁻¹`, without what arithmetic leaves of a zero. */
+export function cartesianPlace(crystal: Crystal, fraction: Vec3): string {
+  const k = crystal.cartesianOf(fraction)
+  const size = norm(k)
+  return cartesian(
+    k.map(x => (Math.abs(x) < SAME * size ? 0 : x)),
+    crystal.unit,
+  )
+}
 
 /** The coordinates as they stand in the file, in one line. */
 export const writtenPlace = (text: string, { coordinates }: PointEntry): string =>

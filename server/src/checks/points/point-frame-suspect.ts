@@ -89,9 +89,11 @@ function ofBlock(context: Context, diagnosis: Diagnosis, reading: Framed): Findi
   }
 }
 
-/** The rules of the lattice and of atoms speak of a cell that is stated as primitive and is not. */
-const isToldByLattice = ({ document, crystal }: Context): boolean =>
-  document.lattice?.bravais !== undefined || (crystal.symmetry?.translationsFold ?? 1) > 1
+/** Vectors that contradict the type stated beside them have a finding of their own, with the same remedy. */
+function isToldByLattice({ document, crystal }: Context): boolean {
+  const stated = document.lattice?.bravais?.value
+  return stated !== undefined && stated !== crystal.type?.bravais
+}
 
 function stateCentring(context: Context, { centring, frame }: Extract<Framed, { kind: 'centring' }>): Fix[] {
   const { text, document } = context

@@ -1,3 +1,4 @@
+import type { BookPoint } from '../../books/match.ts'
 import type { Vec3 } from '../../crystal/vector.ts'
 import { insertKeys, scalarText } from '../../format/edits.ts'
 import type { Fix } from '../../format/model.ts'
@@ -15,7 +16,7 @@ import {
   numbersOf,
 } from './diagnosis.ts'
 import { convertNumbers, listLabels, offer, rewriteNumbers, statedPlace, writtenPlace } from './numbers.ts'
-import { type Reading, readingsOf } from './readings.ts'
+import { type TurnedReading, turnedReadings } from './readings.ts'
 import { fitOf } from '../../meaning/placing.ts'
 
 interface Facts {
@@ -47,11 +48,7 @@ export const pointLabelMismatch: Check<Facts> = {
   },
 }
 
-function ofBlock(
-  context: Context,
-  diagnosis: Diagnosis,
-  { words, axes }: Extract<Reading, { kind: 'turned' }>,
-): Finding<Facts> {
+function ofBlock(context: Context, diagnosis: Diagnosis, { words, axes }: TurnedReading): Finding<Facts> {
   const moved = [...diagnosis.points.values()].filter(({ cause, fit }) => cause?.kind === 'reading' && !fit)
   const labels = moved.map(({ point }) => point.label)
   return {
@@ -111,7 +108,7 @@ function ofPoint(
   return {
     at: entry.coordinates?.at ?? entry.at,
     subject: `point:${label}`,
-    message: `${place}; ${name} is at ${statedPlace(crystal, right.fraction)}${away}.${hint(crystal, item, swap)}`,
+    message: `${place}; ${name} is at ${statedPlace(crystal, right.fraction)}${away}.${hint(crystal, item, here, swap)}`,
     facts: { label, here: here?.label, expected: right.fraction },
     fixes: fixesFor(context, diagnosis, item, right.fraction, here?.label, swap),
   }
@@ -132,18 +129,20 @@ function rightPlace(
   return isSlip ? near : { fraction: own, distance: near?.distance }
 }
 
-function hint(crystal: Crystal, { point, stated }: DiagnosedPoint, swap: string | undefined): string {
+function hint(
+  crystal: Crystal,
+  { point, stated }: DiagnosedPoint,
+  here: BookPoint | undefined,
+  swap: string | undefined,
+): string {
   if (swap) return ` The file has ${listLabels([point.label, swap])} exchanged.`
   const others = booksWith(crystal, point.label, point.fraction)
   if (others.length > 0) return ` It is ${displayLabel(point.label)} in \`${others.join('`, `')}\`.`
-  const turned =
-    stated &&
-    readingsOf(crystal).find(
-      reading =>
-        reading.kind === 'turned' &&
-        fitOf(crystal, reading.book, { ...stated, axes: reading.axes }, point.label),
-    )
-  return turned?.kind === 'turned' ? ` It would be there with ${turned.words}.` : ''
+  if (here || !stated) return ''
+  const turned = turnedReadings(crystal).find(({ axes, book }) =>
+    fitOf(crystal, book, { ...stated, axes }, point.label),
+  )
+  return turned ? ` It would be there with ${turned.words}.` : ''
 }
 
 function fixesFor(

@@ -35,7 +35,10 @@ export const pointOutsideZone: Check<Facts> = {
       const number = zoneNumber(zone, crystal.cartesianOf(fraction))
       const inside = statedPlace(crystal, folded.fraction)
       const name = displayLabel(label)
-      const what = here ? `${name} is ${displayLabel(here.label)} of another zone: it lies` : `${name} lies`
+      const isNamed = here && here.label !== label
+      const what = isNamed
+        ? `${name} is ${displayLabel(here.label)} of another zone: it lies`
+        : `${name} lies`
       yield {
         at: entry.coordinates?.at ?? entry.at,
         ...(here && { severity: 'info' as const }),

@@ -2,7 +2,7 @@ import { K_TOLERANCE, areEquivalent } from '../../crystal/kspace.ts'
 import { apply, type Mat3, subtract, type Vec3 } from '../../crystal/vector.ts'
 import { displayLabel } from '../../format/path.ts'
 import type { Check } from '../check.ts'
-import { type DiagnosedPoint, diagnose, isInDoubt } from './diagnosis.ts'
+import { baseOf, type DiagnosedPoint, diagnose, isInDoubt } from './diagnosis.ts'
 
 interface Facts {
   readonly label: string
@@ -33,8 +33,8 @@ export const pointRepeated: Check<Facts> = {
         continue
       }
       const same = isNothing(subtract(item.fraction, first.fraction))
-      if (!same && baseOf(item) === baseOf(first)) continue
       const { label } = item.point
+      if (!same && baseOf(label) === baseOf(first.point.label)) continue
       yield {
         at: item.entry.key,
         message: same
@@ -48,7 +48,6 @@ export const pointRepeated: Check<Facts> = {
 }
 
 const isNothing = (d: Vec3): boolean => d.every(x => Math.abs(x - Math.round(x)) <= K_TOLERANCE)
-const baseOf = ({ point }: DiagnosedPoint): string => point.label.replace(/[0-9']+$/, '')
 
 const howJoined = (from: Vec3, to: Vec3, group: readonly Mat3[]): string =>
   areEquivalent(from, to, group)?.rotation.every((row, i) => row.every((x, j) => x === (i === j ? -1 : 0)))
@@ -61,13 +60,14 @@ const MIDDLE = 0.37
 
 /** One text for a k-point and all its equivalents, so that many points need no comparison in pairs. */
 function nameOfStar(fraction: Vec3, group: readonly Mat3[]): string {
-  let least = ''
+  let least: number[] | undefined
   for (const R of group) {
-    const name = apply(R, fraction)
-      .map(x => modulo(Math.floor(x * PARTS + MIDDLE)))
-      .join(' ')
-    if (least === '' || name < least) least = name
+    const image = apply(R, fraction).map(x => modulo(Math.floor(x * PARTS + MIDDLE)))
+    if (!least || isBefore(image, least)) least = image
   }
-  return least
+  return String(least)
 }
+
 const modulo = (n: number): number => ((n % PARTS) + PARTS) % PARTS
+const isBefore = ([a, b, c]: number[], [p, q, r]: number[]): boolean =>
+  a < p || (a === p && (b < q || (b === q && c < r)))

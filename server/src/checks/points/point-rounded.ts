@@ -33,12 +33,17 @@ export const pointRounded: Check<Facts> = {
       const off = distance(point.cartesian, exact)
       const place = describePlace(crystal, exact)
       const isNamed = place === displayLabel(label)
-      const written = cause.components.map(i => entry.coordinates!.items[i]!.text.trim()).join(', ')
-      const meant = cause.components.map(i => formatCoordinate(cause.numbers[i])).join(', ')
+      const roundings = new Map(
+        cause.components.map(i => [
+          entry.coordinates!.items[i]!.text.trim(),
+          formatCoordinate(cause.numbers[i]),
+        ]),
+      )
+      const said = [...roundings].map(([written, meant]) => `${written} is a rounding of ${meant}`).join(', ')
       yield {
         at: entry.coordinates!.at,
         subject: `point:${label}`,
-        message: `${written} ${cause.components.length > 1 ? 'are roundings' : 'is a rounding'} of ${meant}: ${displayLabel(label)} misses ${isNamed ? 'its place' : 'a place of higher symmetry'}${place && !isNamed ? ` (${place})` : ''} by ${inverseLength(off, crystal.unit, 5)}.`,
+        message: `${said}: ${displayLabel(label)} misses ${isNamed ? 'its place' : 'a place of higher symmetry'}${place && !isNamed ? ` (${place})` : ''} by ${inverseLength(off, crystal.unit, 5)}.`,
         facts: { label, distance: off, exact: cause.fraction },
         hides: [{ rule: 'point-outside-zone', subject: `point:${label}` }],
         fixes: [

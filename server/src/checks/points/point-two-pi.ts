@@ -29,10 +29,14 @@ export const pointTwoPi: Check<Facts> = {
       const times = factor > 1 ? 'times 2π' : 'over 2π'
       const unit = document.frames.points === 'cartesian' ? document.unit : undefined
       const meant: Vec3 = numbersOf(crystal, cause.fit.fraction)
-      const place = displayLabel(cause.fit.label)
+      const name = displayLabel(label)
+      const isOwn = cause.fit.label === label || cause.fit.point.equivalentTo.includes(label)
+      const what = isOwn
+        ? `The numbers of ${name} fit its label only ${times}`
+        : `The numbers of ${name} are no point of the label book; ${times} they are ${displayLabel(cause.fit.label)}`
       yield {
         at: entry.coordinates!.at,
-        message: `${displayLabel(label)} is no point of the label book, but its numbers ${times} are ${place === displayLabel(label) ? 'it' : place}: ${cartesian(meant, unit)}.`,
+        message: `${what}: ${cartesian(meant, unit)}.`,
         facts: { label, meant: cause.fit.label, factor },
         fixes: offer(`Replace by the numbers ${times}`, rewriteNumbers(text, entry, meant)),
       }

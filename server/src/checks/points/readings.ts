@@ -3,7 +3,7 @@ import { BOOK_NAMES, type BookName } from '../../books/index.ts'
 import type { BookMatch } from '../../books/match.ts'
 import type { Centring } from '../../crystal/bravais.ts'
 import { isLattice, type Lattice, latticeFromVectors } from '../../crystal/lattice.ts'
-import { IDENTITY, type Mat3, mapMatrix, multiply, transpose } from '../../crystal/vector.ts'
+import { angle, IDENTITY, type Mat3, mapMatrix, multiply, transpose } from '../../crystal/vector.ts'
 import type { PointFrame } from '../../format/model.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 
@@ -22,30 +22,44 @@ export type Reading = Basis &
     | { readonly kind: 'two-pi'; readonly factor: number }
     | { readonly kind: 'frame'; readonly frame: PointFrame }
     | { readonly kind: 'centring'; readonly centring: Centring; readonly frame: 'primitive' | 'conventional' }
-    | { readonly kind: 'turned'; readonly words: string; readonly turn: Mat3 }
+    | { readonly kind: 'turned'; readonly words: string }
   )
 
-const FRAMES: readonly PointFrame[] = ['primitive', 'conventional', 'cartesian', '2pi/a']
+export type TurnedReading = Extract<Reading, { kind: 'turned' }>
+
+/** Fractions are mostly taken for other fractions, Cartesian numbers for other Cartesian numbers. */
+const OTHER_FRAMES: Record<PointFrame, readonly PointFrame[]> = {
+  primitive: ['conventional', 'cartesian', '2pi/a'],
+  conventional: ['primitive', 'cartesian', '2pi/a'],
+  cartesian: ['2pi/a', 'primitive', 'conventional'],
+  '2pi/a': ['cartesian', 'primitive', 'conventional'],
+}
 
 /**
  * The readings of a document other than the stated one, the likelier first. Those that come to the same are left out, and
  * other books where the file states one.
  */
 export function readingsOf(crystal: Crystal): Reading[] {
-  const { lattice, book, pointAxes, document } = crystal
-  if (!lattice || !book || !pointAxes) return []
-  const here = { axes: pointAxes, book, lattice }
-  const books = document.labelsEntry ? [] : otherBooks(crystal)
   return [
-    ...books.map(({ name, book }) => ({ ...here, kind: 'other-book', name, book }) as const),
+    ...bookReadings(crystal),
     ...twoPiReadings(crystal),
     ...frameReadings(crystal),
     ...centredReadings(crystal),
-    ...TURNS.filter(({ turn }) => keepsDimension(turn, lattice.dimension)).map(
-      ({ words, turn }) =>
-        ({ ...here, kind: 'turned', words, turn, axes: multiply(transpose(turn), pointAxes) }) as const,
-    ),
+    ...turnedReadings(crystal),
   ]
+}
+
+/** Other books, where the file does not state one. */
+export function bookReadings(crystal: Crystal): Reading[] {
+  const { lattice, pointAxes, document } = crystal
+  if (!lattice || !pointAxes || document.labelsEntry) return []
+  return otherBooks(crystal).map(({ name, book }) => ({
+    kind: 'other-book',
+    name,
+    book,
+    axes: pointAxes,
+    lattice,
+  }))
 }
 
 /** The other label books of a three-dimensional lattice. */
@@ -71,10 +85,10 @@ export function twoPiReadings({ lattice, book, pointAxes, document }: Crystal): 
 }
 
 export function frameReadings(crystal: Crystal): Reading[] {
-  const { lattice, book, pointAxes } = crystal
+  const { lattice, book, pointAxes, document } = crystal
   if (!lattice || !book || !pointAxes) return []
   const found: Reading[] = []
-  for (const frame of FRAMES) {
+  for (const frame of OTHER_FRAMES[document.frames.points]) {
     const axes = crystal.axesOfFrame(frame)
     if (axes && [pointAxes, ...found.map(other => other.axes)].every(other => !areSame(axes, other)))
       found.push({ kind: 'frame', frame, axes, book, lattice })
@@ -114,6 +128,25 @@ export function centredReadings(crystal: Crystal): Reading[] {
   })
 }
 const CENTRED: readonly Centring[] = ['F', 'I', 'C', 'A', 'B', 'R']
+
+/** Slips of the hand: the same numbers, but for a sign, an order or a factor. */
+export function turnedReadings({ lattice, book, pointAxes }: Crystal): TurnedReading[] {
+  if (!lattice || !book || !pointAxes) return []
+  const between = Math.round(angle(lattice.primitive[0], lattice.primitive[1]))
+  return TURNS.filter(({ turn }) => keepsDimension(turn, lattice.dimension)).map(({ words, turn }) => ({
+    kind: 'turned',
+    // Hexagonal axes enclose 60° in some books and programs, 120° in others.
+    words:
+      turn[0][0] * turn[1][1] < 0 && OTHER_ANGLE[between]
+        ? `${words}, as for a and b at ${OTHER_ANGLE[between]}`
+        : words,
+    axes: multiply(transpose(turn), pointAxes),
+    book,
+    lattice,
+  }))
+}
+
+const OTHER_ANGLE: Record<number, string> = { 60: '120°', 120: '60°' }
 
 interface Turn {
   /** After "with". */
