@@ -57,6 +57,12 @@ const builds = [
     loader: { '.wasm': 'binary' },
   },
   { ...browser, entryPoints: { 'client-browser': 'client/src/extension-browser.ts' }, external: ['vscode'] },
+  {
+    ...browser,
+    entryPoints: { view: 'client/view/main.ts', 'view-style': 'client/view/view.css' },
+    format: 'iife',
+    minify: true,
+  },
 ]
 
 rmSync(dist, { recursive: true, force: true })

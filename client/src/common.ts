@@ -13,6 +13,7 @@ import { CHECKED, type CheckedParams, type CheckedResult } from '../../server/sr
 import { registerCommands } from './commands.ts'
 import { Server } from './server.ts'
 import { StatusItem } from './status.ts'
+import { registerZoneView } from './zone-view.ts'
 
 /**
  * The pattern beside the language of its own is for people whose `files.associations` give every `*.yaml` to YAML:
@@ -42,6 +43,7 @@ export function activate(context: ExtensionContext, createClient: CreateClient):
   running = server
   context.subscriptions.push(log, status, startWithFirstFile(server))
   registerCommands(context, { server, log, selector: SELECTOR })
+  registerZoneView(context, { server, log, selector: SELECTOR })
   return {
     async checked(uri) {
       const document = workspace.textDocuments.find(each => each.uri.toString() === uri.toString())

@@ -1,4 +1,4 @@
-import { type DocumentSelector, type LogOutputChannel, Uri, workspace } from 'vscode'
+import { type DocumentSelector, EventEmitter, type LogOutputChannel, Uri, workspace } from 'vscode'
 import {
   type BaseLanguageClient,
   CloseAction,
@@ -31,6 +31,9 @@ interface Surroundings {
 export class Server {
   #client: Promise<BaseLanguageClient | undefined> | undefined
   #disposed = false
+  readonly #checked = new EventEmitter<StatusParams>()
+  /** After each check of a file. */
+  readonly onChecked = this.#checked.event
 
   constructor(
     private readonly create: CreateClient,
@@ -68,7 +71,10 @@ export class Server {
     status.starting()
     try {
       const client = await this.create(this.#options())
-      client.onNotification(STATUS, (params: StatusParams) => status.checked(params))
+      client.onNotification(STATUS, (params: StatusParams) => {
+        status.checked(params)
+        this.#checked.fire(params)
+      })
       client.onDidChangeState(({ newState }) => {
         if (newState === State.Running) status.running()
         else if (newState === State.Starting) status.starting()

@@ -105,6 +105,8 @@ export interface Scene {
   }
   /** b₁ b₂ b₃, as many as there are dimensions. */
   readonly reciprocal: readonly Triple[]
+  /** a* b* c*, the reciprocal vectors of the conventional cell. */
+  readonly axes: readonly Triple[]
   /** Where the direct vectors stand, in the order of b₁ b₂ b₃; empty where the file gives parameters. */
   readonly vectorRanges: readonly (TextRange | null)[]
   readonly points: readonly ScenePoint[]

@@ -12,13 +12,25 @@ const MAY_USE: Record<string, readonly string[]> = {
   'server/src/format': ['server/src/crystal'],
   'server/src/meaning': ['server/src/crystal', 'server/src/books', 'server/src/format'],
   'server/src/checks': ['server/src/crystal', 'server/src/books', 'server/src/format', 'server/src/meaning'],
-  'server/src/exchange': ['server/src/crystal', 'server/src/books', 'server/src/format', 'server/src/meaning', 'server/src/analysis.ts', 'server/src/protocol.ts'],
-  'server/src/language': [
-    'server/src/crystal', 'server/src/books', 'server/src/format', 'server/src/meaning', 'server/src/exchange',
-    'server/src/analysis.ts', 'server/src/protocol.ts',
+  'server/src/exchange': [
+    'server/src/crystal',
+    'server/src/books',
+    'server/src/format',
+    'server/src/meaning',
+    'server/src/analysis.ts',
+    'server/src/protocol.ts',
   ],
-  'client/src': ['server/src/protocol.ts'],
-  'client/view': ['server/src/protocol.ts'],
+  'server/src/language': [
+    'server/src/crystal',
+    'server/src/books',
+    'server/src/format',
+    'server/src/meaning',
+    'server/src/exchange',
+    'server/src/analysis.ts',
+    'server/src/protocol.ts',
+  ],
+  'client/src': ['server/src/protocol.ts', 'client/messages.ts'],
+  'client/view': ['server/src/protocol.ts', 'client/messages.ts'],
 }
 /** Rooms that run in a browser too: no module of Node, no library but those named. */
 const LIBRARIES: Record<string, readonly string[]> = {
@@ -36,13 +48,18 @@ const files = (folder: string): string[] =>
     return statSync(join(ROOT, path)).isDirectory() ? files(path) : path.endsWith('.ts') ? [path] : []
   })
 
-const roomOf = (path: string) => Object.keys(MAY_USE).find(room => path === room || path.startsWith(`${room}/`)) ?? path
+const roomOf = (path: string) =>
+  Object.keys(MAY_USE).find(room => path === room || path.startsWith(`${room}/`)) ?? path
 
-const imports = ['server/src', 'client'].flatMap(files).flatMap(file =>
-  [...readFileSync(join(ROOT, file), 'utf8').matchAll(/^(?:import|export)\b[^'"]*?\bfrom '([^']+)'|^import '([^']+)'/gms)].map(
-    ([, from, bare]) => ({ file, target: from ?? bare }),
-  ),
-)
+const imports = ['server/src', 'client']
+  .flatMap(files)
+  .flatMap(file =>
+    [
+      ...readFileSync(join(ROOT, file), 'utf8').matchAll(
+        /^(?:import|export)\b[^'"]*?\bfrom '([^']+)'|^import '([^']+)'/gms,
+      ),
+    ].map(([, from, bare]) => ({ file, target: from ?? bare })),
+  )
 
 describe('imports', () => {
   test('are found', () => expect(imports.length).toBeGreaterThan(50))

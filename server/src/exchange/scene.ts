@@ -43,6 +43,7 @@ export function sceneOf(snapshot: Snapshot, ordinal = 0): Scene | undefined {
     unit: INVERSE_SYMBOL[crystal.unit],
     zone: { ...solid(zone), solid: zone.solid, inradius: zone.inradius, circumradius: zone.circumradius },
     reciprocal: lattice.reciprocal.slice(0, lattice.dimension),
+    axes: lattice.conventionalReciprocal.slice(0, lattice.dimension),
     vectorRanges: (document.lattice?.vectors?.rows ?? []).map(row => (row ? marks.range(row.at) : null)),
     points,
     segments,
