@@ -5,7 +5,7 @@ import type { AtomEntry, Fix, NumberValue, Sourced, Span, VectorValue } from './
 import { nearest } from './nearest.ts'
 import type { ListItem, MappingEntry, MappingNode, Node, TextNode } from './nodes.ts'
 import { scalarText } from './quote.ts'
-import { kindOf, type Reader, shortened, visible } from './reader.ts'
+import { kindOf, type Reader, replacement, shortened, visible } from './reader.ts'
 import type { AtomRow } from './rows.ts'
 
 const PLACE = keyRow('atoms.*') as KeyRow
@@ -166,9 +166,7 @@ function unknownElement(
   }
   const near = BY_NAME.get(symbol.toLowerCase()) ?? nearest(symbol, SYMBOLS)
   const hint = near ? `; did you mean \`${near}\` (${elementOf(near)!.name})?` : '.'
-  const fixes: Fix[] = near
-    ? [{ title: `Replace by \`${near}\``, safe: false, edits: [{ at: key.at, text: near }] }]
-    : []
+  const fixes = near ? [replacement(key.at, scalarText(near))] : []
   reader.report(
     'element-unknown',
     key,

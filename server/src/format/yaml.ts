@@ -95,7 +95,7 @@ function tooLarge(size: number, most: number, besides: string): Problem {
   )
 }
 
-// biome-ignore lint/suspicious/noControlCharactersInRegex: YAML forbids them, and the library's lexer uses some as marks.
+/** YAML forbids them, and the library's lexer uses some as marks. */
 const CONTROLS = /[\0-\x08\x0b\x0c\x0e-\x1f\x7f]/g
 
 /** Of the same length, and without the characters by which the library's lexer talks to its parser. */
