@@ -19,7 +19,7 @@ export const pathMisses: Check<Facts> = {
   id: 'path-misses',
   severity: 'info',
   summary: 'The path visits most points of the book’s path, but not all.',
-  why: 'A gap or an extremum may lie at a point that is left out. A path through less than two thirds of the points is taken as short on purpose.',
+  why: 'A gap or an extremum may lie at a point that is left out. A path through two thirds of the points or less is taken as short on purpose.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – M – Γ\n',
   right: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – M – Γ – R\n',
   *run(context) {
@@ -30,7 +30,7 @@ export const pathMisses: Check<Facts> = {
       return
     const stars = starsOf(book, kGroup)
     const missed = stars.filter(star => !isVisited(star, segmentsOf(crystal), kGroup))
-    if (missed.length === 0 || stars.length - missed.length < MOST * stars.length) return
+    if (missed.length === 0 || stars.length - missed.length <= MOST * stars.length) return
     const labels = missed.map(({ label }) => label)
     yield {
       at: path.key,
@@ -41,7 +41,7 @@ export const pathMisses: Check<Facts> = {
   },
 }
 
-/** A path through less of the book's points is short on purpose: Γ–X and Γ–L of a cubic crystal, one valley. */
+/** A path through no more of the book's points is short on purpose: Γ–X and Γ–L of a cubic crystal, one valley. */
 const MOST = 2 / 3
 
 /** Something that has no place, or one in doubt, may be what is missing. */

@@ -207,8 +207,9 @@ class Examination {
     )
     const anyFit = this.cases.some(({ own, fit }) => own && fit && !isLabelOfGamma(own.label))
     if (loose.length < SEVERAL || anyFit) return undefined
-    // On a line of the stated frame a point may well be meant: Δ half-way looks like a corner of another frame.
-    if (!loose.some(item => this.freedom(item) > 1)) return undefined
+    // On a line of the stated frame a point may well be meant: Δ half-way looks like a corner of another frame. A place in
+    // general, or Γ of another zone, is hardly meant.
+    if (!loose.some(item => item.here || this.freedom(item) > 1)) return undefined
     return frameReadings(this.crystal).find(reading =>
       loose.every(item => {
         const fit = this.fitIn(reading, item)
