@@ -164,6 +164,8 @@ function isScene(x: unknown): x is Scene {
     isRecord(x.neighbours) &&
     isList(x.neighbours.first, isTriple) &&
     isList(x.neighbours.second, isTriple) &&
+    isList(x.home, isNumber) &&
+    x.home.length === 2 &&
     isList(x.words, isText)
   )
 }

@@ -108,8 +108,9 @@ class ZoneView {
   #ready = false
   #asking = false
   #askAgain = false
-  /** What the page shows. */
-  #shown: { readonly version: number; readonly pending: boolean } | undefined
+  /** What was last asked for and found; said again to a page that has just come up. */
+  #picture: ToView[] = []
+  #shown: { readonly version: number; readonly pending: boolean; readonly document: number } | undefined
   #documents: readonly TextRange[] = []
   /** Ordinal of the crystal in its file, from 1. */
   #document = 1
@@ -146,6 +147,8 @@ class ZoneView {
       for (const subscription of this.#subscriptions) subscription.dispose()
     })
     panel.webview.html = viewPage(panel.webview, extensionUri)
+    // The picture is made while the page loads.
+    void this.#refresh()
   }
 
   get isActive(): boolean {
@@ -164,12 +167,19 @@ class ZoneView {
     if (this.#ready && this.panel.visible) void this.panel.webview.postMessage(message)
   }
 
+  #paint(part: ToView): void {
+    this.#picture.push(part)
+    this.#say(part)
+  }
+
   async #receive(data: unknown): Promise<void> {
     const message = readFromView(data)
     try {
       switch (message?.kind) {
         case 'ready':
           this.#ready = true
+          for (const part of this.#picture) this.#say(part)
+          this.#followCursor()
           return await this.#refresh()
         case 'reveal':
           return await this.#reveal(message.version, message.range)
@@ -197,7 +207,7 @@ class ZoneView {
 
   /** One question at a time: while one is out, later changes wait and ask once. */
   async #refresh(): Promise<void> {
-    if (!this.#ready || !this.panel.visible) return
+    if (!this.panel.visible) return
     if (this.#asking) {
       this.#askAgain = true
       return
@@ -218,6 +228,8 @@ class ZoneView {
   async #ask(): Promise<void> {
     const text = await this.#text()
     const { version } = text
+    if (this.#shown?.version === version && !this.#shown.pending && this.#shown.document === this.#document)
+      return
     const params: DocumentParams = { uri: text.uri.toString(), version, document: this.#document }
     const result = await this.tools.server.request<SceneResult | null>(SCENE, params)
     if (!result || result.version !== text.version) return
@@ -227,8 +239,9 @@ class ZoneView {
       this.#askAgain = true
       return
     }
-    this.#shown = { version: result.version, pending: result.pending }
-    this.#say({
+    this.#shown = { version: result.version, pending: result.pending, document: this.#document }
+    this.#picture = []
+    this.#paint({
       kind: 'scene',
       uri: this.uri.toString(),
       version: result.version,
@@ -238,7 +251,7 @@ class ZoneView {
     this.#followCursor()
     if (!result.scene) return
     const answer = await this.tools.server.request<BandsResult | null>(BANDS, params)
-    if (answer?.version === text.version) this.#say({ kind: 'bands', ...answer })
+    if (answer?.version === text.version) this.#paint({ kind: 'bands', ...answer })
   }
 
   /** Tells where the text cursor is, and turns to another crystal of the file with it. */

@@ -11,9 +11,9 @@ export interface Stand {
   perspective: boolean
 }
 
-export const START: Readonly<Stand> = { theta: 72, phi: 24, zoom: 1, pan: [0, 0], perspective: false }
-/** From above, x to the right. */
-export const FROM_ABOVE = { theta: 0, phi: -90 }
+const START: Readonly<Stand> = { theta: 72, phi: 24, zoom: 1, pan: [0, 0], perspective: false }
+/** Seen from above, x is to the right. */
+const FROM_ABOVE = -90
 
 /** The eye's distance in perspective, in parts of the scene's radius. */
 const DISTANCE = 5
@@ -112,6 +112,10 @@ export class Camera {
     }
   }
 
+  stands(theta: number, phi: number): void {
+    Object.assign(this.stand, { theta, phi })
+  }
+
   turn(dx: number, dy: number): void {
     const { stand } = this
     stand.phi = (stand.phi - dx) % 360
@@ -124,7 +128,7 @@ export class Camera {
     const theta = (Math.acos(Math.max(-1, Math.min(1, direction[2] / length))) * 180) / Math.PI
     this.stand.theta = theta
     const flat = Math.hypot(direction[0], direction[1]) / length
-    this.stand.phi = flat > 1e-9 ? (Math.atan2(direction[1], direction[0]) * 180) / Math.PI : FROM_ABOVE.phi
+    this.stand.phi = flat > 1e-9 ? (Math.atan2(direction[1], direction[0]) * 180) / Math.PI : FROM_ABOVE
   }
 
   zoomBy(factor: number, at?: readonly [number, number]): void {

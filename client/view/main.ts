@@ -1,7 +1,7 @@
 /** The zone view inside its webview: takes finished geometry, draws it, and says what a person does with it. */
 import { type FromView, LAST_SHELL_ZONE, readToView, type ToView } from '../messages.ts'
 import type { Bands, Scene, ScenePoint, SceneSolid, TextRange, Triple } from '../../server/src/protocol.ts'
-import { along, Camera, dot, FROM_ABOVE, START, type Stand } from './camera.ts'
+import { along, Camera, dot, type Stand } from './camera.ts'
 import { element, Switches } from './controls.ts'
 import { extentOf, Ink, type Marks, pieceStarts, triad } from './ink.ts'
 import { distanceTo, LabelLayout, nearestOn, type Wanted } from './labels.ts'
@@ -26,6 +26,8 @@ const vscode = acquireVsCodeApi()
 const kept = (vscode.getState() ?? {}) as Kept
 /** A pointer this near to the path is on it, in px. */
 const NEAR = 8
+/** A stage narrower than this has no room for facts beside a point, in px. */
+const NARROW = 520
 const DEGREES_PER_PX = 0.45
 const TURN_BY_KEY = 6
 
@@ -106,6 +108,7 @@ function receive(message: ToView): void {
       zoneSolid = message.solid ? { n: message.n, solid: message.solid } : undefined
       if (!message.solid)
         hint.textContent = `The ${message.n}th zone of this lattice has too many pieces to be drawn.`
+      fitCamera()
       fillSolids()
       break
     case 'save':
@@ -120,10 +123,9 @@ function show(next: Scene): void {
   const dimensionChanged = scene && scene.dimension !== next.dimension
   scene = next
   ink = new Ink(next)
-  if (next.dimension < 3) Object.assign(camera.stand, FROM_ABOVE)
-  else if (dimensionChanged || (isFirst && !kept.stand))
-    Object.assign(camera.stand, { theta: START.theta, phi: START.phi })
-  camera.fit(extentOf(next))
+  if (next.dimension < 3) camera.stands(...next.home)
+  else if (dimensionChanged || (isFirst && !kept.stand)) camera.stands(...next.home)
+  fitCamera()
   zoneSolid = undefined
   if (zoneAsked() !== undefined) say({ kind: 'solid', n: zoneAsked()! })
   waiting = waiting.filter(label => next.points.some(point => point.label === label))
@@ -299,14 +301,14 @@ function fillNames(): void {
       dot: dotButton,
       k: point.k,
       point,
-      rank: point.named ? 2 : 1,
+      rank: point.named ? (point.label === 'Γ' ? 3 : 2) : 1,
       width: 0,
       height: 0,
     }
   })
   const vectors = scene.reciprocal.map((k, i): Name => {
     const label = make({ base: 'b', sub: String(i + 1) }, 'vector')
-    return { key: `vector ${i}`, element: label, k, rank: 1.5, width: 0, height: 0 }
+    return { key: `vector ${i}`, element: label, k, rank: 2.5, width: 0, height: 0 }
   })
   const orders = pieceStarts(scene.segments).map(({ label, piece }): Name => {
     const mark = make({ base: String(piece), sub: '' }, 'order')
@@ -478,11 +480,14 @@ function hover(label: string | undefined): void {
     }
     card.append(head, list)
     const [x, y] = camera.project(point.k)
+    const { offsetWidth: width, offsetHeight: height } = card
+    const isNarrow = camera.width < NARROW
     const isLeft = x < camera.width / 2
-    card.style.left = isLeft
-      ? `${Math.min(x + 18, Math.max(4, camera.width - card.offsetWidth - 4))}px`
-      : `${Math.max(4, x - 18 - card.offsetWidth)}px`
-    card.style.top = `${Math.max(4, Math.min(y + 14, camera.height - card.offsetHeight - 4))}px`
+    const left = isNarrow ? 4 : isLeft ? Math.min(x + 18, camera.width - width - 4) : x - 18 - width
+    card.style.left = `${Math.max(4, left)}px`
+    // Where there is no room beside the point, the facts stand at the far end.
+    const top = isNarrow ? (y < camera.height / 2 ? camera.height : 0) : y + 14
+    card.style.top = `${Math.max(4, Math.min(top, camera.height - height - 4))}px`
   }
   redraw()
 }
@@ -552,6 +557,9 @@ function changed(name: string, value: string): void {
       const n = zoneAsked()
       zoneSolid = undefined
       if (n !== undefined) say({ kind: 'solid', n })
+      camera.stand.pan = [0, 0]
+      camera.stand.zoom = 1
+      fitCamera()
       break
     }
     default:
@@ -567,13 +575,27 @@ function look(value: string): void {
   camera.stand.pan = [0, 0]
   camera.stand.zoom = 1
   turnTo(value)
-  camera.fit(extentOf(scene))
+  fitCamera()
+}
+
+/** All that is asked for is in sight; of a second shell the zones' middles are. */
+function fitCamera(): void {
+  if (!scene) return
+  const { around } = switches.values
+  const { first, second } = scene.neighbours
+  const more =
+    around === 'lattice' || around === 'shell-2'
+      ? [...first, ...second]
+      : around === 'shell-1'
+        ? first
+        : (zoneSolid?.solid.vertices ?? [])
+  camera.fit([...extentOf(scene), ...more])
 }
 
 function turnTo(value: string): void {
   if (!scene || scene.dimension < 3) return
   const axis = { 'a*': 0, 'b*': 1, 'c*': 2 }[value]
-  if (value === 'start') Object.assign(camera.stand, { theta: START.theta, phi: START.phi })
+  if (value === 'start') camera.stands(...scene.home)
   else if (value === 'x') camera.lookAlong([1, 0, 0])
   else if (value === 'z') camera.lookAlong([0, 0, 1])
   else if (value === 'facet' && ink) {

@@ -210,7 +210,8 @@ export class Strip {
       energy: (1 - t) ** 2 * e0 + 2 * t * (1 - t) * e1 + t ** 2 * e2,
       states,
     }))
-    const place = `${segment.from.label} – ${segment.to.label}, ${(t * segment.length).toFixed(3)} ${unit} from ${segment.from.label}`
+    const [from, to] = [printed(segment.from.label), printed(segment.to.label)]
+    const place = `${from} – ${to}, ${(t * segment.length).toFixed(3)} ${unit} from ${from}`
     const y = this.#pointerY
     const nearest =
       y === undefined
@@ -227,6 +228,10 @@ export class Strip {
     return `${nearest.energy.toFixed(2)} eV, ${states} ${states === 1 ? 'state' : 'states'} · ${place}`
   }
 }
+
+/** With a true subscript, in a plain text. */
+const printed = (label: string): string =>
+  label.replace(/\d+(?='*$)/, digits => [...digits].map(digit => '₀₁₂₃₄₅₆₇₈₉'[Number(digit)]).join(''))
 
 /** Energies nearer than this part of the strip's height are one to the eye. */
 const SAME = 0.002

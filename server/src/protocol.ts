@@ -115,6 +115,8 @@ export interface Scene {
   readonly meshes: readonly SceneMesh[]
   /** Reciprocal-lattice vectors whose zones touch the first one (shell 1), and those that touch these (shell 2). */
   readonly neighbours: { readonly first: readonly Triple[]; readonly second: readonly Triple[] }
+  /** A good place to look from, on the side of the path: degrees from z, and about z from x. */
+  readonly home: readonly [theta: number, phi: number]
   /** The zone, its points and its path in words. */
   readonly words: readonly string[]
 }

@@ -14,7 +14,11 @@ export const draw: Verb = {
     'The view is the direction in which the eye stands: θ from the z axis and φ about it from x, in degrees. A plane lattice is drawn from above.',
   ],
   options: [
-    { name: 'view', value: '"θ,φ"', help: 'Where the eye stands, e.g. "72,24" (the default).' },
+    {
+      name: 'view',
+      value: '"θ,φ"',
+      help: 'Where the eye stands, e.g. "70,30"; where it is not said, on the side of the path.',
+    },
     DOCUMENT,
     OUTPUT,
     OVERWRITE,

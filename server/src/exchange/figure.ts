@@ -5,7 +5,7 @@
 import type { Scene, SceneName, SceneSegment, Triple } from '../protocol.ts'
 
 export interface FigureOptions {
-  /** Where the eye stands: degrees from z towards the plane, and degrees about z from x. In the plane: from above. */
+  /** Where the eye stands: degrees from z towards the plane, and degrees about z from x; else from the scene's own place. */
   readonly view?: readonly [theta: number, phi: number]
   /** In the figure's own units (px at 96 dpi). */
   readonly size?: number
@@ -26,8 +26,6 @@ const BLACK_ON_WHITE: FigureColours = {
   face: '#000000',
 }
 
-export const DEFAULT_VIEW = [72, 24] as const
-const FROM_ABOVE = [0, -90] as const
 const SIZE = 480
 const MARGIN = 44
 const FONT = 15
@@ -42,7 +40,7 @@ interface Box {
 
 export function zoneFigure(scene: Scene, { view, size = SIZE, colours }: FigureOptions = {}): string {
   const paint = { ...BLACK_ON_WHITE, ...colours }
-  const camera = new Camera(scene, view ?? (scene.dimension === 3 ? DEFAULT_VIEW : FROM_ABOVE), size)
+  const camera = new Camera(scene, view ?? scene.home, size)
   const shown = scene.points.filter(({ named }) => named)
   const points = shown.length > 0 ? shown : scene.points
   const body = [

@@ -1,9 +1,9 @@
 /** From a document to what the zone view and the figures draw: finished geometry, nothing left to compute. */
 import type { DocumentFinding, Snapshot } from '../analysis.ts'
-import { meshOrbits, meshPoints } from '../crystal/mesh.ts'
+import { isSymmetricMesh, meshOrbits, meshPoints } from '../crystal/mesh.ts'
 import { shellsAround } from '../crystal/shells.ts'
 import { INVERSE_SYMBOL } from '../crystal/units.ts'
-import { add, type Vec3 } from '../crystal/vector.ts'
+import { add, apply, combine, dot, type Mat3, type Vec3 } from '../crystal/vector.ts'
 import { irreducibleWedge } from '../crystal/wedge.ts'
 import { fold, placeInZone, type Zone } from '../crystal/zone.ts'
 import type { LatticeDocument, Span } from '../format/model.ts'
@@ -48,8 +48,9 @@ export function sceneOf(snapshot: Snapshot, ordinal = 0): Scene | undefined {
     points,
     segments,
     wedge: wedge && solid(wedge),
-    meshes: meshes(crystal, zone),
+    meshes: meshes(crystal, zone, wedge?.direction),
     neighbours: shellsAround(zone),
+    home: homeOf(lattice.dimension, segments),
     words: inWords(crystal, zone, points, segments),
   }
 }
@@ -151,6 +152,18 @@ function segmentsOf(crystal: Crystal, marks: Marks): SceneSegment[] {
   )
 }
 
+/** A little from above, and so far beside the path that its lines do not cover each other. */
+const HOME = { theta: 72, phi: 24, beside: 32 }
+
+function homeOf(dimension: number, segments: readonly SceneSegment[]): readonly [number, number] {
+  if (dimension < 3) return FROM_ABOVE
+  const [x, y] = segments.length > 0 ? meanDirection(segments) : [0, 0]
+  if (Math.hypot(x, y) === 0) return [HOME.theta, HOME.phi]
+  return [HOME.theta, Math.round((Math.atan2(y, x) * 180) / Math.PI) - HOME.beside]
+}
+/** With x to the right and y upwards. */
+const FROM_ABOVE = [0, -90] as const
+
 const meanDirection = (segments: readonly SceneSegment[]): Vec3 => {
   const sum = segments.reduce<Vec3>(
     (total, { from, to, length }) => {
@@ -162,7 +175,7 @@ const meanDirection = (segments: readonly SceneSegment[]): Vec3 => {
   return sum.some(x => x !== 0) ? sum : [1, 0, 0]
 }
 
-const meshes = (crystal: Crystal, zone: Zone): SceneMesh[] => {
+const meshes = (crystal: Crystal, zone: Zone, wedge: Vec3 | undefined): SceneMesh[] => {
   const { kGroup } = crystal
   if (!kGroup) return []
   return meshesOf(crystal).flatMap(({ name, mesh }) => {
@@ -170,12 +183,24 @@ const meshes = (crystal: Crystal, zone: Zone): SceneMesh[] => {
     if (total > MOST_MESH_POINTS * kGroup.length) return []
     const orbits = meshOrbits(mesh, kGroup)
     if (!orbits || orbits.sizes.length > MOST_MESH_POINTS) return []
+    const isSymmetric = isSymmetricMesh(mesh, kGroup)
     const points = Array.from(orbits.sizes, (_, i) => {
       const fraction = mesh.divisions.map((n, axis) => (orbits.points[3 * i + axis] + mesh.shift[axis]) / n)
-      return fold(zone, fraction as unknown as Vec3).cartesian
+      const folded = fold(zone, fraction as unknown as Vec3)
+      return isSymmetric && wedge ? inWedge(folded.fraction, kGroup, zone, wedge) : folded.cartesian
     })
     return { name, points: points.flat(), weights: Array.from(orbits.sizes, size => size / total), total }
   })
+}
+
+/** The image of a point of the zone that lies in the irreducible wedge: the one furthest along the wedge's direction. */
+function inWedge(fraction: Vec3, group: readonly Mat3[], { reciprocal }: Zone, direction: Vec3): Vec3 {
+  let best: Vec3 = combine(fraction, reciprocal)
+  for (const R of group) {
+    const image = combine(apply(R, fraction), reciprocal)
+    if (dot(image, direction) > dot(best, direction)) best = image
+  }
+  return best
 }
 
 function inWords(

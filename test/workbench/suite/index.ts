@@ -27,5 +27,6 @@ const suites: Record<string, () => Promise<unknown>> = {
   settings: () => import('./settings.test.ts'),
   process: () => import('./process.test.ts'),
   pictures: () => import('./pictures.test.ts'),
+  'zone-view': () => import('./zone-view.test.ts'),
   asleep: () => import('./asleep.test.ts'),
 }
