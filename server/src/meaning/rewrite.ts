@@ -39,6 +39,7 @@ import {
   standsHere,
 } from '../format/edits.ts'
 import {
+  type Entry,
   type Fraction,
   type LatticeBlock,
   type MeshBlock,
@@ -214,6 +215,7 @@ function statedByType(
 ): TextEdit[] {
   const edits: TextEdit[] = []
   const added: [string, string][] = []
+  const removed = ['vectors', 'centring'].filter(key => block.keys.has(key))
   if (block.bravais) edits.push({ at: block.bravais.at, text: cell.bravais! })
   else added.push(['bravais', cell.bravais!])
   const known = PARAMETER_NAMES.flatMap(name => block.parameters[name] ?? [])
@@ -221,7 +223,7 @@ function statedByType(
     const value = parameters[name]
     const stated = block.parameters[name]
     if (value === undefined) {
-      if (block.keys.has(name)) edits.push(removeEntry(text, block.keys.get(name)!))
+      if (block.keys.has(name)) removed.push(name)
       continue
     }
     if (stated && isSame(value, stated.value) && stays(stated.uses)) continue
@@ -230,10 +232,22 @@ function statedByType(
     if (stated) edits.push({ at: stated.at, text: written })
     else added.push([name, written])
   }
-  for (const key of ['vectors', 'centring'])
-    if (block.keys.has(key)) edits.push(removeEntry(text, block.keys.get(key)!))
+  edits.push(...removals(text, block, removed))
   return added.length > 0 ? [...edits, ...insertKeys(text, block, added)] : edits
 }
+
+/** The entries of some keys; at the end of a mapping in braces, the comma before them goes too. */
+function removals(text: string, block: LatticeBlock, names: readonly string[]): TextEdit[] {
+  const entries = [...block.keys].sort(([, e], [, f]) => e.key[0] - f.key[0])
+  const last = entries.findLastIndex(([name]) => !names.includes(name))
+  const isInBraces = text[block.at[0]] === '{' && last >= 0
+  const [inside, atEnd] = isInBraces ? [entries.slice(0, last), entries.slice(last + 1)] : [entries, []]
+  const edits = inside.filter(([name]) => names.includes(name)).map(([, entry]) => removeEntry(text, entry))
+  if (atEnd.length > 0) edits.push({ at: [endOf(entries[last][1]), endOf(atEnd.at(-1)![1])], text: '' })
+  return edits
+}
+
+const endOf = ({ key, at }: Entry): number => Math.max(key[1], at[1])
 
 /** Digits after the point of a length that is no simple number. */
 const DIGITS = 10

@@ -1,6 +1,6 @@
 /** Fixes of the atom rules, from text to text. */
-import { describe, test } from 'vitest'
-import { checkFix } from './harness.ts'
+import { describe, expect, test } from 'vitest'
+import { checkFix, fixesOf } from './harness.ts'
 
 test('atoms-coincide: the second is removed, with its line', () =>
   checkFix(
@@ -226,4 +226,41 @@ test('space-group-mismatch: the one found, as a symbol or a number', () => {
     `lattice: {bravais: cF, a: 5.431}\natoms:\n  - Si: [0, 0, 0]\n  - Si: [1/4, 1/4, 1/4]\nspace-group: ${group}\n`
   checkFix(silicon('$0Fm-3m'), silicon('Fd-3m'), { safe: false })
   checkFix(silicon('$0225'), silicon('227'), { safe: false })
+})
+
+describe('vacuum-undeclared', () => {
+  test('a sheet with its height', () =>
+    checkFix(
+      `
+lattice:
+  bravais: $0hP
+  a: 2.46
+  c: 20 # with vacuum
+atoms:
+  - C: [1/3, 2/3, 1/2]
+  - C: [2/3, 1/3, 1/2]
+path: Γ – M – K – Γ
+mesh: {divisions: [12, 12, 3]}
+`,
+      `
+lattice:
+  bravais: hp
+  a: 2.46
+  height: 20 # with vacuum
+atoms:
+  - C: [1/3, 2/3, 1/2]
+  - C: [2/3, 1/3, 1/2]
+path: Γ – M – K – Γ
+mesh: {divisions: [12, 12, 1]}
+`,
+      { rule: 'vacuum-undeclared', safe: false },
+    ))
+
+  test('no fix where a point or a label stands off the plane', () => {
+    const sheet =
+      'lattice: {bravais: hP, a: 2.46, c: 20}\natoms:\n  - C: [1/3, 2/3, 1/2]\n  - C: [2/3, 1/3, 1/2]\n'
+    expect(fixesOf(`${sheet}path: Γ – A\n`, 'vacuum-undeclared')).toEqual([])
+    expect(fixesOf(`${sheet}points: {Q: [0, 0, 1/4]}\n`, 'vacuum-undeclared')).toEqual([])
+    expect(fixesOf(sheet, 'vacuum-undeclared')).toHaveLength(1)
+  })
 })

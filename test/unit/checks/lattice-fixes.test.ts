@@ -165,6 +165,16 @@ atoms:
       { safe: false },
     ))
 
+  test('rhombohedral axes of 60° and 90°, an angle of 90°, the plane', () => {
+    checkFix('lattice: {bravais: $0hR, a: 4, alpha: 60}\n', 'lattice: {bravais: cF, a: 5.6568542495}\n')
+    checkFix('lattice: {bravais: $0hR, a: 4, alpha: 90}\n', 'lattice: {bravais: cP, a: 4}\n')
+    checkFix(
+      'lattice: {bravais: $0mP, a: 4, b: 5, c: 6, beta: 90}\n',
+      'lattice: {bravais: oP, a: 4, b: 5, c: 6}\n',
+    )
+    checkFix('lattice: {bravais: $0oc, a: 4, b: 4*sqrt(3)}\n', 'lattice: {bravais: hp, a: 4}\n')
+  })
+
   test('beside vectors the type is a claim', () =>
     checkFix(
       'lattice: {bravais: $0oP, vectors: [[4, 0, 0], [0, 4, 0], [0, 0, 6]]}\n',
