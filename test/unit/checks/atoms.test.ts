@@ -1,6 +1,6 @@
 /** Rules of the atoms: each mistake planted is found, and what only looks like one is not. */
-import { describe, test } from 'vitest'
-import { check } from './harness.ts'
+import { describe, expect, test } from 'vitest'
+import { check, findingsOf } from './harness.ts'
 
 describe('atoms-coincide', () => {
   test('the same place a lattice vector apart', () =>
@@ -415,4 +415,14 @@ atoms:
   - C: [1/3, 2/3, 1/4]
   - C: [2/3, 1/3, 3/4]
 `))
+})
+
+test('a thousand atoms at one place are a hundred findings, the last of which says so', () => {
+  const atoms = Array.from({ length: 1000 }, () => '  - C: [1/4, 0.1, 0.2]\n').join('')
+  const findings = findingsOf(`lattice: {bravais: oP, a: 4, b: 5, c: 3}\natoms:\n${atoms}`)
+  expect(new Set(findings.map(({ rule }) => rule))).toEqual(new Set(['atoms-coincide']))
+  expect(findings).toHaveLength(100)
+  expect(findings.at(-1)!.message).toBe(
+    'C (atom 101) is at the place of C (atom 1). There are 899 more like it.',
+  )
 })

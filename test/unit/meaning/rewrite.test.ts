@@ -234,6 +234,58 @@ describe('any document', () => {
     ))
 })
 
+describe('a cell that holds several primitive ones', () => {
+  const copies = {
+    F: ['0, 0, 0', '0, 1/2, 1/2', '1/2, 0, 1/2', '1/2, 1/2, 0'],
+    I: ['0, 0, 0', '1/2, 1/2, 1/2'],
+  }
+  test.each([
+    ['F', 'cF'],
+    ['F', 'oF'],
+    ['I', 'cI'],
+    ['I', 'tI'],
+    ['I', 'oI'],
+  ] as const)('becomes the %s-centred %s lattice with the same atoms and k-points', (centring, bravais) => {
+    const parameters = { c: 'a: 4.1', t: 'a: 4.1, c: 5.3', o: 'a: 4.1, b: 4.7, c: 5.3' }[
+      bravais[0] as 'c' | 't' | 'o'
+    ]
+    const shifted = (x: number, y: number, z: number) =>
+      copies[centring].map(copy => {
+        const [u, v, w] = copy.split(', ')
+        return `[${x} + ${u}, ${y} + ${v}, ${z} + ${w}]`
+      })
+    const atoms = [
+      ...shifted(0, 0, 0).map(at => `  - Si: ${at}`),
+      ...shifted(0.12, 0.2, 0.31).map(at => `  - C: ${at}`),
+    ]
+    const text = `lattice: {bravais: ${bravais[0]}P, ${parameters}}
+atoms:
+${atoms.join('\n')}
+points: {P: [0.1, 1/3, -1/4], Q: [1/2, 1/2, 1/2]}
+path: P – Q
+supercell: [1, 2, 2]
+`
+    const before = crystalOf(text)
+    expect(before.symmetry?.translationsFold).toBe(copies[centring].length)
+    const restated = restate(before, text, { change: IDENTITY, centring, bravais })!
+    const now = crystalOf(applyEdits(text, restated.edits))
+    expect(now.atoms.map(({ element }) => element)).toEqual(['Si', 'C'])
+    const toFractions = inverse(now.lattice!.primitive)
+    for (const { cartesian, element } of before.atoms) {
+      const there = now.atoms.filter(atom =>
+        combine(subtract(atom.cartesian, cartesian), toFractions).every(isWhole),
+      )
+      expect(there.map(atom => atom.element)).toEqual([element])
+    }
+    for (const [label, point] of before.points)
+      expect(distance(point.cartesian, now.points.get(label)!.cartesian)).toBeLessThan(CLOSE)
+    const volume = (crystal: Crystal) => determinant(crystal.supercell!) * crystal.lattice!.volume
+    expect(volume(now)).toBeCloseTo(volume(before), 6)
+    expect(now.symmetry?.spaceGroup?.number).toBe(before.symmetry?.spaceGroup?.number)
+    expect(now.symmetry?.translationsFold).toBe(1)
+  })
+})
+
 const permuted = (rows: string): Cell => ({
   change: [...rows].map(letter => IDENTITY['abc'.indexOf(letter)]) as unknown as Mat3,
   centring: 'P',
