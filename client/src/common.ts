@@ -8,10 +8,9 @@ import {
   window,
   workspace,
 } from 'vscode'
-import type { BaseLanguageClient, LanguageClientOptions } from 'vscode-languageclient'
 import { CHECKED, type CheckedParams, type CheckedResult } from '../../server/src/protocol.ts'
 import { registerCommands } from './commands.ts'
-import { Server } from './server.ts'
+import { type CreateClient, Server } from './server.ts'
 import { StatusItem } from './status.ts'
 import { registerZoneView } from './zone-view.ts'
 
@@ -20,8 +19,6 @@ import { registerZoneView } from './zone-view.ts'
  * that setting wins over the file names that an extension claims.
  */
 export const SELECTOR = [{ language: 'braggline' }, { language: 'yaml', pattern: '**/*.lattice.{yaml,yml}' }]
-
-export type CreateClient = (options: LanguageClientOptions) => Promise<BaseLanguageClient>
 
 /** What other extensions may ask of this one. */
 export interface Api {

@@ -11,7 +11,6 @@ import {
   vsdiag,
 } from 'vscode-languageclient'
 import { STATUS, type StatusParams } from '../../server/src/protocol.ts'
-import type { CreateClient } from './common.ts'
 import type { StatusItem } from './status.ts'
 
 /** A server that ends by itself is started again, but not for ever: this often within this time. */
@@ -19,6 +18,8 @@ const MOST_RESTARTS = 4
 const RESTART_WINDOW_MS = 3 * 60_000
 /** The longest wait for a server to say goodbye before it is left behind, in ms. */
 const STOP_LIMIT_MS = 2_000
+
+export type CreateClient = (options: LanguageClientOptions) => Promise<BaseLanguageClient>
 
 interface Surroundings {
   readonly log: LogOutputChannel

@@ -30,16 +30,14 @@ function edit(
 ): Edit[] | null {
   if (labels.length === 0) return null
   const { path } = document
+  const empty = document.keys.get('path')
+  if (!path && empty) return [replaceValue(text, empty, labels.map(displayLabel).join(' – '))]
   if (!path) {
     const edits = insertKeys(text, document, [['path', labels.map(displayLabel).join(' – ')]])
     return edits.length > 0 ? edits : null
   }
-  const isEmpty = text.slice(...path.at).trim() === ''
-  if (path.recommended || isEmpty)
-    return isEmpty || standsHere(text, path.at)
-      ? [replaceValue(text, path, labels.map(displayLabel).join(' – '))]
-      : null
   if (!standsHere(text, path.at)) return null
+  if (path.recommended) return [replaceValue(text, path, labels.map(displayLabel).join(' – '))]
   const { separator, write } = styleOf(text, path)
   const added = labels.map(write).join(separator)
   return [newPiece ? asPiece(text, path, added) : insertion(endOfLast(text, path.at), separator + added)]
