@@ -260,7 +260,7 @@ export class Crystal {
   /** The k-group of the crystal: distinct matrices on columns of primitive k-fractions. */
   readonly #kGroup = lazy((): readonly Mat3[] | undefined => {
     const { symmetry, lattice, document } = this
-    return symmetry && lattice && kRotations(symmetry.rotations, document.timeReversal, lattice.dimension)
+    return symmetry && lattice && kGroupOf(symmetry.rotations, document.timeReversal, lattice.dimension)
   })
   get kGroup(): readonly Mat3[] | undefined {
     return this.#kGroup()
@@ -269,7 +269,7 @@ export class Crystal {
   /** The same for the lattice alone, by which labels are matched. */
   readonly #holohedry = lazy((): readonly Mat3[] | undefined => {
     const { type, lattice } = this
-    return type && lattice && kRotations(type.holohedry, true, lattice.dimension)
+    return type && lattice && kGroupOf(type.holohedry, true, lattice.dimension)
   })
   get holohedry(): readonly Mat3[] | undefined {
     return this.#holohedry()
@@ -411,6 +411,15 @@ export class Crystal {
   get supercell(): Mat3 | undefined {
     return this.#supercell()
   }
+}
+
+/** The workshop keeps rotations from edit to edit, and their k-groups are kept with them: [with time reversal, without]. */
+const kGroups = new WeakMap<readonly Mat3[], (readonly Mat3[] | undefined)[]>()
+
+function kGroupOf(rotations: readonly Mat3[], timeReversal: boolean, dimension: Dimension): readonly Mat3[] {
+  const known = kGroups.get(rotations) ?? []
+  kGroups.set(rotations, known)
+  return (known[timeReversal ? 0 : 1] ??= kRotations(rotations, timeReversal, dimension))
 }
 
 const CARTESIAN: Mat3 = [
