@@ -12,7 +12,7 @@ import {
   operations_from_number,
   space_group_type,
 } from '@spglib/moyo-wasm'
-import type { Mat3, Vec3 } from './vector.ts'
+import { determinant, dot, type Mat3, type Vec3 } from './vector.ts'
 
 /** x′ = rotation · x + translation on columns of fractions. */
 export interface Operation {
@@ -206,8 +206,22 @@ function unfit({ basis, positions, species }: LibraryCell, tolerance: number): s
   const numbers = [...basis.flat(), ...positions.flat(), tolerance]
   if (!numbers.every(Number.isFinite)) return 'a number is not finite'
   if (!(tolerance > 0)) return 'the tolerance is not positive'
+  if (candidateImages(basis, tolerance) > MOST_IMAGES)
+    return 'the cell is so long and thin that too many lattice vectors are alike within the tolerance'
   return undefined
 }
+
+/**
+ * About how many triples of lattice vectors have the lengths of the basis within the tolerance: the library looks at
+ * each of them, and cannot be interrupted. Counted by the volumes of the three shells.
+ */
+function candidateImages(basis: Mat3, tolerance: number): number {
+  const volume = Math.abs(determinant(basis))
+  return basis.reduce((product, row) => product * (1 + (8 * Math.PI * dot(row, row) * tolerance) / volume), 1)
+}
+
+/** Ordinary cells have one or two; at a thousand a search takes some hundredths of a second, at a million minutes. */
+const MOST_IMAGES = 1000
 
 const operationFrom = ({ rotation, translation }: MoyoOperation): Operation => ({
   rotation: columnsOf(rotation),

@@ -56,9 +56,18 @@ export function evaluate(text: string, parameters: Parameters = WITHOUT_PARAMETE
       fault: { from: 0, to: text.length, message: `A number of over ${LONGEST} characters is not read.` },
     }
   const plain = plainDecimal(text)
-  if (plain) return { number: plain }
-  return new Expression(text, parameters).read()
+  const read = plain ? { number: plain } : new Expression(text, parameters).read()
+  return 'number' in read && Math.abs(read.number.value) > LARGEST ? { fault: tooLarge(text) } : read
 }
+
+/** Beyond this no length, fraction or count of a crystal lies, in any unit: it is a slip of the pen. */
+const LARGEST = 1e12
+
+const tooLarge = (text: string): NumberFault => ({
+  from: 0,
+  to: text.length,
+  message: 'This number is beyond 10¹²: no length, fraction or count of a crystal is.',
+})
 
 const POINT = 46
 const MINUS = 45

@@ -1,7 +1,7 @@
 /** From the `lattice` block to a `Lattice`, or to the reason why there is none. */
 import { BRAVAIS, type CompletedCell, completeCell, type Contradiction } from '../crystal/bravais.ts'
 import { type Dimension, type Lattice, type LatticeFault, latticeFromCell, latticeFromVectors } from '../crystal/lattice.ts'
-import type { Vec3 } from '../crystal/vector.ts'
+import { norm, type Vec3 } from '../crystal/vector.ts'
 import type { LatticeDocument, ParameterName, VectorValue } from '../format/model.ts'
 
 export interface LatticeBuild {
@@ -28,8 +28,24 @@ function fromVectors(document: LatticeDocument, rows: readonly (VectorValue | un
   const vectors = rows.map(row => vectorInSpace(row, dimension))
   if (vectors.some(vector => !vector)) return { dimension }
   const centring = document.lattice?.centring?.value ?? 'P'
-  const built = latticeFromVectors(vectors as Vec3[], centring)
+  const built = withinReach(latticeFromVectors(vectors as Vec3[], centring))
   return 'fault' in built ? { dimension, fault: built } : { dimension, lattice: built }
+}
+
+/**
+ * Vectors that differ more than this in length are no crystal's: beyond it double numbers do not hold both, and whoever
+ * counts the cells along the long one never ends.
+ */
+const MOST_UNEQUAL = 1e6
+
+function withinReach(built: Lattice | LatticeFault): Lattice | LatticeFault {
+  if ('fault' in built) return built
+  const lengths = built.conventional.slice(0, built.dimension).map(norm)
+  const [least, most] = [Math.min(...lengths), Math.max(...lengths)]
+  if (most <= MOST_UNEQUAL * least) return built
+  // The odd one out is the one farther from the middle of the scale.
+  const middle = Math.exp(lengths.reduce((sum, x) => sum + Math.log(x), 0) / lengths.length)
+  return { fault: 'lengths', vectors: [lengths.indexOf(most / middle > middle / least ? most : least)] }
 }
 
 /** Rows of a plane lattice lie in xy, a chain's along x; components that are left out are 0. */
@@ -52,7 +68,7 @@ function fromType(document: LatticeDocument): LatticeBuild {
   const completed = completeCell(type, given)
   if ('missing' in completed) return { dimension, missing: completed.missing }
   if ('miss' in completed) return { dimension, fault: { fault: 'angles', miss: completed.miss } }
-  const built = latticeFromCell(completed.cell, centring, dimension)
+  const built = withinReach(latticeFromCell(completed.cell, centring, dimension))
   const { contradictions } = completed
   if ('fault' in built) return { dimension, fault: built, contradictions, cell: completed }
   return { dimension, lattice: built, contradictions, cell: completed }
