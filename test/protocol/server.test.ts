@@ -169,3 +169,49 @@ describe('the server survives', () => {
     expect(await once.stop()).toBe(0)
   })
 })
+
+describe('the zone view', () => {
+  const CUBIC = 'lattice: {bravais: cF, a: 5.43}\npath: Γ – X\n'
+  const ask = <R>(method: string, params: object = {}) =>
+    client!.connection.sendRequest<R>(`braggline/${method}`, { uri: client!.uri, version: 1, ...params })
+
+  test('is given the picture and the bands of a version', async () => {
+    client = await Client.start(MODERN)
+    await client.open(CUBIC)
+    const answer = await ask<{ version: number; scene: { zone: { faces: unknown[] } }; documents: unknown[] }>('scene')
+    expect(answer.version).toBe(1)
+    expect(answer.scene.zone.faces).toHaveLength(14)
+    expect(answer.documents).toHaveLength(1)
+    const { bands } = await ask<{ bands: { ticks: unknown[] } }>('bands')
+    expect(bands.ticks).toHaveLength(2)
+    const { solid } = await ask<{ solid: { faces: unknown[] } }>('zoneSolid', { n: 2 })
+    expect(solid.faces.length).toBeGreaterThan(14)
+    for (const kind of ['zone', 'bands'])
+      expect((await ask<{ svg: string }>('figure', { kind, view: [60, 30] })).svg).toMatch(/^<svg /)
+  })
+
+  test('is told why there is no picture', async () => {
+    client = await Client.start(MODERN)
+    await client.open('lattice: {bravais: cF, a: six}\n')
+    expect(await ask('scene')).toMatchObject({ scene: null, reason: expect.stringContaining('six') })
+    expect(await ask('bands')).toEqual({ version: 1, bands: null })
+    expect(await ask('figure', { kind: 'zone' })).toEqual({ version: 1, svg: null })
+  })
+
+  test('writes into the version that it shows, and into no other', async () => {
+    client = await Client.start(MODERN)
+    await client.open(CUBIC)
+    const labels = { labels: ['W'], newPiece: false }
+    const end = { line: 1, character: 11 }
+    expect(await ask('appendToPath', labels)).toEqual({
+      version: 1,
+      edits: [{ range: { start: end, end }, newText: ' – W' }],
+    })
+    expect(await ask('appendToPath', { ...labels, version: 0 })).toBeNull()
+  })
+
+  test('asks of a file that is not open in vain', async () => {
+    client = await Client.start(MODERN)
+    expect(await ask('scene', { uri: 'file:///gone.lattice.yaml' })).toBeNull()
+  })
+})

@@ -32,7 +32,7 @@ const SESSIONS = [
   {
     name: 'desk',
     workspace: 'desk',
-    suites: ['findings', 'files', 'colours', 'commands', 'settings', 'process', 'pictures'],
+    suites: ['findings', 'files', 'colours', 'commands', 'settings', 'process', 'pictures', 'zone-tab'],
   },
   // The demo folder itself: its files are what the view is for.
   { name: 'zone', workspace: '../../../demo', suites: ['zone-view'] },
@@ -40,7 +40,7 @@ const SESSIONS = [
   {
     name: 'browser',
     workspace: 'desk',
-    suites: ['findings', 'files', 'commands', 'settings'],
+    suites: ['findings', 'files', 'commands', 'settings', 'zone-tab'],
     browser: true,
   },
 ]

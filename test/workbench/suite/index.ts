@@ -28,5 +28,6 @@ const suites: Record<string, () => Promise<unknown>> = {
   process: () => import('./process.test.ts'),
   pictures: () => import('./pictures.test.ts'),
   'zone-view': () => import('./zone-view.test.ts'),
+  'zone-tab': () => import('./zone-tab.test.ts'),
   asleep: () => import('./asleep.test.ts'),
 }

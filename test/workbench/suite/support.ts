@@ -96,3 +96,12 @@ export async function closeAll(): Promise<void> {
 export async function set(section: string, name: string, value: unknown): Promise<void> {
   await vscode.workspace.getConfiguration(section).update(name, value, vscode.ConfigurationTarget.Workspace)
 }
+
+/** Looks until it is so, for what no event tells of. */
+export async function soon(isSo: () => boolean | undefined | Promise<boolean>): Promise<void> {
+  for (const end = Date.now() + PATIENCE; Date.now() < end; ) {
+    if (await isSo()) return
+    await new Promise(done => setTimeout(done, 25))
+  }
+  throw new Error(`never so: ${isSo}`)
+}
