@@ -148,7 +148,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
       serverInfo: { name: 'Braggline', version: options.version },
       capabilities: {
         positionEncoding: 'utf-16',
-        textDocumentSync: { openClose: true, change: TextDocumentSyncKind.Incremental, save: false },
+        textDocumentSync: { openClose: true, change: TextDocumentSyncKind.Incremental, save: true },
         hoverProvider: true,
         documentSymbolProvider: { label: 'Braggline' },
         codeActionProvider: { codeActionKinds: [CodeActionKind.QuickFix, FIX_ALL] },

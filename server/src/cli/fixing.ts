@@ -2,7 +2,7 @@
 import type { DocumentFinding, Snapshot } from '../analysis.ts'
 import { tally } from '../exchange/findings-json.ts'
 import { Positions } from '../exchange/positions.ts'
-import { applyEdits, type ChosenFix, chooseSafeFixes } from '../exchange/safe-fixes.ts'
+import { applyFixes, type ChosenFix, chooseSafeFixes } from '../exchange/safe-fixes.ts'
 import type { Engine } from './engine.ts'
 
 /** Fixes that wait for one another are done after a few rounds: what goes on longer goes in a circle. */
@@ -56,7 +56,7 @@ async function apply(
   for (const applied of chosen.length > 1 ? [chosen, ...chosen.map(choice => [choice])] : [chosen]) {
     if (applied.length === 0) return undefined
     const edits = applied.flatMap(({ fix }) => fix.edits)
-    const after = await engine.check(applyEdits(snapshot.text, edits))
+    const after = await engine.check(applyFixes(snapshot.text, edits))
     if (tally(after.findings).errors <= tally(snapshot.findings).errors) return { snapshot: after, applied }
   }
   return undefined

@@ -181,7 +181,7 @@ function symmetry({ symmetry }: Report): Section | undefined {
     title: 'Symmetry',
     facts: [
       ...(spaceGroup ? [['space group', `${spaceGroup.symbol} (${spaceGroup.number})`] as const] : []),
-      ['point group', `${pointGroup}, ${count(rotations, 'rotation')}`],
+      ['point group', [pointGroup, count(rotations, 'rotation')].filter(Boolean).join(', ')],
       [
         'on k',
         `${count(kRotations, 'rotation')}; time reversal ${timeReversal ? 'holds: k and −k are equivalent' : 'does not hold'}`,

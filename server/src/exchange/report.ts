@@ -67,7 +67,8 @@ export interface ZoneReport {
 export interface SymmetryReport {
   /** Of lattice and atoms, in three dimensions; absent without atoms. */
   readonly spaceGroup?: { readonly number: number; readonly symbol: string }
-  readonly pointGroup: string
+  /** Of lattice and atoms, without atoms of the claimed space group, else of the lattice; absent for a chain. */
+  readonly pointGroup?: string
   readonly rotations: number
   readonly timeReversal: boolean
   /** Distinct rotations on k, −1 among them where time reversal holds. */
@@ -214,15 +215,17 @@ function zoneReport({ zone, dimension }: Crystal): ZoneReport | undefined {
   }
 }
 
-function symmetryReport({ symmetry, kGroup, document }: Crystal): SymmetryReport | undefined {
-  if (!symmetry || !kGroup) return undefined
+function symmetryReport(crystal: Crystal): SymmetryReport | undefined {
+  const { symmetry, rotations, kGroup, document } = crystal
+  if (!symmetry || !rotations || !kGroup) return undefined
   const { spaceGroup } = symmetry
   return {
     ...(document.atoms && spaceGroup
       ? { spaceGroup: { number: spaceGroup.number, symbol: spaceGroup.symbol } }
       : {}),
-    pointGroup: symmetry.pointGroup,
-    rotations: symmetry.rotations.length,
+    // Across a chain nothing repeats: what is found there is that of the two normals, not of the crystal.
+    ...(crystal.dimension === 1 ? {} : { pointGroup: rotations.pointGroup }),
+    rotations: rotations.matrices.length,
     timeReversal: document.timeReversal,
     kRotations: kGroup.length,
   }

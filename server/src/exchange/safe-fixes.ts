@@ -1,5 +1,6 @@
 /** Which fixes may be applied together, and the applying of edits. */
 import type { Fix, TextEdit } from '../format/model.ts'
+import { applyEdits } from '../format/edits.ts'
 import { lineBreak } from '../format/text.ts'
 
 interface Fixable {
@@ -30,19 +31,11 @@ export function chooseSafeFixes<F extends Fixable>(findings: readonly F[]): Chos
 /** Edits that touch count as meeting: what one of them deletes may be what the other leans on. */
 const meet = (e: TextEdit, f: TextEdit): boolean => e.at[0] <= f.at[1] && f.at[0] <= e.at[1]
 
-/**
- * Apply edits whose places all refer to the text before. New lines end as those of the text do.
- * @throws RangeError where two edits overlap (a fault of the fix, never of the file).
- */
-export function applyEdits(text: string, edits: readonly TextEdit[]): string {
+/** The text after the edits of fixes. New lines end as those of the text do. */
+export function applyFixes(text: string, edits: readonly TextEdit[]): string {
   const newline = lineBreak(text)
-  const parts: string[] = []
-  let from = 0
-  for (const { at, text: added } of [...edits].sort((e, f) => e.at[0] - f.at[0] || e.at[1] - f.at[1])) {
-    if (at[0] < from) throw new RangeError(`Edits overlap at ${at[0]}–${at[1]}.`)
-    parts.push(text.slice(from, at[0]), added.replace(/\r?\n/g, newline))
-    from = at[1]
-  }
-  parts.push(text.slice(from))
-  return parts.join('')
+  return applyEdits(
+    text,
+    edits.map(({ at, text: added }) => ({ at, text: added.replace(/\r?\n/g, newline) })),
+  )
 }

@@ -7,8 +7,9 @@ import {
   type TextEdit as LspEdit,
 } from 'vscode-languageserver-types'
 import type { DocumentFinding, Snapshot } from '../analysis.ts'
+import { chooseSafeFixes } from '../exchange/safe-fixes.ts'
 import { insertAllowance } from '../format/edits.ts'
-import type { Fix, TextEdit } from '../format/model.ts'
+import type { TextEdit } from '../format/model.ts'
 import { rangeOf } from './diagnostics.ts'
 
 export const FIX_ALL = `${CodeActionKind.SourceFixAll}.braggline`
@@ -78,19 +79,8 @@ function actionsFor(snapshot: Snapshot, request: FixRequest, finding: DocumentFi
   return actions
 }
 
-/** The first safe fix of each finding; one whose edits meet those of an earlier one is left for the next round. */
-export function safeEdits(findings: readonly DocumentFinding[]): TextEdit[] {
-  const taken: TextEdit[] = []
-  for (const finding of findings) {
-    const fix: Fix | undefined = finding.fixes?.find(fix => fix.safe)
-    if (!fix) continue
-    const clash = fix.edits.some(edit =>
-      taken.some(other => edit.at[0] <= other.at[1] && other.at[0] <= edit.at[1]),
-    )
-    if (!clash) taken.push(...fix.edits)
-  }
-  return taken
-}
+const safeEdits = (findings: readonly DocumentFinding[]): TextEdit[] =>
+  chooseSafeFixes(findings).flatMap(({ fix }) => fix.edits)
 
 function toWorkspaceEdit(snapshot: Snapshot, { uri, version }: FixRequest, edits: readonly TextEdit[]) {
   const changes: LspEdit[] = edits.map(edit => ({ range: rangeOf(snapshot, edit.at), newText: edit.text }))

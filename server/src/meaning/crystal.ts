@@ -8,14 +8,14 @@ import type { BravaisType } from '../crystal/bravais.ts'
 import { kRotations } from '../crystal/kspace.ts'
 import type { Dimension, Lattice } from '../crystal/lattice.ts'
 import { emptySlab } from '../crystal/neighbours.ts'
-import { type LatticeType, latticeType, type Symmetry } from '../crystal/symmetry.ts'
+import { groupOnLattice, type LatticeType, latticeType, namedSpaceGroup, type Symmetry } from '../crystal/symmetry.ts'
 import { IN_ANGSTROM, type Unit } from '../crystal/units.ts'
 import { add, combine, distance, inverse, type Mat3, scale, subtract, type Vec3 } from '../crystal/vector.ts'
 import { buildZone, type Zone } from '../crystal/zone.ts'
 import type { AtomEntry, LatticeDocument, PathPiece, PathSegment, PointEntry, VectorValue } from '../format/model.ts'
 import { buildLattice, type LatticeBuild } from './lattice-build.ts'
 import { lazy } from './lazy.ts'
-import type { SymmetryOutcome, Workshop } from './workshop.ts'
+import type { Rotations, SymmetryOutcome, Workshop } from './workshop.ts'
 
 /** Default tolerance, in Å: looser than the last digit of a refined structure, tighter than a real distortion. */
 export const DEFAULT_TOLERANCE = 0.001
@@ -257,10 +257,31 @@ export class Crystal {
     return this.#outcome()
   }
 
+  readonly #rotations = lazy((): Rotations | undefined => {
+    const { symmetry, document } = this
+    if (!symmetry) return undefined
+    const claimed = document.atoms ? undefined : this.#claimedRotations()
+    return claimed ?? { matrices: symmetry.rotations, pointGroup: symmetry.pointGroup, spaceGroup: symmetry.spaceGroup?.number }
+  })
+  /** The crystal's rotations: of lattice and atoms; without atoms of the claimed space group, else of the lattice. */
+  get rotations(): Rotations | undefined {
+    return this.#rotations()
+  }
+
+  #claimedRotations(): Rotations | undefined {
+    const { lattice, type, document } = this
+    const group = document.spaceGroup && namedSpaceGroup(document.spaceGroup.value)
+    if (!group || !lattice || !type || lattice.dimension !== 3) return undefined
+    return this.workshop.claims.get(String(document.spaceGroup!.value), flat(lattice.primitive, this.tolerance), () => {
+      const matrices = groupOnLattice(group, type, lattice.conventionalFromPrimitive)
+      return matrices && { matrices, pointGroup: group.pointGroup, spaceGroup: group.number }
+    })
+  }
+
   /** The k-group of the crystal: distinct matrices on columns of primitive k-fractions. */
   readonly #kGroup = lazy((): readonly Mat3[] | undefined => {
-    const { symmetry, lattice, document } = this
-    return symmetry && lattice && kGroupOf(symmetry.rotations, document.timeReversal, lattice.dimension)
+    const { rotations, lattice, document } = this
+    return rotations && lattice && kGroupOf(rotations.matrices, document.timeReversal, lattice.dimension)
   })
   get kGroup(): readonly Mat3[] | undefined {
     return this.#kGroup()
@@ -289,11 +310,12 @@ export class Crystal {
   bookMatch(book: Exclude<LatticeDocument['labels'], 'none'>, lattice = this.lattice): BookMatch | undefined {
     const type = lattice && this.typeOf(lattice.primitive, lattice.dimension)
     if (!lattice || !type) return undefined
-    const pointGroup = this.symmetry?.pointGroup
+    const { pointGroup, spaceGroup } = this.rotations ?? {}
+    const { tolerance } = this
     return this.workshop.matches.get(
-      `${book}/${lattice.dimension}/${pointGroup}`,
-      flat(lattice.primitive, this.tolerance),
-      () => matchBook(book, lattice.primitive, lattice.dimension, { tolerance: this.tolerance, pointGroup, latticeType: type }),
+      `${book}/${lattice.dimension}/${spaceGroup ?? pointGroup}`,
+      flat(lattice.primitive, tolerance),
+      () => matchBook(book, lattice.primitive, lattice.dimension, { tolerance, spaceGroup, pointGroup, latticeType: type }),
     )
   }
 
