@@ -646,6 +646,12 @@ function picturePng(scale: 2 | 4): string | undefined {
     }
     if (style.visibility === 'hidden') continue
     const box = label.getBoundingClientRect()
+    if (label.classList.contains('order')) {
+      picture.fillStyle = style.backgroundColor
+      picture.beginPath()
+      picture.roundRect(box.left - origin.left, box.top - origin.top, box.width, box.height, box.height / 2)
+      picture.fill()
+    }
     const sub = label.querySelector('sub')
     picture.textAlign = 'left'
     picture.textBaseline = 'alphabetic'
