@@ -1,6 +1,6 @@
 import fc from 'fast-check'
 import { describe, expect, test } from 'vitest'
-import { applyEdits, chooseSafeFixes } from '../../../server/src/exchange/safe-fixes.ts'
+import { applyFixes, chooseSafeFixes } from '../../../server/src/exchange/safe-fixes.ts'
 import type { Fix, TextEdit } from '../../../server/src/format/model.ts'
 
 const edit = (from: number, to: number, text: string): TextEdit => ({ at: [from, to], text })
@@ -8,17 +8,17 @@ const fix = (safe: boolean, ...edits: TextEdit[]): Fix => ({ title: `Fix ${edits
 
 describe('edits', () => {
   test('refer to the text before, in any order', () => {
-    expect(applyEdits('abcdef', [edit(4, 5, 'E'), edit(0, 2, ''), edit(6, 6, '!')])).toBe('cdEf!')
+    expect(applyFixes('abcdef', [edit(4, 5, 'E'), edit(0, 2, ''), edit(6, 6, '!')])).toBe('cdEf!')
   })
   test('two insertions at one place keep their order', () => {
-    expect(applyEdits('ab', [edit(1, 1, 'x'), edit(1, 1, 'y')])).toBe('axyb')
+    expect(applyFixes('ab', [edit(1, 1, 'x'), edit(1, 1, 'y')])).toBe('axyb')
   })
   test('new lines end as those of the text do', () => {
-    expect(applyEdits('a: 1\r\nb: 2\r\n', [edit(6, 6, 'c: 3\n')])).toBe('a: 1\r\nc: 3\r\nb: 2\r\n')
-    expect(applyEdits('a: 1\nb: 2\n', [edit(5, 5, 'c: 3\n')])).toBe('a: 1\nc: 3\nb: 2\n')
+    expect(applyFixes('a: 1\r\nb: 2\r\n', [edit(6, 6, 'c: 3\n')])).toBe('a: 1\r\nc: 3\r\nb: 2\r\n')
+    expect(applyFixes('a: 1\nb: 2\n', [edit(5, 5, 'c: 3\n')])).toBe('a: 1\nc: 3\nb: 2\n')
   })
   test('that overlap are refused', () => {
-    expect(() => applyEdits('abc', [edit(0, 2, 'x'), edit(1, 3, 'y')])).toThrow(RangeError)
+    expect(() => applyFixes('abc', [edit(0, 2, 'x'), edit(1, 3, 'y')])).toThrow(RangeError)
   })
 })
 
@@ -51,7 +51,7 @@ describe('chosen are', () => {
         const chosen = chooseSafeFixes(all.map(edits => ({ fixes: [fix(true, ...edits)] })))
         if (all.length > 0) expect(chosen.length).toBeGreaterThan(0)
         expect(() =>
-          applyEdits(
+          applyFixes(
             'x'.repeat(40),
             chosen.flatMap(({ fix }) => fix.edits),
           ),
