@@ -91,7 +91,7 @@ describe('atoms-frame-suspect', () => {
     check(`
 lattice: {bravais: hP, a: 3.25, c: 5.2}
 atoms:
-#^^^^ warning atoms-frame-suspect: The atoms’ coordinates hardly are fractions of the conventional cell: some are beyond ±2. Read as Cartesian lengths they give ordinary distances, Zn–O 1.976 Å.
+#^^^^ warning atoms-frame-suspect: The atoms’ coordinates can hardly be fractions of the conventional cell: some are beyond ±2. Read as Cartesian lengths they give ordinary distances, Zn–O 1.976 Å.
   - Zn: [0, 1.876388, 0]
   - Zn: [1.625, 0.938194, 2.6]
   - O: [0, 1.876388, 1.976]
@@ -103,7 +103,7 @@ atoms:
 lattice: {bravais: cF, a: 5.6402}
 frames:
   atoms: cartesian
-#        ^^^^^^^^^ warning atoms-frame-suspect: The atoms’ coordinates hardly are Cartesian lengths: all of them are under 1 and would put atoms on top of each other. Read as fractions of the conventional cell they give ordinary distances, Na–Cl 2.82 Å.
+#        ^^^^^^^^^ warning atoms-frame-suspect: The atoms’ coordinates can hardly be Cartesian lengths: all of them are under 1 and would put atoms on top of each other. Read as fractions of the conventional cell they give ordinary distances, Na–Cl 2.82 Å.
 atoms:
   - Na: [0, 0, 0]
   - Cl: [1/2, 1/2, 1/2]
@@ -190,7 +190,7 @@ describe('cell-not-primitive', () => {
   test('a cube of iron', () =>
     check(`
 lattice: {bravais: cP, a: 2.8665}
-#                  ^^ warning cell-not-primitive: The stated cell holds 2 primitive cells: 2 atoms are 1, repeated, and the zone is 2 times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.
+#                  ^^ warning cell-not-primitive: The atoms repeat: the stated cell holds 2 primitive cells of 1 atom, and its zone is 2 times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.
 atoms:
   - Fe: [0, 0, 0]
   - Fe: [1/2, 1/2, 1/2]
@@ -201,7 +201,7 @@ atoms:
 lattice:
   vectors:
     - [5.431, 0, 0]
-#   ^^^^^^^^^^^^^^^ warning cell-not-primitive: The stated cell holds 4 primitive cells: 8 atoms are 2, repeated, and the zone is 4 times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.
+#   ^^^^^^^^^^^^^^^ warning cell-not-primitive: The atoms repeat: the stated cell holds 4 primitive cells of 2 atoms, and its zone is 4 times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.
     - [0, 5.431, 0]
     - [0, 0, 5.431]
 atoms:
@@ -226,7 +226,7 @@ atoms:
   test('a doubled sheet', () =>
     check(`
 lattice: {bravais: op, a: 2.46, b: 8.52}
-#                  ^^ warning cell-not-primitive: The stated cell holds 4 primitive cells: 8 atoms are 2, repeated, and the zone is 4 times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.
+#                  ^^ warning cell-not-primitive: The atoms repeat: the stated cell holds 4 primitive cells of 2 atoms, and its zone is 4 times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.
 atoms:
   - C: [0, 0, 0]
   - C: [0, 1/6, 0]
@@ -375,6 +375,18 @@ lattice: {bravais: hp, a: 4.65, height: 18}
 atoms:
   - C: [1/3, 2/3, 1/2]
   - C: [2/3, 1/3, 1/2]
+`))
+})
+
+describe('vacuum-thin, a wrapped sheet', () => {
+  test('is told apart from a thick one', () =>
+    check(`
+lattice: {bravais: hp, a: 3.16, height: 20}
+#                                       ^^ warning vacuum-thin: A sheet 18.44 Å thick in a cell 20 Å high leaves 1.56 Å of vacuum; it is empty over 16.88 Å inside: bring the parts that were wrapped around the cell’s end together.
+atoms:
+  - Mo: [1/3, 2/3, 0]
+  - S: [2/3, 1/3, 0.078]
+  - S: [2/3, 1/3, 0.922]
 `))
 })
 

@@ -35,7 +35,7 @@ export const atomsFrameSuspect: Check<Facts> = {
         : 'some are beyond ±2'
     yield {
       at: document.framesEntry?.atoms?.at ?? document.atoms!.key,
-      message: `The atoms’ coordinates hardly are ${MEANING[now]}: ${why}. Read as ${MEANING[frame]} they give ordinary distances, ${contact.first.element}–${contact.second.element} ${length(contact.distance, crystal.unit, 3)}.`,
+      message: `The atoms’ coordinates can hardly be ${MEANING[now]}: ${why}. Read as ${MEANING[frame]} they give ordinary distances, ${contact.first.element}–${contact.second.element} ${length(contact.distance, crystal.unit, 3)}.`,
       facts: { frame },
       fixes: [
         { title: `State \`frames: {atoms: ${frame}}\``, safe: false, edits: statement(context, frame) },

@@ -35,7 +35,7 @@ export const cellNotPrimitive: Check<Facts> = {
     const { translationsFold: fold, primitivePositions } = symmetry
     yield {
       at: block.bravais?.at ?? block.vectors!.at,
-      message: `The stated cell holds ${fold} primitive cells: ${count(crystal.atoms.length, 'atom')} are ${primitivePositions.length}, repeated, and the zone is ${fold} times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.`,
+      message: `The atoms repeat: the stated cell holds ${fold} primitive cells of ${count(primitivePositions.length, 'atom')}, and its zone is ${fold} times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.`,
       facts: { fold },
       fixes: fixesFor(context, symmetry),
     }

@@ -28,7 +28,7 @@ const MOST_PAIRS = 200_000
 export const coincidences = once((crystal): readonly (readonly PlacedAtom[])[] => {
   const { lattice, atoms } = crystal
   if (!lattice || atoms.length === 0) return []
-  const reach = Math.max(crystal.tolerance, LARGEST_SHIFT / crystal.angstrom)
+  const reach = LARGEST_SHIFT / crystal.angstrom
   const firstOf = atoms.map((_, i) => i)
   let pairs = 0
   const { primitive: basis, dimension } = lattice

@@ -24,21 +24,30 @@ export const vacuumThin: Check<Facts> = {
     'lattice: {bravais: hp, a: 2.46, height: 20}\natoms:\n  - C: [1/3, 2/3, 1/2]\n  - C: [2/3, 1/3, 1/2]\n',
   *run({ crystal, document }) {
     const height = document.lattice?.height
-    if (crystal.dimension !== 2 || !height || height.value <= 0 || crystal.atoms.length === 0) return
-    const along = crystal.atoms.map(({ fraction }) => fraction[2])
-    const [low, high] = along.reduce(
-      ([least, most], z) => [Math.min(least, z), Math.max(most, z)],
-      [along[0], along[0]],
-    )
-    const thickness = high - low
+    if (crystal.dimension !== 2 || !height || crystal.atoms.length === 0) return
+    const { unit } = crystal
+    const along = Float64Array.from(crystal.atoms, ({ fraction }) => fraction[2]).sort()
+    const thickness = along[along.length - 1] - along[0]
     const vacuum = height.value - thickness
     const needed = THINNEST / crystal.angstrom
     if (vacuum >= needed) return
-    const { unit } = crystal
+    const sheet = thickness < FLAT * height.value ? 'flat sheet' : `sheet ${length(thickness, unit, 2)} thick`
+    const inside = widestGap(along)
+    const remedy =
+      inside >= needed
+        ? `; it is empty over ${length(inside, unit, 2)} inside: bring the parts that were wrapped around the cell’s end together`
+        : `; it takes ${length(needed, unit, 2)} or more, a height from ${length(thickness + needed, unit, 2)}`
     yield {
       at: height.at,
-      message: `A ${thickness < FLAT * height.value ? 'flat sheet' : `sheet ${length(thickness, unit, 2)} thick`} in a cell ${length(height.value, unit, 2)} high leaves ${length(vacuum, unit, 2)} of vacuum; it takes ${length(needed, unit, 2)} or more, a height from ${length(thickness + needed, unit, 2)}.`,
+      message: `A ${sheet} in a cell ${length(height.value, unit, 2)} high leaves ${length(vacuum, unit, 2)} of vacuum${remedy}.`,
       facts: { vacuum, thickness },
     }
   },
+}
+
+/** Between neighbours of a sorted list. */
+function widestGap(sorted: Float64Array): number {
+  let widest = 0
+  for (let i = 1; i < sorted.length; i++) widest = Math.max(widest, sorted[i] - sorted[i - 1])
+  return widest
 }

@@ -1,7 +1,7 @@
 import type { Mat3 } from '../../crystal/vector.ts'
 import { skewness } from '../../crystal/reduction.ts'
 import type { Fix } from '../../format/model.ts'
-import { keepsAll, restate } from '../../meaning/rewrite.ts'
+import { restate } from '../../meaning/rewrite.ts'
 import { length, plain } from '../../meaning/wording.ts'
 import type { Check, Context } from '../check.ts'
 
@@ -39,7 +39,7 @@ function fixesFor({ crystal, text }: Context, change: Mat3): Fix[] {
     ? [
         {
           title: 'Write the shortest basis, with all that refers to it',
-          safe: keepsAll(restated),
+          safe: false,
           edits: restated.edits,
         },
       ]

@@ -1,6 +1,12 @@
 /** Lattice types that vectors miss by little, and the vectors that would have them. */
 import { BRAVAIS, type BravaisType } from '../../crystal/bravais.ts'
-import { type CellParameters, cellParameters, type Dimension, isLattice, latticeFromCell } from '../../crystal/lattice.ts'
+import {
+  type CellParameters,
+  cellParameters,
+  type Dimension,
+  isLattice,
+  latticeFromCell,
+} from '../../crystal/lattice.ts'
 import { namedSpaceGroup } from '../../crystal/space-group.ts'
 import { type LatticeType, latticeType } from '../../crystal/symmetry.ts'
 import {
