@@ -1,5 +1,5 @@
-import type { BookMatch } from '../../books/match.ts'
 import { areAcrossBreak } from '../../books/lookup.ts'
+import type { BookMatch } from '../../books/match.ts'
 import { breakSegment } from '../../format/edits.ts'
 import type { PathPiece } from '../../format/model.ts'
 import { displayLabel } from '../../format/path.ts'

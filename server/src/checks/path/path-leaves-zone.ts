@@ -1,14 +1,15 @@
-import { type Exit, fold, leavesZone, type Zone } from '../../crystal/zone.ts'
-import { add, norm, scale, subtract, tidy, type Vec3 } from '../../crystal/vector.ts'
 import type { Ends } from '../../crystal/kspace.ts'
+import { add, norm, scale, subtract, tidy, type Vec3 } from '../../crystal/vector.ts'
+import { type Exit, fold, leavesZone, type Zone } from '../../crystal/zone.ts'
 import { standsHere } from '../../format/edits.ts'
 import type { Fix } from '../../format/model.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import { bookPointHere } from '../../meaning/placing.ts'
 import { plain } from '../../meaning/wording.ts'
 import type { Check, Context } from '../check.ts'
-import { baseOf, excessOf } from '../points/diagnosis.ts'
+import { baseOf } from '../points/diagnosis.ts'
 import { cartesianPlace, definePoints, offer, statedPlace } from '../points/numbers.ts'
+import { excessOf } from '../points/stated.ts'
 import { type CheckedSegment, nameOf, type PathEnd, segmentsOf, subjectOf } from './segments.ts'
 
 interface Facts {

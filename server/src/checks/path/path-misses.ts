@@ -1,6 +1,6 @@
 import type { BookMatch } from '../../books/match.ts'
-import { apply, type Mat3, subtract, type Vec3 } from '../../crystal/vector.ts'
 import type { Ends } from '../../crystal/kspace.ts'
+import { apply, type Mat3, subtract, type Vec3 } from '../../crystal/vector.ts'
 import { appendToPath } from '../../format/edits.ts'
 import type { Fix } from '../../format/model.ts'
 import { displayLabel, formatPath } from '../../format/path.ts'

@@ -2,21 +2,14 @@
  * What is the matter with the points of a file: each gets one cause at most, and a cause that several share is found
  * once, so that one mistake gives one finding. The rules of points and of the path ask here.
  */
-import { compiled } from '../../books/book.ts'
-import { evaluateForm } from '../../books/formula.ts'
 import { labelInOtherBooks } from '../../books/lookup.ts'
-import { BOOKS } from '../../books/index.ts'
-import type { BookMatch, BookPoint } from '../../books/match.ts'
-import { PLANE_LATTICES } from '../../books/plane-lattices.ts'
+import type { BookPoint } from '../../books/match.ts'
 import { fixedDimensions, K_TOLERANCE, littleCoGroup } from '../../crystal/kspace.ts'
-import { apply, combine, dot, inverse, norm, subtract, tidy, type Vec3 } from '../../crystal/vector.ts'
-import { placeInZone } from '../../crystal/zone.ts'
-import type { NumberValue, PointEntry } from '../../format/model.ts'
-import { recogniseFraction } from '../../format/numbers.ts'
+import { combine, norm, type Vec3 } from '../../crystal/vector.ts'
+import type { PointEntry } from '../../format/model.ts'
 import type { Crystal, PlacedPoint } from '../../meaning/crystal.ts'
-import { bookPointHere, type Fit, fitOf, latticeGroup, nearness, type Stated } from '../../meaning/placing.ts'
-import { isRoundingOf, LARGEST_K_SHIFT, uncertainty } from '../../meaning/rounding.ts'
-import { acrossLine, acrossPlane, isOn, wholeDirection } from '../../meaning/whole-vectors.ts'
+import { bookPointHere, type Fit, fitOf, latticeGroup, type Stated } from '../../meaning/placing.ts'
+import { isStale, otherShape } from './family.ts'
 import {
   bookReadings,
   centredReadings,
@@ -26,17 +19,13 @@ import {
   readingsOf,
   twoPiReadings,
 } from './readings.ts'
+import { type Rounded, roundedFrom, roundedToElement } from './roundings.ts'
+import { EXACT, excessOf, type Slack, slackOf, statedOf } from './stated.ts'
 
 export type Cause =
   /** Fits when the file is read in another way. */
   | { readonly kind: 'reading'; readonly reading: Reading; readonly fit: Fit }
-  /** A rounding of exact fractions: `numbers` are those of the file with the fractions put in. */
-  | {
-      readonly kind: 'rounded'
-      readonly numbers: Vec3
-      readonly fraction: Vec3
-      readonly components: readonly number[]
-    }
+  | ({ readonly kind: 'rounded' } & Rounded)
   /** The book's point for other values of the parameters on which it depends. */
   | { readonly kind: 'stale'; readonly own: BookPoint }
   /** A point that the book has for cells of another shape only, told by `condition`. */
@@ -62,13 +51,6 @@ export interface DiagnosedPoint {
   readonly fraction: Vec3
   readonly slack: Slack
 }
-
-/** How well a point is known from the digits written: each fraction, and as a distance in inverse length. */
-export interface Slack {
-  readonly fraction: number
-  readonly k: number
-}
-const EXACT: Slack = { fraction: 0, k: 0 }
 
 export interface Diagnosis {
   readonly points: ReadonlyMap<string, DiagnosedPoint>
@@ -280,11 +262,10 @@ class Examination {
       return isElsewhere || isVariantOf(point.label, here) ? undefined : { kind: 'unnamed', here }
     }
     if (!stated) return undefined
-    const shape = otherShape(this.crystal, point, slackOf(this.crystal, stated).fraction)
-    if (shape) return shape
-    const onElement = roundedToElement(this.crystal, stated, point.fraction)
-    if (onElement) return onElement
-    return this.twoPiOf(item)
+    const condition = otherShape(this.crystal, point, slackOf(this.crystal, stated).fraction)
+    if (condition) return { kind: 'other-shape', condition }
+    const rounded = roundedToElement(this.crystal, stated, point.fraction)
+    return rounded ? { kind: 'rounded', ...rounded } : this.twoPiOf(item)
   }
 
   /** A name of the file's own says nothing of the place: here only many digits speak for a factor of 2π. */
@@ -297,7 +278,7 @@ class Examination {
     )
       return undefined
     for (const reading of twoPiReadings(this.crystal)) {
-      const inReach = norm(combine(numbers, reading.axes)) <= zone.circumradius * (1 + K_TOLERANCE)
+      const inReach = norm(combine(numbers, reading.axes)) <= zone.circumradius * BEYOND_ROUNDING
       const fit = inReach ? this.fitIn(reading, item) : undefined
       if (fit && !isLabelOfGamma(fit.label)) return { kind: 'reading', reading, fit }
     }
@@ -305,11 +286,8 @@ class Examination {
   }
 
   private roundedTo({ stated }: Case, fit: Fit): Cause | undefined {
-    if (!stated || fit.how !== 'rounded' || fit.point.parameterDependent) return undefined
-    const numbers = numbersOf(this.crystal, fit.fraction)
-    const components = [0, 1, 2].filter(i => Math.abs(numbers[i] - stated.numbers[i]) > SAME)
-    if (!components.every(i => recogniseFraction(numbers[i], SAME))) return undefined
-    return { kind: 'rounded', numbers, fraction: fit.fraction, components }
+    const rounded = stated && roundedFrom(this.crystal, stated, fit)
+    return rounded && { kind: 'rounded', ...rounded }
   }
 
   private diagnosed(
@@ -334,8 +312,10 @@ interface Judged {
 const SEVERAL = 2
 /** So many digits after the point fit a place by accident once in ten thousand times. */
 const MANY_DIGITS = 4
-/** What arithmetic leaves between two equal fractions. */
-const SAME = 1e-9
+/** A corner of the zone is as far from Γ as its circumradius says, but for the digits written. */
+const BEYOND_ROUNDING = 1.001
+/** What arithmetic leaves of a zero. */
+const NOTHING = 1e-9
 
 const isPointwise = ({ kind }: Reading): boolean =>
   kind === 'other-book' || kind === 'two-pi' || kind === 'frame'
@@ -346,7 +326,7 @@ const isLabelOf = ({ point }: Fit, label: string): boolean =>
 
 /** Γ of another zone. */
 const isReciprocalVector = ({ label, fraction }: Fit): boolean =>
-  isLabelOfGamma(label) && norm(fraction) > SAME
+  isLabelOfGamma(label) && norm(fraction) > NOTHING
 
 /** `K'` and `K2` are names for equivalents of K. */
 function isVariantOf(label: string, { point }: Fit): boolean {
@@ -356,158 +336,12 @@ function isVariantOf(label: string, { point }: Fit): boolean {
 /** A label without its index and primes. */
 export const baseOf = (label: string): string => label.replace(/[0-9']+$/, '')
 
-/** The numbers of a point with the axes that they refer to; undefined where they cannot be read. */
-function statedOf(crystal: Crystal, { coordinates }: PointEntry): Stated | undefined {
-  const numbers = crystal.componentsInSpace(coordinates)
-  const axes = crystal.pointAxes
-  if (!coordinates || !numbers || !axes) return undefined
-  return { values: coordinates.items.slice(0, crystal.dimension) as NumberValue[], numbers, axes }
-}
-
-/** The numbers with which the file would state a place. */
-export const numbersOf = (
-  crystal: Crystal,
-  fraction: Vec3,
-  axes = crystal.pointAxes ?? crystal.lattice!.reciprocal,
-): Vec3 => tidy(combine(crystal.cartesianOf(fraction), inverse(axes)))
-
-/** By how much a point is uncertain for the digits that were written. */
-function slackOf(crystal: Crystal, { values, axes }: Stated): Slack {
-  let fraction = 0
-  let k = 0
-  values.forEach((value, i) => {
-    const doubt = uncertainty(value)
-    if (doubt === 0) return
-    fraction += doubt * Math.max(...crystal.fractionOf(axes[i]).map(Math.abs))
-    k += doubt * norm(axes[i])
-  })
-  return { fraction, k }
-}
-
-/** Does a point lie where the book's point would lie for other parameters of the cell? */
-function isStale({ book }: Crystal, fraction: Vec3, own: BookPoint, slack: number): boolean {
-  return (
-    book !== undefined &&
-    own.parameterDependent &&
-    isInFamily(book, fraction, own.fraction, own.slopes, slack)
-  )
-}
-
-/** Is a place, or an equivalent, one of those to which the parameters can move a point? */
-function isInFamily(
-  book: BookMatch,
-  fraction: Vec3,
-  one: Vec3,
-  slopes: readonly Vec3[],
-  slack: number,
-): boolean {
-  const directions = slopes.flatMap(slope => {
-    const direction = norm(slope) > 0 ? wholeDirection(slope) : undefined
-    return direction ? [direction] : []
-  })
-  if (directions.length === 0) return false
-  const across = acrossAll(directions)
-  const tolerance = Math.max(K_TOLERANCE, slack)
-  return book.holohedry.some(R => isOn(subtract(apply(R, fraction), one), across, tolerance))
-}
-
-/** A letter that the book has for another variation of this lattice type, at a place where that has it for some cell. */
-function otherShape(
-  { book, document }: Crystal,
-  { label, fraction }: PlacedPoint,
-  slack: number,
-): Cause | undefined {
-  if (!book?.bravais || document.labels === 'none') return undefined
-  const { variations } = book.book === PLANE_LATTICES.id ? PLANE_LATTICES : BOOKS[document.labels]
-  for (const variation of variations) {
-    if (variation.bravais !== book.bravais || !Object.hasOwn(variation.points, label)) continue
-    const { parameterNames, points } = compiled(variation)
-    const { forms } = points.find(point => point.label === label)!
-    // The cell of the book is the same for all variations of a type: κ = M⁻¹ κ′.
-    const back = inverse(book.bookFromPrimitive)
-    const one = apply(back, forms.map(form => evaluateForm(form, NO_PARAMETERS)) as unknown as Vec3)
-    const slopes = parameterNames.map((_, i) =>
-      apply(back, forms.map(form => form.coefficients[i]) as unknown as Vec3),
-    )
-    if (isInFamily(book, fraction, one, slopes, slack))
-      return { kind: 'other-shape', condition: variation.condition }
-  }
-  return undefined
-}
-/** All zero. No variation has more. */
-const NO_PARAMETERS = new Float64Array(16)
-
-/** The whole vectors at right angles to some directions; none where the directions leave no room. */
-function acrossAll([first, ...others]: readonly Vec3[]): readonly Vec3[] {
-  const normals = others.map(other => acrossPlane(first, other)).filter(normal => norm(normal) > 0)
-  if (normals.length === 0) return acrossLine(first)
-  return others.every(other => dot(other, normals[0]) === 0) ? [normals[0]] : []
-}
-
-/**
- * Numbers that miss a symmetry point, line or plane because fractions in them are rounded: the fewest fractions put in
- * that give the most symmetric place.
- */
-function roundedToElement(
-  crystal: Crystal,
-  { values, numbers, axes }: Stated,
-  fraction: Vec3,
-): Cause | undefined {
-  const group = latticeGroup(crystal)
-  if (!group) return undefined
-  const exact = values.map(value => simpleFractionOf(value))
-  const rounded = exact.flatMap((x, i) => (x === undefined ? [] : [i]))
-  if (rounded.length === 0) return undefined
-  let best: { order: number; cause: Cause } | undefined
-  const order = littleCoGroup(fraction, group).length
-  for (const components of subsets(rounded)) {
-    const put = numbers.map((x, i) => (components.includes(i) ? exact[i]! : x)) as unknown as Vec3
-    const place = crystal.fractionOf(combine(put, axes))
-    if (norm(crystal.cartesianOf(subtract(place, fraction))) > LARGEST_K_SHIFT * crystal.angstrom) continue
-    const higher = littleCoGroup(place, group).length
-    if (higher <= (best?.order ?? order)) continue
-    best = { order: higher, cause: { kind: 'rounded', numbers: put, fraction: place, components } }
-  }
-  return best?.cause
-}
-
-/** Denominators of symmetry points divide 12 (see symmetryPoints). */
-const LARGEST_DENOMINATOR = 12
-
-/** The fraction of which a number is a rounding and no exact value. */
-function simpleFractionOf(value: NumberValue): number | undefined {
-  for (let q = 1; q <= LARGEST_DENOMINATOR; q++) {
-    const exact = Math.round(value.value * q) / q
-    if (Math.abs(exact - value.value) <= SAME) return undefined
-    if (q > 2 && isRoundingOf(value, exact)) return exact
-  }
-  return undefined
-}
-
-/** The non-empty subsets of a list of three at most, the smaller first. */
-const subsets = (items: readonly number[]): number[][] =>
-  Array.from({ length: (1 << items.length) - 1 }, (_, bits) =>
-    items.filter((_, i) => ((bits + 1) >> i) & 1),
-  ).sort((a, b) => a.length - b.length)
-
 /** Is the place of the point in doubt, so that nothing can be said of a path to it? */
 export function isInDoubt(diagnosis: Diagnosis, label: string): boolean {
   if (diagnosis.whole) return true
   const cause = diagnosis.points.get(label)?.cause
   if (!cause || cause.kind === 'rounded' || cause.kind === 'unnamed') return false
   return cause.kind !== 'reading' || cause.reading.kind !== 'other-book'
-}
-
-/**
- * How far beyond the first zone a point lies, in inverse length; undefined inside, on the boundary, and where neither
- * the digits written nor the file's tolerance tell it from the boundary.
- */
-export function excessOf(crystal: Crystal, fraction: Vec3, slack = EXACT): number | undefined {
-  const { zone } = crystal
-  if (!zone) return undefined
-  const k = crystal.cartesianOf(fraction)
-  const { place, excess } = placeInZone(zone, k)
-  return place === 'outside' && excess > slack.k + nearness(crystal, k) ? excess : undefined
 }
 
 /** The other books in which a letter stands at a place. */

@@ -7,7 +7,8 @@ import { displayLabel } from '../../format/path.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import { cartesian, fractions } from '../../meaning/wording.ts'
 import type { Context } from '../check.ts'
-import { type Diagnosis, numbersOf } from './diagnosis.ts'
+import type { Diagnosis } from './diagnosis.ts'
+import { numbersOf } from './stated.ts'
 
 /** A place as the file would state it: `[1/2, 0, 1/2]`. */
 export const statedPlace = (crystal: Crystal, fraction: Vec3): string =>

@@ -1,7 +1,7 @@
-import type { Check, Finding } from '../check.ts'
 import type { PointEntry } from '../../format/model.ts'
 import { displayLabel } from '../../format/path.ts'
 import { count } from '../../meaning/wording.ts'
+import type { Check, Finding } from '../check.ts'
 
 interface Facts {
   readonly label: string

@@ -3,7 +3,7 @@ import { insertKeys, replaceValue } from '../../format/edits.ts'
 import type { Fix, TextEdit } from '../../format/model.ts'
 import { displayLabel } from '../../format/path.ts'
 import type { Check, Context, Finding } from '../check.ts'
-import { type Diagnosis, type DiagnosedPoint, diagnose, numbersOf } from './diagnosis.ts'
+import { type Diagnosis, type DiagnosedPoint, diagnose } from './diagnosis.ts'
 import {
   convertNumbers,
   frameInWords,
@@ -14,6 +14,7 @@ import {
   writtenPlace,
 } from './numbers.ts'
 import type { Reading } from './readings.ts'
+import { numbersOf } from './stated.ts'
 
 interface Facts {
   /** The frame in which the labels fit. */

@@ -4,20 +4,13 @@ import { insertKeys, scalarText } from '../../format/edits.ts'
 import type { Fix } from '../../format/model.ts'
 import { displayLabel } from '../../format/path.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
-import { describePlace, nearestBookPoint } from '../../meaning/placing.ts'
+import { describePlace, fitOf, nearestBookPoint } from '../../meaning/placing.ts'
 import { inverseLength } from '../../meaning/wording.ts'
 import type { Check, Context, Finding } from '../check.ts'
-import {
-  booksWith,
-  type Cause,
-  type Diagnosis,
-  type DiagnosedPoint,
-  diagnose,
-  numbersOf,
-} from './diagnosis.ts'
+import { booksWith, type Cause, type Diagnosis, type DiagnosedPoint, diagnose } from './diagnosis.ts'
 import { convertNumbers, listLabels, offer, rewriteNumbers, statedPlace, writtenPlace } from './numbers.ts'
 import { type TurnedReading, turnedReadings } from './readings.ts'
-import { fitOf } from '../../meaning/placing.ts'
+import { numbersOf } from './stated.ts'
 
 interface Facts {
   readonly label: string

@@ -3,8 +3,9 @@ import { fold, zoneNumber } from '../../crystal/zone.ts'
 import { displayLabel } from '../../format/path.ts'
 import { inverseLength } from '../../meaning/wording.ts'
 import type { Check } from '../check.ts'
-import { diagnose, excessOf, isInDoubt, numbersOf } from './diagnosis.ts'
+import { diagnose, isInDoubt } from './diagnosis.ts'
 import { offer, rewriteNumbers, statedPlace } from './numbers.ts'
+import { excessOf, numbersOf } from './stated.ts'
 
 interface Facts {
   readonly label: string

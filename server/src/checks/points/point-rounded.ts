@@ -1,6 +1,6 @@
 import { distance, type Vec3 } from '../../crystal/vector.ts'
-import { displayLabel } from '../../format/path.ts'
 import { formatCoordinate } from '../../format/numbers.ts'
+import { displayLabel } from '../../format/path.ts'
 import { describePlace } from '../../meaning/placing.ts'
 import { inverseLength } from '../../meaning/wording.ts'
 import type { Check } from '../check.ts'

@@ -5,8 +5,9 @@ import type { Crystal } from '../../meaning/crystal.ts'
 import { type NearPoint, nearestBookPoint } from '../../meaning/placing.ts'
 import { inverseLength, plain } from '../../meaning/wording.ts'
 import type { Check, Context, Finding } from '../check.ts'
-import { type DiagnosedPoint, diagnose, numbersOf } from './diagnosis.ts'
+import { type DiagnosedPoint, diagnose } from './diagnosis.ts'
 import { offer, rewriteNumbers, statedPlace } from './numbers.ts'
+import { numbersOf } from './stated.ts'
 
 interface Facts {
   readonly label: string

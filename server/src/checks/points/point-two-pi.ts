@@ -2,8 +2,9 @@ import type { Vec3 } from '../../crystal/vector.ts'
 import { displayLabel } from '../../format/path.ts'
 import { cartesian } from '../../meaning/wording.ts'
 import type { Check } from '../check.ts'
-import { diagnose, numbersOf } from './diagnosis.ts'
+import { diagnose } from './diagnosis.ts'
 import { offer, rewriteNumbers } from './numbers.ts'
+import { numbersOf } from './stated.ts'
 
 interface Facts {
   readonly label: string

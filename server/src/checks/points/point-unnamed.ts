@@ -1,6 +1,6 @@
-import { displayLabel } from '../../format/path.ts'
 import { scalarText } from '../../format/edits.ts'
 import type { PathLabel } from '../../format/model.ts'
+import { displayLabel } from '../../format/path.ts'
 import type { Check, Context } from '../check.ts'
 import { booksWith, diagnose } from './diagnosis.ts'
 
