@@ -198,9 +198,9 @@ const colourOf = (severity: SceneSeverity | undefined, theme: Theme): string =>
 /** Where each unbroken piece begins, for its number; none where there is only one. */
 export function pieceStarts(
   segments: readonly SceneSegment[],
-): { readonly label: string; readonly piece: number }[] {
+): { readonly k: Triple; readonly piece: number }[] {
   const starts = segments.filter(({ piece }, i) => i === 0 || segments[i - 1].piece !== piece)
-  return starts.length > 1 ? starts.map(({ from, piece }) => ({ label: from.label, piece: piece + 1 })) : []
+  return starts.length > 1 ? starts.map(({ from, piece }) => ({ k: from.k, piece: piece + 1 })) : []
 }
 
 /** x, y and z in a corner, so that a person knows where up is. */

@@ -2,9 +2,13 @@
 import { type FromView, LAST_SHELL_ZONE, readToView, type ToView } from '../messages.ts'
 import type { Bands, Scene, ScenePoint, SceneSolid, TextRange, Triple } from '../../server/src/protocol.ts'
 import { along, Camera, dot, type Stand } from './camera.ts'
+import { fillCard } from './card.ts'
 import { element, Switches } from './controls.ts'
-import { extentOf, Ink, type Marks, pieceStarts, triad } from './ink.ts'
+import { listen } from './gestures.ts'
+import { extentOf, Ink, type Marks, triad } from './ink.ts'
 import { distanceTo, LabelLayout, nearestOn, type Wanted } from './labels.ts'
+import { type Name, namesOf, putInto } from './names.ts'
+import { pictureOf } from './picture.ts'
 import { dotRadii, Solids } from './solids.ts'
 import { Strip } from './strip.ts'
 import { onThemeChange, readTheme, type Theme } from './theme.ts'
@@ -26,10 +30,6 @@ const vscode = acquireVsCodeApi()
 const kept = (vscode.getState() ?? {}) as Kept
 /** A pointer this near to the path is on it, in px. */
 const NEAR = 8
-/** A stage narrower than this has no room for facts beside a point, in px. */
-const NARROW = 520
-const DEGREES_PER_PX = 0.45
-const TURN_BY_KEY = 6
 
 const stage = element<HTMLElement>('stage')
 const glass = element<HTMLCanvasElement>('glass')
@@ -246,16 +246,6 @@ function fillSolids(): void {
   Object.assign(stage.dataset, { around, shown: switches.summary })
 }
 
-interface Name {
-  readonly key: string
-  readonly element: HTMLElement
-  readonly dot?: HTMLButtonElement
-  readonly k: Triple
-  readonly point?: ScenePoint
-  readonly rank: number
-  width: number
-  height: number
-}
 let shownNames: Name[] = []
 
 const isShown = (point: ScenePoint): boolean =>
@@ -266,67 +256,8 @@ const isShown = (point: ScenePoint): boolean =>
 
 function fillNames(): void {
   if (!scene) return
-  const focused = (document.activeElement as HTMLElement | null)?.dataset.label
-  names.replaceChildren()
-  const make = (name: { base: string; sub: string }, kind: string): HTMLElement => {
-    const label = document.createElement('span')
-    label.className = `name ${kind}`
-    label.append(name.base)
-    if (name.sub) {
-      const sub = document.createElement('sub')
-      sub.textContent = name.sub
-      label.append(sub)
-    }
-    label.setAttribute('aria-hidden', 'true')
-    return label
-  }
-  const points = scene.points.filter(isShown).map((point): Name => {
-    const dotButton = document.createElement('button')
-    dotButton.className = `dot ${point.origin} ${point.severity ?? ''} ${point.named ? 'named' : 'spare'}`
-    dotButton.dataset.label = point.label
-    dotButton.setAttribute(
-      'aria-label',
-      `${point.label}: ${point.facts.map(([name, value]) => `${name} ${value}`).join('; ')}`,
-    )
-    dotButton.addEventListener('pointerenter', () => hover(point.label))
-    dotButton.addEventListener('pointerleave', () => hover(undefined))
-    dotButton.addEventListener('focus', () => hover(point.label))
-    dotButton.addEventListener('blur', () => hover(undefined))
-    dotButton.addEventListener('click', () => pick(point))
-    const label = make(point.name, `point ${point.severity ?? ''} ${point.named ? 'named' : 'spare'}`)
-    label.dataset.label = point.label
-    return {
-      key: point.label,
-      element: label,
-      dot: dotButton,
-      k: point.k,
-      point,
-      rank: point.named ? (point.label === 'Γ' ? 3 : 2) : 1,
-      width: 0,
-      height: 0,
-    }
-  })
-  const vectors = scene.reciprocal.map((k, i): Name => {
-    const label = make({ base: 'b', sub: String(i + 1) }, 'vector')
-    return { key: `vector ${i}`, element: label, k, rank: 2.5, width: 0, height: 0 }
-  })
-  const orders = pieceStarts(scene.segments).map(({ label, piece }): Name => {
-    const mark = make({ base: String(piece), sub: '' }, 'order')
-    mark.title = `Piece ${piece} of the path begins here`
-    return {
-      key: `piece ${piece}`,
-      element: mark,
-      k: scene!.points.find(point => point.label === label)?.k ?? [0, 0, 0],
-      rank: 0.5,
-      width: 0,
-      height: 0,
-    }
-  })
-  shownNames = [...points, ...vectors, ...(switches.values.path === 'on' ? orders : [])]
-  names.append(...points.map(({ dot }) => dot!), ...shownNames.map(name => name.element))
-  for (const name of shownNames)
-    [name.width, name.height] = [name.element.offsetWidth, name.element.offsetHeight]
-  if (focused !== undefined) points.find(({ key }) => key === focused)?.dot?.focus()
+  shownNames = namesOf(scene, scene.points.filter(isShown), switches.values.path === 'on', { hover, pick })
+  putInto(names, shownNames)
 }
 
 function redraw(): void {
@@ -462,33 +393,7 @@ function hover(label: string | undefined): void {
   hovered = label
   const point = scene?.points.find(each => each.label === label)
   card.hidden = !point
-  if (point) {
-    card.replaceChildren()
-    const head = document.createElement('strong')
-    head.append(point.name.base)
-    if (point.name.sub) {
-      const sub = document.createElement('sub')
-      sub.textContent = point.name.sub
-      head.append(sub)
-    }
-    const list = document.createElement('dl')
-    for (const [name, value] of point.facts) {
-      const [term, fact] = [document.createElement('dt'), document.createElement('dd')]
-      term.textContent = name
-      fact.textContent = value
-      list.append(term, fact)
-    }
-    card.append(head, list)
-    const [x, y] = camera.project(point.k)
-    const { offsetWidth: width, offsetHeight: height } = card
-    const isNarrow = camera.width < NARROW
-    const isLeft = x < camera.width / 2
-    const left = isNarrow ? 4 : isLeft ? Math.min(x + 18, camera.width - width - 4) : x - 18 - width
-    card.style.left = `${Math.max(4, left)}px`
-    // Where there is no room beside the point, the facts stand at the far end.
-    const top = isNarrow ? (y < camera.height / 2 ? camera.height : 0) : y + 14
-    card.style.top = `${Math.max(4, Math.min(top, camera.height - height - 4))}px`
-  }
+  if (point) fillCard(card, point, camera)
   redraw()
 }
 
@@ -611,137 +516,37 @@ function save(what: 'zone' | 'bands' | 'png', scale: number): void {
     say({ kind: 'figure', what, view: [camera.stand.theta, camera.stand.phi] })
     return
   }
-  const picture = picturePng(scale === 4 ? 4 : 2)
+  const picture = pictureOf(
+    { stage, glass, camera, solids, names: shownNames, ground: theme.paper, drawInk },
+    scale === 4 ? 4 : 2,
+  )
   if (picture) say({ kind: 'png', data: picture, scale: scale === 4 ? 4 : 2 })
 }
 
-/** The stage as it stands, at a multiple of its size on the screen. */
-function picturePng(scale: 2 | 4): string | undefined {
-  const { width, height } = camera
-  const canvas = document.createElement('canvas')
-  canvas.width = width * scale
-  canvas.height = height * scale
-  const picture = canvas.getContext('2d')
-  if (!picture) return undefined
-  picture.fillStyle = theme.paper
-  picture.fillRect(0, 0, canvas.width, canvas.height)
-  if (solids) {
-    solids.resize(width, height, scale)
-    solids.draw(camera)
-    picture.drawImage(glass, 0, 0, canvas.width, canvas.height)
-    solids.resize(width, height, devicePixelRatio)
-    solids.draw(camera)
-  }
-  picture.scale(scale, scale)
-  drawInk(picture)
-  const origin = stage.getBoundingClientRect()
-  for (const { element: label, dot: button, k } of shownNames) {
-    const style = getComputedStyle(label)
-    if (button) {
-      const [x, y] = camera.project(k)
-      picture.fillStyle = style.color
-      picture.beginPath()
-      picture.arc(x, y, 3.4, 0, 2 * Math.PI)
-      picture.fill()
-    }
-    if (style.visibility === 'hidden') continue
-    const box = label.getBoundingClientRect()
-    if (label.classList.contains('order')) {
-      picture.fillStyle = style.backgroundColor
-      picture.beginPath()
-      picture.roundRect(box.left - origin.left, box.top - origin.top, box.width, box.height, box.height / 2)
-      picture.fill()
-    }
-    const sub = label.querySelector('sub')
-    picture.textAlign = 'left'
-    picture.textBaseline = 'alphabetic'
-    picture.fillStyle = style.color
-    picture.font = `${style.fontStyle} ${style.fontWeight} ${style.fontSize} ${style.fontFamily}`
-    const [x, y] = [
-      box.left - origin.left + Number.parseFloat(style.paddingLeft),
-      box.top - origin.top + 0.76 * box.height,
-    ]
-    const base = label.firstChild?.textContent ?? ''
-    picture.fillText(base, x, y)
-    if (!sub) continue
-    const offset = picture.measureText(base).width
-    picture.font = `${style.fontWeight} ${getComputedStyle(sub).fontSize} ${style.fontFamily}`
-    picture.fillText(sub.textContent ?? '', x + offset, y + 3.5)
-  }
-  return canvas.toDataURL('image/png').split(',')[1]
-}
-
-// Mouse, touch, keyboard.
-
-const fingers = new Map<number, { x: number; y: number }>()
-
-stage.addEventListener('pointerdown', event => {
-  if ((event.target as HTMLElement).closest('button')) return
-  stage.setPointerCapture(event.pointerId)
-  fingers.set(event.pointerId, { x: event.clientX, y: event.clientY })
-  stage.focus({ preventScroll: true })
-})
-for (const name of ['pointerup', 'pointercancel'] as const)
-  stage.addEventListener(name, event => {
-    if (!fingers.delete(event.pointerId)) return
-    if (fingers.size === 0) keep()
-  })
-stage.addEventListener('pointermove', event => {
-  const last = fingers.get(event.pointerId)
-  if (!last) return followPath(event)
-  const [dx, dy] = [event.clientX - last.x, event.clientY - last.y]
-  const other = [...fingers].find(([id]) => id !== event.pointerId)?.[1]
-  if (other) {
-    const spread = (p: { x: number; y: number }) => Math.hypot(p.x - other.x, p.y - other.y)
-    const now = { x: event.clientX, y: event.clientY }
-    camera.zoomBy(spread(now) / Math.max(1, spread(last)))
-    camera.panBy(dx / 2, dy / 2)
-  } else if (event.shiftKey || event.buttons & 6 || scene?.dimension !== 3) camera.panBy(dx, dy)
-  else camera.turn(dx * DEGREES_PER_PX, dy * DEGREES_PER_PX)
-  fingers.set(event.pointerId, { x: event.clientX, y: event.clientY })
-  hover(undefined)
-  redraw()
-})
-stage.addEventListener('pointerleave', () => {
-  strip.markAt(undefined)
-  spot = undefined
-  redraw()
-})
-stage.addEventListener('contextmenu', event => event.preventDefault())
-stage.addEventListener(
-  'wheel',
-  event => {
-    event.preventDefault()
-    const box = stage.getBoundingClientRect()
-    camera.zoomBy(1.0015 ** -event.deltaY, [event.clientX - box.left, event.clientY - box.top])
+listen(stage, camera, {
+  isFlat: () => scene?.dimension !== 3,
+  moved: () => {
+    hover(undefined)
+    redraw()
+  },
+  rested: keep,
+  home: () => {
+    look('start')
     redraw()
     keep()
   },
-  { passive: false },
-)
-stage.addEventListener('dblclick', event => {
-  if ((event.target as HTMLElement).closest('button')) return
-  look('start')
-  redraw()
-  keep()
-})
-stage.addEventListener('keydown', event => {
-  const { key, shiftKey } = event
-  const [x, y] = { ArrowLeft: [-1, 0], ArrowRight: [1, 0], ArrowUp: [0, -1], ArrowDown: [0, 1] }[key] ?? [
-    0, 0,
-  ]
-  if (x || y) {
-    if (shiftKey || scene?.dimension !== 3) camera.panBy(20 * x, 20 * y)
-    else camera.turn(TURN_BY_KEY * x, TURN_BY_KEY * y)
-  } else if (key === '+' || key === '=') camera.zoomBy(1.15)
-  else if (key === '-') camera.zoomBy(1 / 1.15)
-  else if (key === '0') look('start')
-  else if (key === '|' && switches.values.write === 'on') newPiece()
-  else if (key === 'Escape' && switches.values.write === 'on') switches.set('write', 'off')
-  else return
-  event.preventDefault()
-  redraw()
-  keep()
+  pointed: followPath,
+  left: () => {
+    strip.markAt(undefined)
+    spot = undefined
+    redraw()
+  },
+  pressed: key => {
+    if (switches.values.write !== 'on' || (key !== '|' && key !== 'Escape')) return false
+    if (key === '|') newPiece()
+    else switches.set('write', 'off')
+    return true
+  },
 })
 
 /** A pointer on the path in the zone moves the marker in the strip. */
