@@ -4,7 +4,7 @@ import { BRAVAIS, type BravaisType, completeCell } from '../../server/src/crysta
 import { isLattice, type Lattice, latticeFromCell } from '../../server/src/crystal/lattice.ts'
 import reference from '../reference/crystals.json' with { type: 'json' }
 import { atomsOf, STRUCTURES, written } from '../reference/structures.ts'
-import { findingsOf } from '../unit/checks/harness.ts'
+import { applyEdits, findingsOf } from '../unit/checks/harness.ts'
 
 /** What the text gets above information. */
 const loud = (text: string): string[] =>
@@ -38,7 +38,7 @@ function latticeOf({ bravais, cell }: Reference): Lattice {
 }
 
 const rows = (vectors: readonly (readonly number[])[], digits: number) =>
-  vectors.map(row => `    - [${row.map(x => Number(x.toFixed(digits))).join(', ')}]`).join('\n')
+  vectors.map(row => `    - [${row.map(x => x.toFixed(digits)).join(', ')}]`).join('\n')
 
 describe.each(CRYSTALS)('$name', crystal => {
   const { name, bravais, cell } = crystal
@@ -49,6 +49,18 @@ describe.each(CRYSTALS)('$name', crystal => {
 
   test('as vectors of its primitive cell, eight digits', () =>
     isQuiet(`lattice:\n  vectors:\n${rows(latticeOf(crystal).primitive, 8)}\npath: recommended\n`))
+
+  test.each([2, 3, 4])(
+    'as vectors of %i digits: a rounding is named as that of its own type, and undone',
+    digits => {
+      const text = `lattice:\n  vectors:\n${rows(latticeOf(crystal).primitive, digits)}\n`
+      for (const { rule, facts, fixes } of findingsOf(text).filter(({ severity }) => severity !== 'info')) {
+        expect(rule).toBe('lattice-nearly-symmetric')
+        expect((facts as { nearly: BravaisType }).nearly).toBe(bravais)
+        isQuiet(applyEdits(text, fixes![0].edits))
+      }
+    },
+  )
 
   test('as vectors of its conventional cell with the type as a claim', () => {
     const { conventional, centring } = latticeOf(crystal)
