@@ -234,13 +234,14 @@ points:
 # ^ info point-label-mismatch: Z is at the coordinates of \`bradley-cracknell-1972\`, not of \`setyawan-curtarolo-2010\`, which holds where \`labels\` is not stated.
 `))
 
+  // M is at 2π/a along x, 1.0833 Å⁻¹; Z at 2η·2π/c along z, η = (1 + c²/a²)/4 = 0.325152: 1.2849 Å⁻¹.
   test('a warning where it states one', () =>
     check(`
 labels: setyawan-curtarolo-2010
 lattice: {bravais: tI, a: 5.8, c: 3.18}
 points:
   Z: [-1/2, 1/2, 1/2]
-#    ^^^^^^^^^^^^^^^^ warning point-label-mismatch: [-1/2, 1/2, 1/2] is M, not Z; Z is at [0.325152, 0.325152, -0.325152], 0.6909 Å⁻¹ away. It is Z in \`bradley-cracknell-1972\`.
+#    ^^^^^^^^^^^^^^^^ warning point-label-mismatch: [-1/2, 1/2, 1/2] is M, not Z; Z is at [0.325152, 0.325152, -0.325152], 1.6806 Å⁻¹ away. It is Z in \`bradley-cracknell-1972\`.
 `))
 
   // M, S and G of tI, c > a, in Y. Hinuma et al. (2017).

@@ -1,10 +1,10 @@
 import type { BookPoint } from '../../books/match.ts'
-import type { Vec3 } from '../../crystal/vector.ts'
+import { distance, type Vec3 } from '../../crystal/vector.ts'
 import { insertKeys, scalarText } from '../../format/edits.ts'
 import type { Fix } from '../../format/model.ts'
 import { displayLabel } from '../../format/path.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
-import { describePlace, fitOf, nearestBookPoint } from '../../meaning/placing.ts'
+import { describePlace, fitOf, type NearPoint, nearestBookPoint } from '../../meaning/placing.ts'
 import { inverseLength } from '../../meaning/wording.ts'
 import type { Check, Context, Finding } from '../check.ts'
 import { booksWith, type Cause, type Diagnosis, type DiagnosedPoint, diagnose } from './diagnosis.ts'
@@ -91,17 +91,16 @@ function ofPoint(
   const { point, entry } = item
   const { label } = point
   const name = displayLabel(label)
-  const right = rightPlace(crystal, point.cartesian, own.label, own.fraction)
+  const right = rightPlace(crystal, point.cartesian, own)
   const written = entry.coordinates ? writtenPlace(text, entry) : name
   const what = here ? displayLabel(here.label) : describePlace(crystal, point.cartesian)
   const place = here
     ? `${written} is ${what}, not ${name}`
     : `${written} is not ${name}: it ${what?.startsWith('a ') ? 'is' : 'lies'} ${what}`
-  const away = right.distance === undefined ? '' : `, ${inverseLength(right.distance, crystal.unit)} away`
   return {
     at: entry.coordinates?.at ?? entry.at,
     subject: `point:${label}`,
-    message: `${place}; ${name} is at ${statedPlace(crystal, right.fraction)}${away}.${hint(crystal, item, here, swap)}`,
+    message: `${place}; ${name} is at ${statedPlace(crystal, right.fraction)}, ${inverseLength(right.distance, crystal.unit)} away.${hint(crystal, item, here, swap)}`,
     facts: { label, here: here?.label, expected: right.fraction },
     fixes: fixesFor(context, diagnosis, item, right.fraction, here?.label, swap),
   }
@@ -110,16 +109,15 @@ function ofPoint(
 /** A slip moves a point by less than this part of the way to the zone's nearest wall; else another point is meant. */
 const SLIP = 0.5
 
-/** The equivalent of the label's point that is meant: the one nearby, or the book's own. */
+/** The equivalent of the label's point that is meant, and how far away it is: one nearby, or else the book's own. */
 function rightPlace(
   crystal: Crystal,
   k: Vec3,
-  label: string,
-  own: Vec3,
-): { fraction: Vec3; distance?: number } {
+  { label, fraction }: BookPoint,
+): Pick<NearPoint, 'fraction' | 'distance'> {
   const near = nearestBookPoint(crystal, k, label)
-  const isSlip = near && crystal.zone && near.distance < SLIP * crystal.zone.inradius
-  return isSlip ? near : { fraction: own, distance: near?.distance }
+  if (near && crystal.zone && near.distance < SLIP * crystal.zone.inradius) return near
+  return { fraction, distance: distance(k, crystal.cartesianOf(fraction)) }
 }
 
 function hint(
