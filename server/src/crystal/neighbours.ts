@@ -28,9 +28,9 @@ const SLACK = 1 + 1e-9
 
 /**
  * Visit every pair of atoms whose distance is at most `reach`, copies in other cells counted; an atom and its own copy
- * count once for ±. The order is that of the first atom.
+ * count once for ±. In no particular order.
  * @param reach a length in the unit of the basis, over 0.
- * @param visit gives `false` to stop.
+ * @param visit gets the lower index first; gives `false` to stop.
  * @returns false where it was stopped.
  */
 export function forEachPair(
@@ -42,6 +42,7 @@ export function forEachPair(
   const count = places.length / 3
   const { first, next } = linked(places, axes)
   const [X, Y, Z] = axes
+  const [a, b, c] = basis
   const limit = (reach * SLACK) ** 2
   for (let i = 0; i < count; i++) {
     const u = places[3 * i]
@@ -50,23 +51,26 @@ export function forEachPair(
     const bx = binOf(X, u)
     const by = binOf(Y, v)
     const bz = binOf(Z, w)
-    for (let x = X.from(bx); x <= X.to(bx); x++) {
+    // Half of the bins around: the other half see this atom from their own.
+    for (let x = bx; x <= X.to(bx); x++) {
       const sx = X.shift(x)
-      for (let y = Y.from(by); y <= Y.to(by); y++) {
+      for (let y = x > bx ? Y.from(by) : by; y <= Y.to(by); y++) {
         const sy = Y.shift(y)
-        for (let z = Z.from(bz); z <= Z.to(bz); z++) {
+        const row = ((x - sx * X.bins) * Y.bins + y - sy * Y.bins) * Z.bins
+        for (let z = x > bx || y > by ? Z.from(bz) : bz; z <= Z.to(bz); z++) {
           const sz = Z.shift(z)
-          const bin = ((x - sx * X.bins) * Y.bins + y - sy * Y.bins) * Z.bins + z - sz * Z.bins
-          for (let j = first[bin]; j >= 0; j = next[j]) {
-            if (j < i || (j === i && !isLater(sx, sy, sz))) continue
+          const isOwnBin = x === bx && y === by && z === bz
+          for (let j = first[row + z - sz * Z.bins]; j >= 0; j = next[j]) {
+            if (isOwnBin && j <= i) continue
             const du = places[3 * j] + sx - u
             const dv = places[3 * j + 1] + sy - v
             const dw = places[3 * j + 2] + sz - w
-            const dx = du * basis[0][0] + dv * basis[1][0] + dw * basis[2][0]
-            const dy = du * basis[0][1] + dv * basis[1][1] + dw * basis[2][1]
-            const dz = du * basis[0][2] + dv * basis[1][2] + dw * basis[2][2]
+            const dx = du * a[0] + dv * b[0] + dw * c[0]
+            const dy = du * a[1] + dv * b[1] + dw * c[1]
+            const dz = du * a[2] + dv * b[2] + dw * c[2]
             const square = dx * dx + dy * dy + dz * dz
-            if (square <= limit && visit(i, j, Math.sqrt(square)) === false) return false
+            if (square > limit) continue
+            if (visit(Math.min(i, j), Math.max(i, j), Math.sqrt(square)) === false) return false
           }
         }
       }
@@ -74,10 +78,6 @@ export function forEachPair(
   }
   return true
 }
-
-/** One of each pair of opposite shifts. */
-const isLater = (x: number, y: number, z: number): boolean =>
-  x > 0 || (x === 0 && (y > 0 || (y === 0 && z > 0)))
 
 /**
  * The pair of atoms that is closest relative to the sum of its radii.

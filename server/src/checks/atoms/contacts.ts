@@ -30,14 +30,21 @@ export const coincidences = once((crystal): readonly (readonly PlacedAtom[])[] =
   if (!lattice || atoms.length === 0) return []
   const reach = LARGEST_SHIFT / crystal.angstrom
   const firstOf = atoms.map((_, i) => i)
+  const root = (i: number): number => {
+    let at = i
+    while (firstOf[at] !== at) at = firstOf[at]
+    return at
+  }
   let pairs = 0
   const { primitive: basis, dimension } = lattice
   forEachPair({ basis, dimension, positions: atoms.map(atom => atom.fraction) }, reach, (first, second) => {
-    if (first !== second && firstOf[second] === second) firstOf[second] = firstOf[first]
+    const [u, v] = [root(first), root(second)]
+    firstOf[Math.max(u, v)] = Math.min(u, v)
     return ++pairs < MOST_PAIRS
   })
   const groups = new Map<number, PlacedAtom[]>()
-  firstOf.forEach((first, i) => {
+  firstOf.forEach((_, i) => {
+    const first = root(i)
     if (first === i) return
     const group = groups.get(first) ?? groups.set(first, [atoms[first]]).get(first)!
     group.push(atoms[i])
