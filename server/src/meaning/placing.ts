@@ -24,7 +24,7 @@ import {
   subtract,
   type Vec3,
 } from '../crystal/vector.ts'
-import type { Zone } from '../crystal/zone.ts'
+import { fold, type Zone } from '../crystal/zone.ts'
 import type { NumberValue } from '../format/model.ts'
 import type { Crystal } from './crystal.ts'
 import { isRoundingOf, LARGEST_K_SHIFT } from './rounding.ts'
@@ -207,8 +207,9 @@ export function nearestBookPoint(crystal: Crystal, k: Vec3, label?: string): Nea
   const atlas = atlasOf(book)
   let best: { point: BookPoint; size: number; miss: Vec3 } | undefined
   const range = label === undefined ? wholeOf(atlas) : (atlas.ranges.get(label) ?? [0, 0])
+  const inside = fold(zone, crystal.fractionOf(k)).cartesian
   for (let i = range[0]; i < range[1]; i++) {
-    const miss = shortestEquivalent(zone, subtract(k, crystal.cartesianOf(imageAt(atlas, i))))
+    const miss = shortestEquivalent(zone, subtract(inside, crystal.cartesianOf(imageAt(atlas, i))))
     const size = norm(miss)
     // The first of several at one distance wins, whatever rounding does.
     if (!best || size < best.size - K_TOLERANCE * zone.inradius) best = { point: atlas.owners[i], size, miss }
@@ -282,7 +283,7 @@ export function bookPointsAlong(match: BookMatch, [from, to]: Ends): Passed[] {
 }
 
 /** A longer line is a slip of the pen: its points would be counted by the thousand, and nobody would want them named. */
-const LONGEST_LINE = 50
+export const LONGEST_LINE = 50
 
 const isWhole = (x: number): boolean => Math.abs(toNearest(x)) <= K_TOLERANCE
 

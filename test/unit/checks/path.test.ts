@@ -306,3 +306,11 @@ path: Γ – X – S – Y – Γ – Z – U – R – T – Z – Y – T | U 
       { title: 'Break the path here', safe: false },
     ))
 })
+
+test('a slip of the pen by nine powers of ten is told at once', () =>
+  check(`
+lattice: {bravais: cP, a: 3.9}
+points: {Q: [1e9, 0, 0]}
+path: Γ – Q
+#     ^^^^^ info path-leaves-zone: Γ–Q leaves the first zone at [1/2, 0, 0], k = (0.8055, 0, 0) Å⁻¹, 5.00·10⁻¹⁰ of the way.
+`))

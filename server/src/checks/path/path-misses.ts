@@ -5,6 +5,7 @@ import { appendToPath } from '../../format/edits.ts'
 import type { Fix } from '../../format/model.ts'
 import { displayLabel, formatPath } from '../../format/path.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
+import { LONGEST_LINE } from '../../meaning/placing.ts'
 import { piecesThrough } from '../../meaning/recommended.ts'
 import type { Check, Context } from '../check.ts'
 import { diagnose, isInDoubt } from '../points/diagnosis.ts'
@@ -97,6 +98,7 @@ function isOnSegment(k: Vec3, [from, to]: Ends): boolean {
   const main = along.reduce((best, x, i) => (Math.abs(x) > Math.abs(along[best]) ? i : best), 0)
   const start = k[main] - from[main]
   if (along[main] === 0) return isWhole(subtract(k, from))
+  if (!(Math.abs(along[main]) <= LONGEST_LINE)) return false
   const [low, high] = [Math.min(0, along[main]), Math.max(0, along[main])]
   for (let whole = Math.ceil(low - start - SAME_PLACE); start + whole <= high + SAME_PLACE; whole++) {
     const at = (start + whole) / along[main]

@@ -5,6 +5,7 @@
 import { labelInOtherBooks } from '../../books/lookup.ts'
 import type { BookPoint } from '../../books/match.ts'
 import { fixedDimensions, K_TOLERANCE, littleCoGroup } from '../../crystal/kspace.ts'
+import { isFiniteVector } from '../../crystal/units.ts'
 import { combine, norm, type Vec3 } from '../../crystal/vector.ts'
 import type { PointEntry } from '../../format/model.ts'
 import type { Crystal, PlacedPoint } from '../../meaning/crystal.ts'
@@ -85,7 +86,9 @@ class Examination {
   private readonly cases: readonly Case[]
 
   constructor(private readonly crystal: Crystal) {
-    this.cases = [...crystal.points.values()].map(point => this.caseOf(point))
+    // Numbers so large that their products overflow have no place.
+    const placed = [...crystal.points.values()].filter(point => isFiniteVector(point.fraction))
+    this.cases = placed.map(point => this.caseOf(point))
   }
 
   result(): Diagnosis {
