@@ -80,7 +80,10 @@ writeFileSync(
 function present(options) {
   const entries = Object.entries(options.entryPoints)
   for (const [, file] of entries) if (!existsSync(join(root, file))) console.error(`left out: ${file}`)
-  return { ...options, entryPoints: Object.fromEntries(entries.filter(([, file]) => existsSync(join(root, file)))) }
+  return {
+    ...options,
+    entryPoints: Object.fromEntries(entries.filter(([, file]) => existsSync(join(root, file)))),
+  }
 }
 
 /** The licences of all packages that a bundle holds, as their terms ask. */

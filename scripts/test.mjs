@@ -16,7 +16,10 @@ const counts = { passed: 0, failed: 0 }
 // The package comes first: it is built on the way, and tests of the command and of the server run what was built.
 step('npm', 'run', 'package', '--silent')
 step('npx', 'vitest', 'run', '--reporter=default', '--reporter=json', `--outputFile.json=${units}`)
-count(units, ({ numPassedTests, numFailedTests, success }) => [numPassedTests, numFailedTests || (success ? 0 : 1)])
+count(units, ({ numPassedTests, numFailedTests, success }) => [
+  numPassedTests,
+  numFailedTests || (success ? 0 : 1),
+])
 step('npm', 'run', 'test:workbench', '--silent')
 count(workbench, ({ passed, failed }) => [passed, failed])
 
@@ -26,7 +29,11 @@ process.exit(counts.failed === 0 && counts.passed > 0 ? 0 : 1)
 /** A step that fails without a test to show for it counts as one. */
 function step(...command) {
   const [name, ...args] = command
-  const { status } = spawnSync(name, args, { cwd: root, stdio: 'inherit', shell: process.platform === 'win32' })
+  const { status } = spawnSync(name, args, {
+    cwd: root,
+    stdio: 'inherit',
+    shell: process.platform === 'win32',
+  })
   if (status === 0) return
   console.error(`failed: ${command.join(' ')}`)
   if (command.includes('package')) process.exit(1)

@@ -49,10 +49,12 @@ export class Snapshot {
     const { decoded, text } = this
     const loose = decoded.problems.map(problem => ({ ...problem, severity: 'error' as const, document: 1 }))
     const found = this.documents.flatMap(({ document, crystal }) =>
-      runChecks(CHECKS, { text, file: decoded, document, crystal }, this.settings.severities).map(finding => ({
-        ...finding,
-        document: document.number,
-      })),
+      runChecks(CHECKS, { text, file: decoded, document, crystal }, this.settings.severities).map(
+        finding => ({
+          ...finding,
+          document: document.number,
+        }),
+      ),
     )
     const kept = withoutAllowed([...loose, ...found], decoded, offset => this.lineOf(offset))
     return (kept as DocumentFinding[]).sort((a, b) => a.at[0] - b.at[0] || a.at[1] - b.at[1])
@@ -64,7 +66,9 @@ export class Snapshot {
 
   /** True while a symmetry search is still running: asking again later may give more findings. */
   get pending(): boolean {
-    return this.documents.some(({ crystal }) => crystal.lattice && crystal.symmetryOutcome.state === 'pending')
+    return this.documents.some(
+      ({ crystal }) => crystal.lattice && crystal.symmetryOutcome.state === 'pending',
+    )
   }
 
   readonly #lines = lazy(() => {

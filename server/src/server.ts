@@ -88,7 +88,11 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   }
 
   /** One bad file, one bad request: it is logged, answered with nothing, and the server goes on. */
-  function guard<P, R>(name: string, nothing: R, answer: (params: P) => R): (params: P, token?: CancellationToken) => R {
+  function guard<P, R>(
+    name: string,
+    nothing: R,
+    answer: (params: P) => R,
+  ): (params: P, token?: CancellationToken) => R {
     return (params, token = CancellationToken.None) => {
       if (token.isCancellationRequested) return nothing
       try {
@@ -113,7 +117,8 @@ export function startServer(connection: Connection, options: ServerOptions): voi
 
   function push(uri: string): void {
     const document = documents.get(uri)
-    if (document) void connection.sendDiagnostics({ uri, version: document.version, diagnostics: findingsOf(uri) })
+    if (document)
+      void connection.sendDiagnostics({ uri, version: document.version, diagnostics: findingsOf(uri) })
   }
 
   function schedule(uri: string): void {
@@ -132,7 +137,9 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   }
 
   async function readSettings(): Promise<void> {
-    const asked: unknown = asksConfiguration ? await connection.workspace.getConfiguration('braggline') : undefined
+    const asked: unknown = asksConfiguration
+      ? await connection.workspace.getConfiguration('braggline')
+      : undefined
     settings = readSeverities(asked)
     recheckAll()
   }
@@ -152,7 +159,9 @@ export function startServer(connection: Connection, options: ServerOptions): voi
         hoverProvider: true,
         documentSymbolProvider: { label: 'Braggline' },
         codeActionProvider: { codeActionKinds: [CodeActionKind.QuickFix, FIX_ALL] },
-        ...(pulls ? { diagnosticProvider: { interFileDependencies: false, workspaceDiagnostics: false } } : {}),
+        ...(pulls
+          ? { diagnosticProvider: { interFileDependencies: false, workspaceDiagnostics: false } }
+          : {}),
       },
     }
   })
@@ -182,7 +191,8 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   connection.languages.diagnostics.on(({ textDocument: { uri }, previousResultId }) => {
     const items = findingsOf(uri)
     const snapshot = snapshots.get(uri)
-    const resultId = snapshot && `${snapshot.version}/${snapshot.pending}/${JSON.stringify([...settings.severities])}`
+    const resultId =
+      snapshot && `${snapshot.version}/${snapshot.pending}/${JSON.stringify([...settings.severities])}`
     if (resultId !== undefined && resultId === previousResultId)
       return { kind: DocumentDiagnosticReportKind.Unchanged, resultId }
     return { kind: DocumentDiagnosticReportKind.Full, resultId, items }
@@ -204,7 +214,13 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     guard('fixes', [], ({ textDocument: { uri }, range, context }) => {
       const snapshot = snapshotOf(uri)
       if (!snapshot) return []
-      return codeActions(snapshot, { uri, version: snapshot.version, range, shown: context.diagnostics, only: context.only })
+      return codeActions(snapshot, {
+        uri,
+        version: snapshot.version,
+        range,
+        shown: context.diagnostics,
+        only: context.only,
+      })
     }),
   )
 
@@ -256,13 +272,17 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   )
   connection.onRequest(
     APPEND_TO_PATH,
-    guard('append to path', null, ({ uri, version, document, labels, newPiece }: AppendParams): AppendResult | null => {
-      const snapshot = snapshotOf(uri)
-      const analysis = snapshot && documentOf(snapshot, document)
-      if (!analysis || snapshot.version !== version) return null
-      const edits = appendToPathEdits(snapshot, analysis, labels, newPiece)
-      return edits && { version, edits }
-    }),
+    guard(
+      'append to path',
+      null,
+      ({ uri, version, document, labels, newPiece }: AppendParams): AppendResult | null => {
+        const snapshot = snapshotOf(uri)
+        const analysis = snapshot && documentOf(snapshot, document)
+        if (!analysis || snapshot.version !== version) return null
+        const edits = appendToPathEdits(snapshot, analysis, labels, newPiece)
+        return edits && { version, edits }
+      },
+    ),
   )
 
   connection.onShutdown(() => symmetry.dispose())

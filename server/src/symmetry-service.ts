@@ -25,7 +25,10 @@ export interface SearchWorker {
   postMessage(input: SymmetryInput): void
   terminate(): void
 }
-export type StartWorker = (answer: (outcome: SymmetryOutcome) => void, failed: (reason: string) => void) => SearchWorker
+export type StartWorker = (
+  answer: (outcome: SymmetryOutcome) => void,
+  failed: (reason: string) => void,
+) => SearchWorker
 
 interface Job extends SymmetryJob {
   outcome: SymmetryOutcome
@@ -87,7 +90,10 @@ export class WorkerSymmetry implements SymmetryService {
       outcome => this.#end(outcome),
       reason => this.#giveUp(reason),
     )
-    this.#timer = setTimeout(() => this.#giveUp(`the search took longer than ${this.limit / 1000} s`), this.limit)
+    this.#timer = setTimeout(
+      () => this.#giveUp(`the search took longer than ${this.limit / 1000} s`),
+      this.limit,
+    )
     this.#worker.postMessage(next.input)
   }
 

@@ -8,7 +8,10 @@ export function generatedFile(lines: number): string {
     state = (state * 1103515245 + 12345) % 2147483648
     return state / 2147483648
   }
-  const points = Array.from({ length: 6 }, (_, i) => `  P${i}: [${(i / 16).toFixed(4)}, ${(i / 24).toFixed(4)}, 0.25]`)
+  const points = Array.from(
+    { length: 6 },
+    (_, i) => `  P${i}: [${(i / 16).toFixed(4)}, ${(i / 24).toFixed(4)}, 0.25]`,
+  )
   const tail = ['points:', ...points, 'path: P0 – P1 – P2 | P3 – P4 – P5', 'mesh:', '  divisions: [2, 2, 2]']
   const atoms = lines - tail.length - 9
   const cells = Math.ceil(Math.cbrt(atoms + 1))

@@ -31,7 +31,14 @@ for (const name of files) {
     const samples = [...(await bench.run())].sort((a, b) => a - b)
     const middle = samples.length >> 1
     const median = samples.length % 2 ? samples[middle] : (samples[middle - 1] + samples[middle]) / 2
-    console.log(JSON.stringify({ name: bench.name, median: Number(median.toPrecision(4)), unit: bench.unit, n: samples.length }))
+    console.log(
+      JSON.stringify({
+        name: bench.name,
+        median: Number(median.toPrecision(4)),
+        unit: bench.unit,
+        n: samples.length,
+      }),
+    )
   }
 }
 process.exit(0)

@@ -20,37 +20,107 @@ const at = (text: string, x: number) => Math.floor(x * text.length)
 
 /** Bytes: cut a run out, put something in, double a run. */
 const bytes: fc.Arbitrary<Edit> = fc.oneof(
-  fc.tuple(place, fc.nat(12)).map(([x, n]): Edit => text => text.slice(0, at(text, x)) + text.slice(at(text, x) + n)),
-  fc.tuple(place, fc.string({ unit: 'binary', maxLength: 6 })).map(([x, s]): Edit => text => text.slice(0, at(text, x)) + s + text.slice(at(text, x))),
-  fc.tuple(place, fc.constantFrom('[', ']', '{', '}', ':', '- ', '&a ', '*a', '|', '–', '\t', '"', '#', '\u0000', '\ud800', '---\n')).map(([x, s]): Edit => text => text.slice(0, at(text, x)) + s + text.slice(at(text, x))),
-  fc.tuple(place, fc.nat(40)).map(([x, n]): Edit => text => text.slice(0, at(text, x) + n) + text.slice(at(text, x))),
+  fc.tuple(place, fc.nat(12)).map(
+    ([x, n]): Edit =>
+      text =>
+        text.slice(0, at(text, x)) + text.slice(at(text, x) + n),
+  ),
+  fc.tuple(place, fc.string({ unit: 'binary', maxLength: 6 })).map(
+    ([x, s]): Edit =>
+      text =>
+        text.slice(0, at(text, x)) + s + text.slice(at(text, x)),
+  ),
+  fc
+    .tuple(
+      place,
+      fc.constantFrom(
+        '[',
+        ']',
+        '{',
+        '}',
+        ':',
+        '- ',
+        '&a ',
+        '*a',
+        '|',
+        '–',
+        '\t',
+        '"',
+        '#',
+        '\u0000',
+        '\ud800',
+        '---\n',
+      ),
+    )
+    .map(
+      ([x, s]): Edit =>
+        text =>
+          text.slice(0, at(text, x)) + s + text.slice(at(text, x)),
+    ),
+  fc.tuple(place, fc.nat(40)).map(
+    ([x, n]): Edit =>
+      text =>
+        text.slice(0, at(text, x) + n) + text.slice(at(text, x)),
+  ),
 )
 /** Structure: lines and words moved between files, numbers made absurd. */
 const structure: fc.Arbitrary<Edit> = fc.oneof(
-  fc.tuple(place, fc.constantFrom(...LINES)).map(([x, line]): Edit => text => {
-    const lines = text.split('\n')
-    lines.splice(Math.floor(x * lines.length), 0, line)
-    return lines.join('\n')
-  }),
-  fc.tuple(place, fc.nat(3)).map(([x, n]): Edit => text => {
-    const lines = text.split('\n')
-    lines.splice(Math.floor(x * lines.length), n)
-    return lines.join('\n')
-  }),
-  fc.tuple(place, fc.constantFrom(...WORDS)).map(([x, word]): Edit => text => {
-    const words = text.match(/[\p{L}\d./'²-]+|[^\p{L}\d]/gu) ?? []
-    words[Math.floor(x * words.length)] = word
-    return words.join('')
-  }),
-  fc.tuple(place, fc.constantFrom('0', '-1', '1e308', '1e-300', '1/0', '0.3333', 'sqrt(-1)', 'a', '9007199254740993', '1e5')).map(([x, number]): Edit => text => {
-    const numbers = [...text.matchAll(/\d[\d./]*/g)]
-    const found = numbers[Math.floor(x * numbers.length)]
-    return found ? text.slice(0, found.index) + number + text.slice(found.index + found[0].length) : text
-  }),
+  fc.tuple(place, fc.constantFrom(...LINES)).map(
+    ([x, line]): Edit =>
+      text => {
+        const lines = text.split('\n')
+        lines.splice(Math.floor(x * lines.length), 0, line)
+        return lines.join('\n')
+      },
+  ),
+  fc.tuple(place, fc.nat(3)).map(
+    ([x, n]): Edit =>
+      text => {
+        const lines = text.split('\n')
+        lines.splice(Math.floor(x * lines.length), n)
+        return lines.join('\n')
+      },
+  ),
+  fc.tuple(place, fc.constantFrom(...WORDS)).map(
+    ([x, word]): Edit =>
+      text => {
+        const words = text.match(/[\p{L}\d./'²-]+|[^\p{L}\d]/gu) ?? []
+        words[Math.floor(x * words.length)] = word
+        return words.join('')
+      },
+  ),
+  fc
+    .tuple(
+      place,
+      fc.constantFrom(
+        '0',
+        '-1',
+        '1e308',
+        '1e-300',
+        '1/0',
+        '0.3333',
+        'sqrt(-1)',
+        'a',
+        '9007199254740993',
+        '1e5',
+      ),
+    )
+    .map(
+      ([x, number]): Edit =>
+        text => {
+          const numbers = [...text.matchAll(/\d[\d./]*/g)]
+          const found = numbers[Math.floor(x * numbers.length)]
+          return found
+            ? text.slice(0, found.index) + number + text.slice(found.index + found[0].length)
+            : text
+        },
+    ),
 )
 
 const edited = (edit: fc.Arbitrary<Edit>) =>
-  fc.tuple(fc.constantFrom(...FILES), fc.array(edit, { minLength: 1, maxLength: 5 })).map(([text, edits]) => edits.reduce((t, e) => e(t), text))
+  fc
+    .tuple(fc.constantFrom(...FILES), fc.array(edit, { minLength: 1, maxLength: 5 }))
+    .map(([text, edits]) => edits.reduce((t, e) => e(t), text))
 
 test.each([
   ['bytes', bytes],

@@ -25,7 +25,11 @@ export const MODERN: ClientCapabilities = {
     codeAction: { codeActionLiteralSupport: { codeActionKind: { valueSet: ['quickfix', 'source.fixAll'] } } },
     documentSymbol: { hierarchicalDocumentSymbolSupport: true },
   },
-  workspace: { configuration: true, workspaceEdit: { documentChanges: true }, diagnostics: { refreshSupport: true } },
+  workspace: {
+    configuration: true,
+    workspaceEdit: { documentChanges: true },
+    diagnostics: { refreshSupport: true },
+  },
 }
 
 /** An editor that knows next to nothing: findings must be pushed to it. */
@@ -47,9 +51,14 @@ export class Client {
     { uri = 'file:///crystal.lattice.yaml', checks = {} as Record<string, string> } = {},
   ): Promise<Client & { initialized: InitializeResult }> {
     const server = spawn(process.execPath, [CLI, 'serve', '--stdio'], { stdio: ['pipe', 'pipe', 'inherit'] })
-    const connection = createProtocolConnection(new StreamMessageReader(server.stdout!), new StreamMessageWriter(server.stdin!))
+    const connection = createProtocolConnection(
+      new StreamMessageReader(server.stdout!),
+      new StreamMessageWriter(server.stdin!),
+    )
     const client = new Client(server, connection, uri)
-    connection.onRequest('workspace/configuration', ({ items }: { items: unknown[] }) => items.map(() => ({ checks })))
+    connection.onRequest('workspace/configuration', ({ items }: { items: unknown[] }) =>
+      items.map(() => ({ checks })),
+    )
     connection.onRequest('client/registerCapability', () => null)
     connection.onRequest('workspace/diagnostic/refresh', () => null)
     connection.onNotification('textDocument/publishDiagnostics', (params: PublishDiagnosticsParams) => {
@@ -120,5 +129,8 @@ export function marked(text: string): { text: string; position: { line: number; 
   const at = text.indexOf('$0')
   if (at < 0) throw new Error('no $0 in the text')
   const before = text.slice(0, at).split('\n')
-  return { text: text.replace('$0', ''), position: { line: before.length - 1, character: before.at(-1)!.length } }
+  return {
+    text: text.replace('$0', ''),
+    position: { line: before.length - 1, character: before.at(-1)!.length },
+  }
 }

@@ -13,7 +13,8 @@ afterEach(async () => {
   client = undefined
 })
 
-const OUTSIDE = 'lattice: {bravais: cF, a: 5.43}\npoints:\n  Q: [0.9, 0, 0]\npath: Γ – X\nchecks: {path-misses: off}\n'
+const OUTSIDE =
+  'lattice: {bravais: cF, a: 5.43}\npoints:\n  Q: [0.9, 0, 0]\npath: Γ – X\nchecks: {path-misses: off}\n'
 
 describe('findings', () => {
   test('a client that pulls gets them when it asks, and none are pushed', async () => {
@@ -21,7 +22,10 @@ describe('findings', () => {
     await client.open(OUTSIDE)
     const found = await client.pull()
     expect(found.map(({ code, range }) => ({ code, range }))).toEqual([
-      { code: 'point-outside-zone', range: { start: { line: 2, character: 5 }, end: { line: 2, character: 16 } } },
+      {
+        code: 'point-outside-zone',
+        range: { start: { line: 2, character: 5 }, end: { line: 2, character: 16 } },
+      },
     ])
     expect(client.pushed).toEqual([])
   })
@@ -30,7 +34,9 @@ describe('findings', () => {
     client = await Client.start(MODERN)
     await client.open(OUTSIDE)
     const first = await client.request<{ kind: string; resultId: string }>('textDocument/diagnostic')
-    const second = await client.request<{ kind: string }>('textDocument/diagnostic', { previousResultId: first.resultId })
+    const second = await client.request<{ kind: string }>('textDocument/diagnostic', {
+      previousResultId: first.resultId,
+    })
     expect([first.kind, second.kind]).toEqual(['full', 'unchanged'])
   })
 
@@ -55,10 +61,12 @@ describe('findings', () => {
   test('`braggline/checked` counts the findings of the version asked for', async () => {
     client = await Client.start(MODERN)
     await client.open(OUTSIDE)
-    expect(await client.connection.sendRequest('braggline/checked', { uri: client.uri, version: 1 })).toEqual({
-      version: 1,
-      findings: 1,
-    })
+    expect(await client.connection.sendRequest('braggline/checked', { uri: client.uri, version: 1 })).toEqual(
+      {
+        version: 1,
+        findings: 1,
+      },
+    )
   })
 })
 
@@ -113,7 +121,9 @@ describe('fixes', () => {
 
   test('"fix all" needs no finding to be shown', async () => {
     client = await Client.start(MODERN)
-    await client.open('lattice: {bravais: hP, a: 3, c: 5}\npoints:\n  K: [0.333, 0.333, 0]\npath: recommended\n')
+    await client.open(
+      'lattice: {bravais: hP, a: 3, c: 5}\npoints:\n  K: [0.333, 0.333, 0]\npath: recommended\n',
+    )
     const actions = await client.request<CodeAction[]>('textDocument/codeAction', {
       range: { start: { line: 0, character: 0 }, end: { line: 0, character: 0 } },
       context: { diagnostics: [], only: ['source.fixAll'] },
@@ -126,7 +136,9 @@ describe('fixes', () => {
 
 test('the outline holds the parts in the order of the text', async () => {
   client = await Client.start(MODERN)
-  await client.open('title: T\nlattice: {bravais: cF, a: 5.43}\natoms:\n  - Si: [0, 0, 0]\npath: Γ – X | Γ – L\n')
+  await client.open(
+    'title: T\nlattice: {bravais: cF, a: 5.43}\natoms:\n  - Si: [0, 0, 0]\npath: Γ – X | Γ – L\n',
+  )
   const outline = await client.request<DocumentSymbol[]>('textDocument/documentSymbol')
   expect(outline.map(({ name, detail }) => [name, detail])).toEqual([
     ['title', 'T'],
@@ -154,8 +166,14 @@ describe('the server survives', () => {
     ['nothing', ''],
     ['no YAML', '\t: {[\u0000'],
     ['deep nesting', '['.repeat(5000)],
-    ['an alias bomb', `a: &a [1]\n${Array.from({ length: 30 }, (_, i) => `${'b'.repeat(i + 1)}: &x${i} [${i ? `*x${i - 1}, *x${i - 1}` : '*a, *a'}]`).join('\n')}\n`],
-    ['conflict markers', '<<<<<<< HEAD\nlattice: {bravais: cF, a: 5}\n=======\nlattice: {bravais: cI, a: 5}\n>>>>>>> other\n'],
+    [
+      'an alias bomb',
+      `a: &a [1]\n${Array.from({ length: 30 }, (_, i) => `${'b'.repeat(i + 1)}: &x${i} [${i ? `*x${i - 1}, *x${i - 1}` : '*a, *a'}]`).join('\n')}\n`,
+    ],
+    [
+      'conflict markers',
+      '<<<<<<< HEAD\nlattice: {bravais: cF, a: 5}\n=======\nlattice: {bravais: cI, a: 5}\n>>>>>>> other\n',
+    ],
   ])('%s', async (_, text) => {
     client = await Client.start(MODERN)
     await client.open(text)
@@ -178,7 +196,11 @@ describe('the zone view', () => {
   test('is given the picture and the bands of a version', async () => {
     client = await Client.start(MODERN)
     await client.open(CUBIC)
-    const answer = await ask<{ version: number; scene: { zone: { faces: unknown[] } }; documents: unknown[] }>('scene')
+    const answer = await ask<{
+      version: number
+      scene: { zone: { faces: unknown[] } }
+      documents: unknown[]
+    }>('scene')
     expect(answer.version).toBe(1)
     expect(answer.scene.zone.faces).toHaveLength(14)
     expect(answer.documents).toHaveLength(1)

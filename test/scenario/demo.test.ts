@@ -55,6 +55,8 @@ describe('drafts', () => {
   test.each(Object.entries(DRAFTS))('%s', (name, expected) => {
     const text = read('drafts', `${name}.lattice.yaml`)
     const found = snapshotOf(text).findings
-    expect(found.map(({ rule, at }) => `${rule} @ ${text.slice(...at).replace(/\s+/g, ' ')}`)).toEqual(expected)
+    expect(found.map(({ rule, at }) => `${rule} @ ${text.slice(...at).replace(/\s+/g, ' ')}`)).toEqual(
+      expected,
+    )
   })
 })

@@ -15,7 +15,9 @@ export function runChecks(
 ): Reported[] {
   const context = { ...subject, ruleIds: new Set(checks.map(check => check.id)) }
   const found = checks.flatMap(check => findingsOf(check, context))
-  const hidden = new Set(found.flatMap(finding => (finding.hides ?? []).map(({ rule, subject }) => `${rule}/${subject}`)))
+  const hidden = new Set(
+    found.flatMap(finding => (finding.hides ?? []).map(({ rule, subject }) => `${rule}/${subject}`)),
+  )
   const reported: Reported[] = []
   for (const finding of found) {
     if (finding.subject !== undefined && hidden.has(`${finding.rule}/${finding.subject}`)) continue

@@ -57,7 +57,9 @@ function describe({ crystal }: DocumentAnalysis, place: Place): string | undefin
 }
 
 const table = (head: readonly string[], rows: readonly (readonly string[])[]): string =>
-  [head, head.map((_, i) => (i > 0 && head.length > 2 ? '---:' : '---')), ...rows].map(cells => `| ${cells.join(' | ')} |`).join('\n')
+  [head, head.map((_, i) => (i > 0 && head.length > 2 ? '---:' : '---')), ...rows]
+    .map(cells => `| ${cells.join(' | ')} |`)
+    .join('\n')
 
 const SUBSCRIPT = ['₁', '₂', '₃']
 const NAMES = { 1: ['length'], 2: ['area'], 3: ['volume'] } as const

@@ -8,11 +8,24 @@ import type { BravaisType } from '../crystal/bravais.ts'
 import { kRotations } from '../crystal/kspace.ts'
 import type { Dimension, Lattice } from '../crystal/lattice.ts'
 import { emptySlab } from '../crystal/neighbours.ts'
-import { groupOnLattice, type LatticeType, latticeType, namedSpaceGroup, type Symmetry } from '../crystal/symmetry.ts'
+import {
+  groupOnLattice,
+  type LatticeType,
+  latticeType,
+  namedSpaceGroup,
+  type Symmetry,
+} from '../crystal/symmetry.ts'
 import { IN_ANGSTROM, type Unit } from '../crystal/units.ts'
 import { add, combine, distance, inverse, type Mat3, scale, subtract, type Vec3 } from '../crystal/vector.ts'
 import { buildZone, type Zone } from '../crystal/zone.ts'
-import type { AtomEntry, LatticeDocument, PathPiece, PathSegment, PointEntry, VectorValue } from '../format/model.ts'
+import type {
+  AtomEntry,
+  LatticeDocument,
+  PathPiece,
+  PathSegment,
+  PointEntry,
+  VectorValue,
+} from '../format/model.ts'
 import { buildLattice, type LatticeBuild } from './lattice-build.ts'
 import { lazy } from './lazy.ts'
 import type { Rotations, SymmetryOutcome, Workshop } from './workshop.ts'
@@ -136,7 +149,15 @@ export class Crystal {
       const cartesian = this.atomCartesian(stated)
       const key = `${entry.element.value}/${entry.name?.value ?? ''}`
       const kind = kinds.get(key) ?? kinds.set(key, kinds.size).size - 1
-      placed.push({ entry, index, element: entry.element.value, kind, stated, cartesian, fraction: combine(cartesian, toPrimitive) })
+      placed.push({
+        entry,
+        index,
+        element: entry.element.value,
+        kind,
+        stated,
+        cartesian,
+        fraction: combine(cartesian, toPrimitive),
+      })
     })
     return placed
   })
@@ -159,7 +180,9 @@ export class Crystal {
     if (!lattice) return [undefined, undefined, undefined]
     const { primitive: basis, dimension } = lattice
     const positions = this.atoms.map(atom => atom.fraction)
-    return ([0, 1, 2] as const).map(i => (i < dimension ? emptySlab({ basis, dimension, positions }, i) : undefined))
+    return ([0, 1, 2] as const).map(i =>
+      i < dimension ? emptySlab({ basis, dimension, positions }, i) : undefined,
+    )
   })
   get emptySlabs(): readonly (number | undefined)[] {
     return this.#emptySlabs()
@@ -221,12 +244,18 @@ export class Crystal {
     return combine(fraction, this.lattice!.reciprocal)
   }
 
-  readonly #outcome = lazy((): SymmetryOutcome =>
-    this.atomsComplete ? this.searchWith(this.atoms) : { state: 'failed', reason: 'an atom could not be read' },
+  readonly #outcome = lazy(
+    (): SymmetryOutcome =>
+      this.atomsComplete
+        ? this.searchWith(this.atoms)
+        : { state: 'failed', reason: 'an atom could not be read' },
   )
 
   /** The search for the symmetry of this lattice with the atoms as they are, or as another reading has them. */
-  searchWith(atoms: readonly Pick<PlacedAtom, 'fraction' | 'kind'>[], tolerance = this.tolerance): SymmetryOutcome {
+  searchWith(
+    atoms: readonly Pick<PlacedAtom, 'fraction' | 'kind'>[],
+    tolerance = this.tolerance,
+  ): SymmetryOutcome {
     const { lattice } = this
     if (!lattice) return { state: 'failed', reason: 'the lattice could not be built' }
     const numbers = new Float64Array(10 + 4 * atoms.length)
@@ -261,7 +290,13 @@ export class Crystal {
     const { symmetry, document } = this
     if (!symmetry) return undefined
     const claimed = document.atoms ? undefined : this.#claimedRotations()
-    return claimed ?? { matrices: symmetry.rotations, pointGroup: symmetry.pointGroup, spaceGroup: symmetry.spaceGroup?.number }
+    return (
+      claimed ?? {
+        matrices: symmetry.rotations,
+        pointGroup: symmetry.pointGroup,
+        spaceGroup: symmetry.spaceGroup?.number,
+      }
+    )
   })
   /** The crystal's rotations: of lattice and atoms; without atoms of the claimed space group, else of the lattice. */
   get rotations(): Rotations | undefined {
@@ -272,10 +307,14 @@ export class Crystal {
     const { lattice, type, document } = this
     const group = document.spaceGroup && namedSpaceGroup(document.spaceGroup.value)
     if (!group || !lattice || !type || lattice.dimension !== 3) return undefined
-    return this.workshop.claims.get(String(document.spaceGroup!.value), flat(lattice.primitive, this.tolerance), () => {
-      const matrices = groupOnLattice(group, type, lattice.conventionalFromPrimitive)
-      return matrices && { matrices, pointGroup: group.pointGroup, spaceGroup: group.number }
-    })
+    return this.workshop.claims.get(
+      String(document.spaceGroup!.value),
+      flat(lattice.primitive, this.tolerance),
+      () => {
+        const matrices = groupOnLattice(group, type, lattice.conventionalFromPrimitive)
+        return matrices && { matrices, pointGroup: group.pointGroup, spaceGroup: group.number }
+      },
+    )
   }
 
   /** The k-group of the crystal: distinct matrices on columns of primitive k-fractions. */
@@ -315,14 +354,23 @@ export class Crystal {
     return this.workshop.matches.get(
       `${book}/${lattice.dimension}/${spaceGroup ?? pointGroup}`,
       flat(lattice.primitive, tolerance),
-      () => matchBook(book, lattice.primitive, lattice.dimension, { tolerance, spaceGroup, pointGroup, latticeType: type }),
+      () =>
+        matchBook(book, lattice.primitive, lattice.dimension, {
+          tolerance,
+          spaceGroup,
+          pointGroup,
+          latticeType: type,
+        }),
     )
   }
 
   readonly #bookPoints = lazy((): ReadonlyMap<string, PlacedPoint> => {
     const points = this.book?.points ?? []
     return new Map(
-      points.map(({ label, fraction }) => [label, { label, origin: 'book', fraction, cartesian: this.cartesianOf(fraction) }]),
+      points.map(({ label, fraction }) => [
+        label,
+        { label, origin: 'book', fraction, cartesian: this.cartesianOf(fraction) },
+      ]),
     )
   })
   /** The points of the label book in force. */
@@ -342,22 +390,35 @@ export class Crystal {
       const known = placed.get(label)
       if (known || open.has(label)) return known
       open.add(label)
-      const cartesian = entry.between ? this.#between(entry.between, resolve) : this.#stated(entry.coordinates)
+      const cartesian = entry.between
+        ? this.#between(entry.between, resolve)
+        : this.#stated(entry.coordinates)
       open.delete(label)
       if (!cartesian) return undefined
-      const point: PlacedPoint = { label, origin: 'file', entry, cartesian, fraction: this.fractionOf(cartesian) }
+      const point: PlacedPoint = {
+        label,
+        origin: 'file',
+        entry,
+        cartesian,
+        fraction: this.fractionOf(cartesian),
+      }
       placed.set(label, point)
       return point
     }
     for (const label of entries.keys()) resolve(label)
-    return new Map([...entries.keys()].flatMap(label => (placed.has(label) ? [[label, placed.get(label)!]] : [])))
+    return new Map(
+      [...entries.keys()].flatMap(label => (placed.has(label) ? [[label, placed.get(label)!]] : [])),
+    )
   })
   /** The file's own points that could be placed, in the order of the file. */
   get points(): ReadonlyMap<string, PlacedPoint> {
     return this.#filePoints()
   }
 
-  #between(between: NonNullable<PointEntry['between']>, resolve: (label: string) => PlacedPoint | undefined): Vec3 | undefined {
+  #between(
+    between: NonNullable<PointEntry['between']>,
+    resolve: (label: string) => PlacedPoint | undefined,
+  ): Vec3 | undefined {
     const from = resolve(between.ends[0].label)
     const to = resolve(between.ends[1].label)
     if (!from || !to || !between.fraction) return undefined

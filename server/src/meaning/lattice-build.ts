@@ -1,6 +1,12 @@
 /** From the `lattice` block to a `Lattice`, or to the reason why there is none. */
 import { BRAVAIS, type CompletedCell, completeCell, type Contradiction } from '../crystal/bravais.ts'
-import { type Dimension, type Lattice, type LatticeFault, latticeFromCell, latticeFromVectors } from '../crystal/lattice.ts'
+import {
+  type Dimension,
+  type Lattice,
+  type LatticeFault,
+  latticeFromCell,
+  latticeFromVectors,
+} from '../crystal/lattice.ts'
 import { norm, type Vec3 } from '../crystal/vector.ts'
 import type { LatticeDocument, ParameterName, VectorValue } from '../format/model.ts'
 
@@ -64,7 +70,9 @@ function fromType(document: LatticeDocument): LatticeBuild {
   const type = block.bravais?.value
   if (!type) return {}
   const { dimension, centring } = BRAVAIS[type]
-  const given = Object.fromEntries(Object.entries(block.parameters).map(([name, number]) => [name, number!.value]))
+  const given = Object.fromEntries(
+    Object.entries(block.parameters).map(([name, number]) => [name, number!.value]),
+  )
   const completed = completeCell(type, given)
   if ('missing' in completed) return { dimension, missing: completed.missing }
   if ('miss' in completed) return { dimension, fault: { fault: 'angles', miss: completed.miss } }

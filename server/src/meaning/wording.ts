@@ -7,7 +7,19 @@ import { formatNumber, recogniseFraction } from '../format/numbers.ts'
 const DIGITS = 4
 
 const MINUS = '−'
-const SUPERSCRIPTS: Record<string, string> = { '-': '⁻', 0: '⁰', 1: '¹', 2: '²', 3: '³', 4: '⁴', 5: '⁵', 6: '⁶', 7: '⁷', 8: '⁸', 9: '⁹' }
+const SUPERSCRIPTS: Record<string, string> = {
+  '-': '⁻',
+  0: '⁰',
+  1: '¹',
+  2: '²',
+  3: '³',
+  4: '⁴',
+  5: '⁵',
+  6: '⁶',
+  7: '⁷',
+  8: '⁸',
+  9: '⁹',
+}
 
 /** Fixed digits in the ordinary range, powers of ten outside it. Uses a true minus. */
 export function plain(x: number, digits = DIGITS): string {
@@ -23,8 +35,10 @@ export function plain(x: number, digits = DIGITS): string {
   return (text === '-0' ? '0' : text).replace('-', MINUS)
 }
 
-export const length = (x: number, unit: Unit, digits = DIGITS): string => `${plain(x, digits)} ${SYMBOL[unit]}`
-export const inverseLength = (x: number, unit: Unit, digits = DIGITS): string => `${plain(x, digits)} ${INVERSE_SYMBOL[unit]}`
+export const length = (x: number, unit: Unit, digits = DIGITS): string =>
+  `${plain(x, digits)} ${SYMBOL[unit]}`
+export const inverseLength = (x: number, unit: Unit, digits = DIGITS): string =>
+  `${plain(x, digits)} ${INVERSE_SYMBOL[unit]}`
 export const degrees = (x: number): string => `${plain(x, 3)}°`
 const POWER = ['', '', '²', '³']
 /** A length, an area or a volume. */
@@ -46,7 +60,9 @@ export function fraction(x: number): string {
 const FRACTION_TOLERANCE = 1e-9
 
 /** A vector of fractions as the file writes it: `[1/2, 0, 1/2]`, with as many components as the crystal has dimensions. */
-export const fractions = (v: Vec3 | readonly number[], dimension = 3): string => `[${v.slice(0, dimension).map(fraction).join(', ')}]`
+export const fractions = (v: Vec3 | readonly number[], dimension = 3): string =>
+  `[${v.slice(0, dimension).map(fraction).join(', ')}]`
 
 /** `one thing`, `2 things`. */
-export const count = (n: number, thing: string, things = `${thing}s`): string => `${n} ${n === 1 ? thing : things}`
+export const count = (n: number, thing: string, things = `${thing}s`): string =>
+  `${n} ${n === 1 ? thing : things}`

@@ -11,5 +11,7 @@ test.each(CHECKS)('the page of $id is up to date (npm run generate)', check => {
 
 test('the list is up to date, and no page is left of a rule that is gone', () => {
   expect(read('README.md')).toBe(contents(CHECKS))
-  expect(readdirSync('docs/rules').sort()).toEqual([...CHECKS.map(({ id }) => `${id}.md`), 'README.md'].sort())
+  expect(readdirSync('docs/rules').sort()).toEqual(
+    [...CHECKS.map(({ id }) => `${id}.md`), 'README.md'].sort(),
+  )
 })

@@ -32,7 +32,11 @@ export const keyMissing: Check = {
         {
           title: `Insert ${names}`,
           safe: false,
-          edits: insertKeys(text, block, missing.map(name => [name, ''] as const)),
+          edits: insertKeys(
+            text,
+            block,
+            missing.map(name => [name, ''] as const),
+          ),
         },
       ],
     }

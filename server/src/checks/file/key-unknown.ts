@@ -17,7 +17,8 @@ export const keyUnknown: Check = {
   *run(context) {
     yield* decoded.run(context)
     const { document, file, ruleIds } = context
-    for (const [value, { key }] of document.checks) if (!ruleIds.has(value)) yield unknownRule({ value, at: key }, ruleIds)
+    for (const [value, { key }] of document.checks)
+      if (!ruleIds.has(value)) yield unknownRule({ value, at: key }, ruleIds)
     for (const { rules } of file.allowances) {
       for (const rule of rules) {
         const here = rule.at[0] >= document.at[0] && rule.at[1] <= document.at[1]
