@@ -2,7 +2,9 @@
 import fc from 'fast-check'
 import { describe, expect, test } from 'vitest'
 import { decode, decodeWhole } from '../../server/src/format/decode.ts'
-import type { DecodedFile, Span } from '../../server/src/format/model.ts'
+import { applyEdits } from '../../server/src/format/edits.ts'
+import type { DecodedFile, Problem, Span } from '../../server/src/format/model.ts'
+import { findRuns } from '../../server/src/format/rows.ts'
 import { shuffled, spiced, spicy, spoiled } from './format-samples.ts'
 
 const RUNS = Number(process.env.FUZZ_RUNS ?? 250)
@@ -43,8 +45,7 @@ function validate(text: string, file: DecodedFile): void {
       `${name} ${span} in ${JSON.stringify(text)}`,
     ).toBe(true)
   }
-  const all = [...file.problems, ...file.documents.flatMap(document => document.problems)]
-  for (const problem of all) {
+  for (const problem of allProblems(file)) {
     expect(RULES).toContain(problem.rule)
     expect(problem.message, problem.message).toMatch(/^\S[^\n]*[.?]$/)
     for (const fix of problem.fixes ?? []) expect(fix.title).toMatch(/^[A-Z]/)
@@ -63,6 +64,11 @@ function validate(text: string, file: DecodedFile): void {
     for (const { value, at } of rules) expect(text.slice(...at)).toBe(value)
   }
 }
+
+const allProblems = (file: DecodedFile): readonly Problem[] => [
+  ...file.problems,
+  ...file.documents.flatMap(document => document.problems),
+]
 
 /** JSON shows maps as pairs, so that two files can be compared as a whole. */
 const asJson = (file: DecodedFile): string =>
@@ -91,10 +97,39 @@ describe.each([
 })
 
 test('the short way agrees with the long one on long lists, whatever stands in and around them', () => {
+  let cut = 0
+  let kept = 0
   fc.assert(
     fc.property(spiced, text => {
-      expect(asJson(decode(text))).toBe(asJson(decodeWhole(text)))
+      const short = decode(text)
+      expect(asJson(short)).toBe(asJson(decodeWhole(text)))
+      if (findRuns(text).length === 0) return
+      cut++
+      if (short.documents.some(({ atoms }) => (atoms?.items.length ?? 0) > 8)) kept++
     }),
-    { numRuns: RUNS },
+    { numRuns: 2 * RUNS },
   )
+  expect(cut).toBeGreaterThan(RUNS / 2)
+  expect(kept).toBeGreaterThan(RUNS / 8)
+})
+
+test('a fix can be applied, and breaks nothing that was not broken', () => {
+  let applied = 0
+  fc.assert(
+    fc.property(fc.oneof(spoiled, shuffled, spiced), text => {
+      for (const { fixes = [] } of allProblems(decode(text))) {
+        for (const { edits } of fixes) {
+          const after = allProblems(decode(applyEdits(text, edits)))
+          if (allProblems(decode(text)).every(({ rule }) => rule !== 'yaml-syntax'))
+            expect(
+              after.filter(({ rule }) => rule === 'yaml-syntax'),
+              `${text}\n⇒\n${applyEdits(text, edits)}`,
+            ).toEqual([])
+          applied++
+        }
+      }
+    }),
+    { numRuns: 2 * RUNS },
+  )
+  expect(applied).toBeGreaterThan(RUNS / 3)
 })

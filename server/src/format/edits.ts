@@ -64,14 +64,15 @@ export function insertKeys(text: string, target: Target, added: readonly NewKey[
     return []
   const isFlow = text[contents[0]] === '{'
   const order = usualOrder([...existing.map(({ name }) => name), ...added.map(([name]) => name)])
-  if (existing.length === 0) return [intoEmpty(text, target, contents, isFlow, added)]
+  const sorted = [...added].sort(([a], [b]) => order(a) - order(b))
+  if (existing.length === 0) return [intoEmpty(text, target, contents, isFlow, sorted)]
   const groups = new Map<Existing | undefined, NewKey[]>()
-  for (const key of [...added].sort(([a], [b]) => order(a) - order(b))) {
+  for (const key of sorted) {
     const before = existing.filter(({ name }) => order(name) <= order(key[0])).at(-1)
     groups.set(before, [...(groups.get(before) ?? []), key])
   }
   return [...groups].map(([before, keys]) =>
-    isFlow ? intoFlow(existing, before, keys) : intoBlock(text, existing, before, keys),
+    isFlow ? intoFlow(existing, before, keys) : intoBlock(text, blockStart(text, contents[0]), before, keys),
   )
 }
 
@@ -98,6 +99,7 @@ function usualOrder(names: readonly string[]): (name: string) => number {
 
 const written = ([name, value]: NewKey): string => `${scalarText(name)}: ${value}`
 
+/** Into a mapping without a known key: it may hold others, or nothing at all. */
 function intoEmpty(
   text: string,
   target: Target,
@@ -106,13 +108,14 @@ function intoEmpty(
   added: readonly NewKey[],
 ): TextEdit {
   const keys = added.map(written)
-  if (isFlow) return { at: [contents[0] + 1, contents[0] + 1], text: keys.join(', ') }
-  const end = contents[1]
+  const [start, end] = contents
+  if (isFlow)
+    return insertion(start + 1, keys.join(', ') + (/^\s*\}/.test(text.slice(start + 1)) ? '' : ', '))
+  if (end > start) return beforeBlock(text, blockStart(text, start), added)
   if (!('contents' in target))
-    return { at: contents, text: `${/\s/.test(text[contents[0] - 1] ?? '') ? '' : ' '}{${keys.join(', ')}}` }
+    return insertion(start, `${/\s/.test(text[start - 1] ?? '') ? '' : ' '}{${keys.join(', ')}}`)
   const feed = lineBreak(text)
-  const start = end > 0 && text[end - 1] !== '\n' ? feed : ''
-  return { at: [end, end], text: `${start}${keys.join(feed)}${feed}` }
+  return insertion(end, `${end > 0 && text[end - 1] !== '\n' ? feed : ''}${keys.join(feed)}${feed}`)
 }
 
 function intoFlow(
@@ -126,30 +129,37 @@ function intoFlow(
   return { at: [at, at], text: next ? `${keys}, ` : `, ${keys}` }
 }
 
+/** Where a block begins: at its first key, or at an anchor, tag or question mark before that. */
+function blockStart(text: string, first: number): number {
+  const start = lineStart(text, first)
+  const property = text.slice(start, first).search(/[&!]/)
+  return property < 0 ? first : start + property
+}
+
 function intoBlock(
   text: string,
-  existing: readonly Existing[],
+  first: number,
   before: Existing | undefined,
   added: readonly NewKey[],
 ): TextEdit {
-  const indent = columnText(text, existing[0].key[0])
+  if (!before) return beforeBlock(text, first, added)
   const feed = lineBreak(text)
-  const lines = added.map(key => `${indent}${written(key)}`)
-  if (!before) {
-    const first = existing[0].key[0]
-    const start = lineStart(text, first)
-    if (/^[ \t]*$/.test(text.slice(start, first)))
-      return insertion(start, lines.map(line => line + feed).join(''))
-    // The first key shares its line with a dash: what is inserted goes between the two.
-    return insertion(first, `${lines.join(feed).trimStart()}${feed}${indent}`)
-  }
-  const end = Math.max(before.key[1], before.at[1])
-  const at = nextLine(text, end)
+  const lines = added.map(key => `${columnText(text, first)}${written(key)}`)
+  const at = nextLine(text, Math.max(before.key[1], before.at[1]))
   const isLast = at === text.length && !text.endsWith('\n')
-  return {
-    at: [at, at],
-    text: isLast ? lines.map(line => feed + line).join('') : lines.map(line => line + feed).join(''),
-  }
+  return insertion(at, lines.map(line => (isLast ? feed + line : line + feed)).join(''))
+}
+
+/** Before the first key of a block. */
+function beforeBlock(text: string, first: number, added: readonly NewKey[]): TextEdit {
+  const feed = lineBreak(text)
+  const indent = columnText(text, first)
+  const lines = added.map(key => `${indent}${written(key)}`)
+  const start = lineStart(text, first)
+  if (/^[ \t]*$/.test(text.slice(start, first)))
+    return insertion(start, lines.map(line => line + feed).join(''))
+  // It shares its line with a dash: what is inserted goes between the two.
+  return insertion(first, `${lines.join(feed).trimStart()}${feed}${indent}`)
 }
 
 /** Blanks up to the column of an offset. */
@@ -191,7 +201,11 @@ export function removeItems(
 export function replaceValue(text: string, { key, at }: Pick<Entry, 'key' | 'at'>, value: string): TextEdit {
   const gap = text.slice(key[1], at[0])
   const colon = gap.indexOf(':') + 1
-  if (!gap.includes('\n')) return { at, text: gap.endsWith(':') ? ` ${value}` : value }
+  if (at[0] === at[1]) {
+    const blanks = /^[ \t]*(?=\r?\n|$)/.exec(text.slice(at[1]))?.[0].length ?? 0
+    return { at: [at[0], at[1] + blanks], text: gap.endsWith(':') ? ` ${value}` : value }
+  }
+  if (!gap.includes('\n')) return { at, text: value }
   const comment = /^[ \t]+#.*$/m.exec(gap.slice(colon).split('\n')[0])?.[0].trimEnd() ?? ''
   return { at: [key[1] + colon, at[1]], text: ` ${value}${comment}` }
 }

@@ -142,7 +142,7 @@ function readMeshes(
   key: Span,
 ): MeshValue[] | undefined {
   if (node.kind !== 'mapping') {
-    const fixes = node.kind === 'list' ? [wrapped(node.at, 'divisions')] : []
+    const fixes = node.kind === 'list' && node.flow ? [wrapped(node.at, 'divisions')] : []
     const example = `\`mesh: ${row.example}\``
     return reader.wrong(node, `${name} is a mapping, such as ${example}, not ${kindOf(node)}.`, fixes)
   }

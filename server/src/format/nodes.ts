@@ -7,7 +7,7 @@ import type { Cuts } from './cuts.ts'
 import type { Span } from './model.ts'
 import type { AtomRow, Run } from './rows.ts'
 import { readScalar, type ScalarText, scalarEnd } from './scalar.ts'
-import { nextLine } from './text.ts'
+import { lineStart, nextLine } from './text.ts'
 
 export type Node = TextNode | ListNode | MappingNode | NothingNode
 
@@ -330,7 +330,7 @@ function blockItem(
   i: number,
 ): [number, number] {
   const start = itemStart(items[i])
-  const line = text.lastIndexOf('\n', start - 1) + 1
+  const line = lineStart(text, start)
   if (/^[ \t]*$/.test(text.slice(line, start))) return [line, nextLine(text, itemEnd(items[i]))]
   if (i > 0 || items.length < 2 || collection.offset !== start) return [start, start]
   return [start, itemStart(items[1])]

@@ -96,7 +96,7 @@ export type Placing = (from: number, to: number) => Span
  * @param place turns offsets into `text` into spans of the file.
  */
 export function parsePath(text: string, place: Placing): { pieces: PathPiece[]; faults: PathFault[] } {
-  const reader = new PathReader(place)
+  const reader = new PathReader(text, place)
   reader.read(tokens(text))
   return reader
 }
@@ -185,7 +185,10 @@ class PathReader {
   /** The last break with nothing beside it. */
   private blamed: Token | undefined
 
-  constructor(private readonly place: Placing) {}
+  constructor(
+    private readonly text: string,
+    private readonly place: Placing,
+  ) {}
 
   read(tokens: readonly Token[]): void {
     let start = 0
@@ -297,8 +300,13 @@ class PathReader {
     })
   }
 
-  private removal(token: Token): Fix {
-    return { ...this.replacement(token, ''), title: `Remove \`${token.text}\`` }
+  /** With the blanks after it, or before it where nothing follows: a line in a block must not become longer in blanks. */
+  private removal({ from, to, text }: Token): Fix {
+    const after = /^[ \t]*/.exec(this.text.slice(to))![0].length
+    const isLast = this.text.slice(to).trim() === ''
+    const before = isLast ? from - this.text.slice(0, from).trimEnd().length : 0
+    const at = this.place(from - before, isLast ? to : to + after)
+    return { title: `Remove \`${text}\``, safe: false, edits: [{ at, text: '' }] }
   }
 
   private replacement({ from, to }: Token, text: string): Fix {

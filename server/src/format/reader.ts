@@ -41,6 +41,9 @@ type Read = (reader: Reader, node: Node, row: KeyRow, name: string, key: Span) =
 /** How each kind is read. */
 export type Readers = Readonly<Record<KeyRow['kind'], Read>>
 
+/** More problems of a document are not told at once: nobody reads on, and editors choke on them. */
+const MOST_PROBLEMS = 1000
+
 /** More names than this are not listed in a message. */
 const MOST_LISTED = 8
 
@@ -75,6 +78,7 @@ export class Reader {
     message: string,
     more: Partial<Problem> = {},
   ): void {
+    if (this.problems.length >= MOST_PROBLEMS) return
     const { fixes = [], ...rest } = more
     const usable = node.aliased ? [] : fixes
     this.problems.push({ rule, at, message, ...rest, ...(usable.length > 0 ? { fixes: usable } : {}) })

@@ -97,8 +97,6 @@ const COLON = code(':')
 const COMMA = code(',')
 const DASH = code('-')
 const PLUS = code('+')
-const POINT = code('.')
-const OPEN = code('(')
 const LIST_START = code('[')
 const LIST_END = code(']')
 const MAPPING_START = code('{')
@@ -113,8 +111,9 @@ const DIGITS = '0123456789'
 const LETTERS = 'ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz'
 /** What a number may hold here. Blanks and everything that YAML might understand otherwise are left to YAML. */
 const IN_NUMBER = table(`${DIGITS}${LETTERS}.+-*/^()`)
+/** After a sign. No name begins with an n, but `null` does. */
+const STARTS_NUMBER = table(`${DIGITS}.(${LETTERS.replace(/n/gi, '')}`)
 const IN_NAME = table(`${DIGITS}${LETTERS}_`)
-const isDigit = (c: number): boolean => c >= 48 && c <= 57
 const isCapital = (c: number): boolean => c >= 65 && c <= 90
 const isSmall = (c: number): boolean => c >= 97 && c <= 122
 
@@ -201,8 +200,7 @@ class Scanner {
     let to = from
     const first = this.at(from)
     if (first === DASH || first === PLUS) to++
-    const digit = this.at(to)
-    if (!isDigit(digit) && digit !== POINT && digit !== OPEN) return undefined
+    if (STARTS_NUMBER[this.at(to)] !== 1) return undefined
     while (IN_NUMBER[this.at(to)] === 1) to++
     const next = this.spaces(to)
     if (this.at(next) !== after) return undefined

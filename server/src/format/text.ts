@@ -1,7 +1,12 @@
 /** Lines and blanks of a text. Offsets are in UTF-16 units. */
 
-/** Offset of the first character of the line that `offset` stands in. */
-export const lineStart = (text: string, offset: number): number => text.lastIndexOf('\n', offset - 1) + 1
+const BYTE_ORDER_MARK = '\ufeff'
+
+/** Offset of the first character of the line that `offset` stands in; a byte order mark is before the first line. */
+export function lineStart(text: string, offset: number): number {
+  const start = text.lastIndexOf('\n', offset - 1) + 1
+  return start === 0 && offset > 0 && text[0] === BYTE_ORDER_MARK ? 1 : start
+}
 
 /** Offset of the line's end, before its line break. */
 export function lineEnd(text: string, offset: number): number {

@@ -17,7 +17,7 @@ export const MOST_CHARACTERS = 8_000_000
  * The most that the YAML library is given: what is left of the text without its regular lists of atoms. The library
  * takes some 200 bytes of memory and over a microsecond for each character.
  */
-export const MOST_FOR_YAML = 1_000_000
+export const MOST_FOR_YAML = 500_000
 /** Deeper nesting is refused, long before the library's recursion would end the process. A lattice file needs six levels. */
 export const DEEPEST = 64
 /** After so many faults of syntax in a document nobody reads on. */
@@ -150,12 +150,25 @@ class Reading {
     }
     const faults = this.compose()
     const runs = this.verifiedRuns()
-    if (!runs) return undefined
+    if (!runs) return this.whole.length > MOST_FOR_YAML ? this.faultsAlone(faults) : undefined
     const documents = faults.map((own, i) => this.document(i, own, runs))
     this.addControls()
     this.addCommentsOfRuns()
     const { problems, comments, multiline } = this
     return { documents, problems, comments, multiline, rowsMissed: () => this.missed }
+  }
+
+  /** The rows are not a list of atoms, and the whole is too long to be read: what is wrong in the rest may say why. */
+  private faultsAlone(faults: readonly SyntaxFault[][]): YamlFile {
+    const documents = faults.map((own, i) => {
+      const { at, ...document } = this.document(i, own, new Map())
+      return { ...document, at, contents: new NothingNode(at, false, true) }
+    })
+    const { problems, comments, multiline } = this
+    const told = [...problems, ...documents.flatMap(document => document.problems)]
+    if (told.length === 0)
+      return nothingBut(tooLarge(this.whole.length, MOST_FOR_YAML, ' that are no plain list of atoms'))
+    return { documents, problems, comments, multiline, rowsMissed: () => false }
   }
 
   /** Lex, parse and compose in one pass. Gives the faults of each document. */

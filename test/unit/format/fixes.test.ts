@@ -52,7 +52,7 @@ describe('paths', () => {
   test('a separator inserted', () => checkFix(`${LATTICE}path: Γ – X $0W\n`, `${LATTICE}path: Γ – X – W\n`))
   test('a separator replaced', () => checkFix(`${LATTICE}path: Γ $0-> X\n`, `${LATTICE}path: Γ – X\n`))
   test('a comma replaced', () => checkFix(`${LATTICE}path: Γ$0, X\n`, `${LATTICE}path: Γ – X\n`))
-  test('a break removed', () => checkFix(`${LATTICE}path: Γ – X $0|\n`, `${LATTICE}path: Γ – X \n`))
+  test('a break removed', () => checkFix(`${LATTICE}path: Γ – X $0|\n`, `${LATTICE}path: Γ – X\n`))
   test('inside of quotes', () =>
     checkFix(`${LATTICE}path: "\\u0393 $0-> X"\n`, `${LATTICE}path: "\\u0393 – X"\n`))
 })

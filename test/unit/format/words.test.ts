@@ -180,7 +180,9 @@ describe('the key table', () => {
 })
 
 describe('the JSON Schema', () => {
-  const validate = new Ajv({ strict: true, strictRequired: false, allowUnionTypes: true }).compile(jsonSchema())
+  const validate = new Ajv({ strict: true, strictRequired: false, allowUnionTypes: true }).compile(
+    jsonSchema(),
+  )
   const isValid = (text: string) => validate(parse(text))
 
   test('is one of draft-07', () =>
