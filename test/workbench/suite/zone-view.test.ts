@@ -53,6 +53,15 @@ describe('zone view', function () {
     return editor
   }
 
+  /** Turns the view by a key; gives the attribute that the stage then has. */
+  async function turn(key: string, theta: number, phi: number): Promise<string> {
+    const before = ((await stage().getAttribute('data-view')) ?? '').split(',').map(Number)
+    const after = `[data-view="${(before[0] + theta).toFixed(1)},${(before[1] + phi).toFixed(1)}"]`
+    await stage().press(key)
+    await has(after)
+    return after
+  }
+
   /** Labels that can be seen, as they are set, with their places. */
   const labels = () =>
     view()
@@ -141,12 +150,11 @@ describe('zone view', function () {
 
   it('follows the text and keeps the camera', async () => {
     const editor = await openView('lead-telluride.lattice.yaml')
-    await stage().press('ArrowLeft')
-    await has('[data-view="72.0,30.0"]')
+    const turned = await turn('ArrowLeft', 0, 6)
     await replace(editor, 'bravais: cF', 'bravais: cI')
-    await has('[data-solid="rhombic dodecahedron"][data-view="72.0,30.0"]')
+    await has(`[data-solid="rhombic dodecahedron"]${turned}`)
     await replace(editor, 'bravais: cI', 'bravais: cP')
-    await has('[data-solid="cuboid"][data-view="72.0,30.0"]')
+    await has(`[data-solid="cuboid"]${turned}`)
   })
 
   it('marks what the text cursor is on', async () => {
@@ -246,8 +254,7 @@ describe('zone view', function () {
 
   it('comes back as it was after its tab was hidden', async () => {
     const editor = await openView('lead-telluride.lattice.yaml')
-    await stage().press('ArrowUp')
-    await has('[data-view="78.0,24.0"]')
+    const turned = await turn('ArrowUp', 6, 0)
     const column = vscode.window.tabGroups.all.find(({ activeTab }) =>
       activeTab?.label.startsWith('Zone'),
     )?.viewColumn
@@ -255,7 +262,7 @@ describe('zone view', function () {
     await vscode.window.showTextDocument(other, column)
     await replace(editor, 'bravais: cF', 'bravais: cI')
     await vscode.commands.executeCommand('workbench.action.revertAndCloseActiveEditor')
-    await has('[data-solid="rhombic dodecahedron"][data-view="78.0,24.0"]')
+    await has(`[data-solid="rhombic dodecahedron"]${turned}`)
   })
 
   it('draws nothing while nothing moves', async () => {
