@@ -168,6 +168,30 @@ describe.each(ENTRIES)('$id', entry => {
   })
 })
 
+/** Twelve atoms at (0, y, z), the signs and cyclic orders of it: the cubic groups Pm-3 and Fm-3, class m-3. */
+const twelve = (y: number, z: number): string =>
+  [
+    [0, y, z],
+    [z, 0, y],
+    [y, z, 0],
+  ]
+    .flatMap(place =>
+      [1, -1].flatMap(s => [1, -1].map(t => place.map((x, i) => (place[i] === y ? s * x : t * x)))),
+    )
+    .map(place => `  - C: [${place.map(x => x + 0).join(', ')}]\n`)
+    .join('')
+
+/** Variations that hold for certain classes of crystals: the atoms make the class. */
+describe('variations for certain groups', () => {
+  test.each([
+    ['hinuma-2017/cP/1', `lattice: {bravais: cP, a: 6.5}\natoms:\n${twelve(0.12, 0.3)}`],
+    ['hinuma-2017/cF/1', `lattice: {bravais: cF, a: 13}\natoms:\n${twelve(0.06, 0.15)}`],
+  ])('%s', (id, text) => {
+    const entry = REFERENCE.entries.find(other => other.id === id)!
+    isQuiet(`${text}labels: hinuma-2017\npath: ${pathText(entry)}\n`)
+  })
+})
+
 /** A slip planted into all points of a file: the points as they are written, and what else the file says. */
 interface Planted {
   readonly text: string
@@ -363,7 +387,7 @@ describe('planted mistakes', () => {
       }
     }
     expect(files).toBeGreaterThan(8)
-    expect(missed.length / files, missed.join('\n')).toBeLessThanOrEqual(0.05)
+    expect(missed, missed.join('\n')).toEqual([])
     expect(findings / files).toBeLessThanOrEqual(most)
   })
 })
