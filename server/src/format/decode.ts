@@ -102,7 +102,6 @@ class DocumentReader {
   }
 
   /** Numbers anywhere may use the lattice's parameters, so these are read first. */
-  /** Numbers anywhere may use the lattice's parameters, so these are read first. */
   private readParameters(root: MappingNode): void {
     const { reader } = this
     const lattice = root.entries.find(({ key }) => key.kind === 'text' && key.value === 'lattice')?.value

@@ -91,13 +91,14 @@ export class ListNode extends BaseNode {
     return listItems(this.token).length
   }
 
+  private read: readonly ListItem[] | undefined
+
   get items(): readonly ListItem[] {
-    const { view, token } = this
-    const items = listItems(token)
-    return items.map((item, i) => {
-      if (view.tree.runs.has(item)) view.tree.missRows()
-      return this.listItem(items, i)
-    })
+    const { tree } = this.view
+    const items = listItems(this.token)
+    if (items.some(item => tree.runs.has(item))) tree.missRows()
+    this.read ??= items.map((_, i) => this.listItem(items, i))
+    return this.read
   }
 
   /** The items, with the rows of atoms that were cut out of the text among them. */
@@ -144,7 +145,14 @@ export class MappingNode extends BaseNode {
     return this.token.type !== 'block-map'
   }
 
+  private read: readonly MappingEntry[] | undefined
+
   get entries(): readonly MappingEntry[] {
+    this.read ??= this.readEntries()
+    return this.read
+  }
+
+  private readEntries(): MappingEntry[] {
     const { view, token } = this
     const items = mappingItems(token)
     return items.map((item, i) => {

@@ -13,10 +13,10 @@ import type {
   VectorValue,
 } from './model.ts'
 import { nearest } from './nearest.ts'
-import { scalarText } from './quote.ts'
 import type { MappingEntry, MappingNode, Node, TextNode } from './nodes.ts'
 import { evaluate, type Parameters } from './numbers.ts'
 import { normaliseLabel, parsePath } from './path.ts'
+import { scalarText } from './quote.ts'
 import { lineEnd } from './text.ts'
 
 /** A mapping whose keys the table knows, with the values that could be read. */
@@ -237,17 +237,12 @@ export class Reader {
     return undefined
   }
 
-  number(node: Node, row: KeyRow, name: string, parameters = this.parameters): NumberValue | undefined {
+  number(node: Node, row: KeyRow, name: string): NumberValue | undefined {
     if (node.kind !== 'text') return this.wrong(node, `${name} is one number, not ${kindOf(node)}.`)
     if (node.broken) return undefined
     const { value } = node
     const start = value.length - value.trimStart().length
-    const number = this.numberText(
-      value.trim(),
-      node,
-      (from, to) => node.place(start + from, start + to),
-      parameters,
-    )
+    const number = this.numberText(value.trim(), node, (from, to) => node.place(start + from, start + to))
     return number && this.inRange(number, node, row, name) ? number : undefined
   }
 
@@ -256,9 +251,8 @@ export class Reader {
     text: string,
     node: { readonly at: Span; readonly aliased: boolean },
     place: (from: number, to: number) => Span,
-    parameters = this.parameters,
   ): NumberValue | undefined {
-    const result = evaluate(text, parameters)
+    const result = evaluate(text, this.parameters)
     if ('number' in result) {
       const { value, exact, decimals, uses } = result.number
       return { value, at: node.at, text, exact, decimals, uses }

@@ -4,14 +4,14 @@
  * is, the format says. So `%YAML 1.1` changes nothing.
  */
 import { Composer, type CST, Lexer, Parser } from 'yaml'
-import { Survey } from './survey.ts'
 import { Cuts } from './cuts.ts'
 import type { Problem, Span } from './model.ts'
 import { blockSequences, dashOf, type Node, NothingNode, rootNode } from './nodes.ts'
 import { findRuns, type Run } from './rows.ts'
+import { Survey } from './survey.ts'
 import { type SyntaxFault, syntaxFault, withoutConsequences } from './syntax.ts'
 
-/** Larger files are refused. 150,000 atoms fit in. */
+/** Larger files are refused. 200,000 atoms fit in. */
 export const MOST_CHARACTERS = 8_000_000
 /**
  * The most that the YAML library is given: what is left of the text without its regular lists of atoms. The library
@@ -161,8 +161,8 @@ class Reading {
   /** The rows are not a list of atoms, and the whole is too long to be read: what is wrong in the rest may say why. */
   private faultsAlone(faults: readonly SyntaxFault[][]): YamlFile {
     const documents = faults.map((own, i) => {
-      const { at, ...document } = this.document(i, own, new Map())
-      return { ...document, at, contents: new NothingNode(at, false, true) }
+      const document = this.document(i, own, new Map())
+      return { ...document, contents: new NothingNode(document.at, false, true) }
     })
     const { problems, comments, multiline } = this
     const told = [...problems, ...documents.flatMap(document => document.problems)]
