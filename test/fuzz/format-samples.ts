@@ -198,7 +198,7 @@ const named = fc
   .map(([symbol, place, name]) => `- ${symbol}: {at: ${place}, name: ${name}}`)
 const regular = fc
   .tuple(fc.constantFrom('Si', 'O', 'Fe'), fc.integer({ min: -99, max: 99 }))
-  .map(([symbol, n]) => `- ${symbol}: [${n / 100}, ${n}/7, a]`)
+  .map(([symbol, n]) => `- ${symbol}: [${n / 100}, ${n}/7${n % 5 ? '' : ' + 1 '}, ${n % 3 ? 'a' : '−1'}]`)
 const regularNamed = regular.map(row => `${row.replace('[', '{at: [')}, name: up}`)
 const oddity = fc.constantFrom(
   '',

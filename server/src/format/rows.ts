@@ -97,6 +97,7 @@ const COLON = code(':')
 const COMMA = code(',')
 const DASH = code('-')
 const PLUS = code('+')
+const UNICODE_MINUS = 0x2212
 const LIST_START = code('[')
 const LIST_END = code(']')
 const MAPPING_START = code('{')
@@ -109,7 +110,7 @@ const table = (characters: string): Uint8Array => {
 }
 const DIGITS = '0123456789'
 const LETTERS = 'ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz'
-/** What a number may hold here. Blanks and everything that YAML might understand otherwise are left to YAML. */
+/** What a number may hold here, besides blanks. Everything that YAML might understand otherwise is left to YAML. */
 const IN_NUMBER = table(`${DIGITS}${LETTERS}.+-*/^()`)
 /** After a sign. No name begins with an n, but `null` does. */
 const STARTS_NUMBER = table(`${DIGITS}.(${LETTERS.replace(/n/gi, '')}`)
@@ -194,15 +195,18 @@ class Scanner {
     return z && [x, y, z]
   }
 
-  /** A number up to a comma or bracket, after which `end` stands. */
+  /** A number up to `after`, behind which `end` then stands. */
   private number(start: number, after: number): Span | undefined {
     const from = this.spaces(start)
     let to = from
     const first = this.at(from)
-    if (first === DASH || first === PLUS) to++
+    if (first === DASH || first === PLUS || first === UNICODE_MINUS) to++
     if (STARTS_NUMBER[this.at(to)] !== 1) return undefined
-    while (IN_NUMBER[this.at(to)] === 1) to++
-    const next = this.spaces(to)
+    let next = to
+    while (IN_NUMBER[this.at(next)] === 1 || this.at(next) === UNICODE_MINUS) {
+      to = next + 1
+      next = this.spaces(to)
+    }
     if (this.at(next) !== after) return undefined
     this.end = next + 1
     return [from, to]

@@ -28,7 +28,11 @@ test.each([
     [9, 9],
   ],
   ['another indentation', `${rows(9, plain)}${rows(9, i => ` ${plain(i)}`)}`, [9, 9]],
-  ['blanks inside of a number', rows(9, i => `  - Si: [0.${i}, 1 / 2, 0]\n`), []],
+  [
+    'blanks and a true minus inside of a number',
+    rows(9, i => `  - Si: [0.${i} + 1 / 2, −0.5,  a - 1 ]\n`),
+    [9],
+  ],
   ['quotes', rows(9, i => `  - Si: [0.${i}, "1/2", 0]\n`), []],
   ['a comment without its blank', rows(9, i => `  - Si: [0.${i}, 0, 0]#x\n`), []],
 ])('%s', (_name, list, found) => {
