@@ -14,7 +14,7 @@ points: {X: [0, 1/2, 0]}
   test('a parameter that is there but cannot be read is not missing', () =>
     check(`
 lattice: {bravais: cP, a: 4 A}
-#                            ^^ error number-malformed: No unit stands beside a number: lengths are in the unit that \`unit:\` states.
+#                          ^^ error number-malformed: No unit stands beside a number: lengths are in the unit that \`unit:\` states.
 `))
 
   test('the fix inserts the keys', () =>
