@@ -109,7 +109,10 @@ export class Server {
       outputChannel: log,
       traceOutputChannel: log,
       revealOutputChannelOn: RevealOutputChannelOn.Never,
-      initializationOptions: { rulePages: Uri.joinPath(extensionUri, 'docs', 'rules').toString() },
+      initializationOptions: {
+        rulePages: Uri.joinPath(extensionUri, 'docs', 'rules').toString(),
+        status: true,
+      },
       initializationFailedHandler: () => false,
       errorHandler: errorHandler(log),
       diagnosticPullOptions: {

@@ -10,7 +10,10 @@ export interface CheckedResult {
 /** Answered once this version (or a later one) of the text was checked in full, symmetry included. */
 export const CHECKED = 'braggline/checked'
 
-/** What the status item of an editor shows of one file; a notification from the server after each check. */
+/**
+ * What the status item of an editor shows of one file: a notification from the server after each check, to clients that
+ * ask for it with `status: true` in their initialization options.
+ */
 export interface StatusParams {
   readonly uri: string
   readonly version: number

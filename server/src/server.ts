@@ -69,6 +69,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   let refreshes = false
   let asksConfiguration = false
   let rulePages = options.rulePages
+  let announces = false
 
   const symmetry = new WorkerSymmetry(options.startWorker, () => {
     for (const [uri, snapshot] of snapshots) if (snapshot.pending) snapshots.delete(uri)
@@ -81,7 +82,6 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     if (!document) return undefined
     const known = snapshots.get(uri)
     if (known && known.version === document.version && known.settings === settings) return known
-    symmetry.dropStale()
     const snapshot = new Snapshot(document.getText(), workshop, settings, document.version)
     snapshots.set(uri, snapshot)
     return snapshot
@@ -111,7 +111,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     if (!snapshot) return []
     const found = diagnostics(snapshot, uri, rulePages)
     costs.set(uri, performance.now() - started)
-    void connection.sendNotification(STATUS, statusOf(snapshot, uri))
+    if (announces) void connection.sendNotification(STATUS, statusOf(snapshot, uri))
     return found
   })
 
@@ -151,6 +151,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     asksConfiguration = capabilities.workspace?.configuration === true
     const pages: unknown = initializationOptions?.rulePages
     if (typeof pages === 'string') rulePages = pages
+    announces = initializationOptions?.status === true
     return {
       serverInfo: { name: 'Braggline', version: options.version },
       capabilities: {

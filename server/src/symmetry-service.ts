@@ -32,11 +32,15 @@ export type StartWorker = (
 
 interface Job extends SymmetryJob {
   outcome: SymmetryOutcome
+  dropped: boolean
 }
+
+/** More searches than this do not wait: the oldest belong to texts that are gone. */
+const MOST_WAITING = 8
 
 /**
  * Small cells at once, large ones in a worker, one after another. A search that was asked for later goes first: the
- * text has moved on. What waits beyond a few is dropped and found again when it is asked for.
+ * text has moved on. What waits beyond a few is dropped, and begun anew when it is asked for again.
  */
 export class WorkerSymmetry implements SymmetryService {
   #worker: SearchWorker | undefined
@@ -54,8 +58,9 @@ export class WorkerSymmetry implements SymmetryService {
 
   find(input: SymmetryInput): SymmetryJob {
     if (input.positions.length <= QUICK_ATOMS) return { outcome: searchSymmetry(input) }
-    const job: Job = { outcome: { state: 'pending' } }
+    const job: Job = { outcome: { state: 'pending' }, dropped: false }
     this.#waiting.push({ job, input })
+    if (this.#waiting.length > MOST_WAITING) this.#waiting.shift()!.job.dropped = true
     this.#next()
     return job
   }
@@ -64,11 +69,6 @@ export class WorkerSymmetry implements SymmetryService {
   idle(): Promise<void> {
     if (!this.#running) return Promise.resolve()
     return new Promise(resolve => this.#idle.push(resolve))
-  }
-
-  /** Forget what waits except the latest search: the others belong to texts that are gone. */
-  dropStale(): void {
-    this.#waiting.splice(0, Math.max(0, this.#waiting.length - 1))
   }
 
   dispose(): void {

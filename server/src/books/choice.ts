@@ -3,7 +3,8 @@
  * the one nearest to the user's own vectors.
  */
 import { BRAVAIS, type BravaisType, CENTRING_TABLES } from '../crystal/bravais.ts'
-import { cellParameters, type LatticeType, symmetriseBasis } from '../crystal/lattice-type.ts'
+import { cellParameters } from '../crystal/lattice.ts'
+import { type LatticeType, symmetriseBasis } from '../crystal/lattice-type.ts'
 import type { Dimension } from '../crystal/reduction.ts'
 import {
   determinant,

@@ -4,7 +4,8 @@
  */
 import type { BravaisType } from '../crystal/bravais.ts'
 import type { CellParameters } from '../crystal/cell.ts'
-import { cellParameters, type LatticeType, latticeType } from '../crystal/lattice-type.ts'
+import { cellParameters } from '../crystal/lattice.ts'
+import { type LatticeType, latticeType } from '../crystal/lattice-type.ts'
 import { type Dimension, reduce } from '../crystal/reduction.ts'
 import {
   add,

@@ -4,6 +4,7 @@
  */
 import type { BravaisType } from './bravais.ts'
 import type { CellParameters } from './cell.ts'
+import { cellParameters, spansLattice } from './lattice.ts'
 import { type Dimension, shortBasis } from './reduction.ts'
 import {
   add,
@@ -66,7 +67,7 @@ export function latticeType(
   dimension: Dimension,
   tolerance: number,
 ): LatticeType | undefined {
-  if (!isLattice(primitive)) return undefined
+  if (!spansLattice(primitive)) return undefined
   // An obtuse superbase would not do: a symmetry of the lattice may need the entry ±2 in it and more.
   const short = shortBasis(primitive, dimension)
   const allowed = Math.min(tolerance, LARGEST_TOLERANCE * norm(short.basis[0]))
@@ -88,15 +89,6 @@ export function latticeType(
     toleranceLowered: within.lowered,
   }
 }
-
-export const cellParameters = ([a, b, c]: Mat3): CellParameters => ({
-  a: norm(a),
-  b: norm(b),
-  c: norm(c),
-  alpha: angle(b, c),
-  beta: angle(a, c),
-  gamma: angle(a, b),
-})
 
 /**
  * The basis nearest to a given one whose metric is exactly invariant under a group of rotations (on columns of
@@ -132,12 +124,6 @@ const addMatrices = (m: Mat3, n: Mat3): Mat3 => [add(m[0], n[0]), add(m[1], n[1]
 function fullGroup(basis: Mat3, group: readonly Mat3[], dimension: Dimension): Mat3[] {
   const ideal = symmetriseBasis(basis, group, dimension)
   return metricGroup(ideal, dimension, ROUNDING * norm(ideal[dimension - 1])).group
-}
-
-/** Finite vectors that span a volume, as far as double numbers can tell. */
-export function isLattice(basis: Mat3): boolean {
-  const volume = Math.abs(determinant(basis))
-  return Number.isFinite(volume) && volume > ROUNDING * norm(basis[0]) * norm(basis[1]) * norm(basis[2])
 }
 
 /** A lattice vector by its whole coefficients. */

@@ -90,8 +90,7 @@ export function latticeFromVectors(rows: readonly Vec3[], centring: Centring = '
   const beyond = rows.flatMap((row, i) => (isSizeable(row) ? [] : [i]))
   if (beyond.length > 0) return { fault: 'lengths', vectors: beyond }
   const volume = spanned(rows)
-  const product = rows.reduce((x, row) => x * norm(row), 1)
-  if (!(volume > FLAT * product)) return { fault: 'flat', volume, scale: product }
+  if (!spansLattice(rows)) return { fault: 'flat', volume, scale: rows.reduce((x, row) => x * norm(row), 1) }
   if (!allowsCentring(centring, dimension)) return { fault: 'centring', centring }
   const conventional = withNormals(rows.map(tidy))
   return latticeFrom(conventional, centring, dimension, cellParameters(conventional))
@@ -125,6 +124,12 @@ export function latticeFromCell(
   const product = a * b * c
   if (!(volume > FLAT * product)) return { fault: 'flat', volume, scale: product }
   return latticeFrom(conventional, centring, dimension, { a, b, c, alpha, beta, gamma })
+}
+
+/** Finite vectors that span a volume (area, length), as far as double numbers can tell. */
+export function spansLattice(rows: readonly Vec3[]): boolean {
+  const product = rows.reduce((x, row) => x * norm(row), 1)
+  return product < Number.POSITIVE_INFINITY && spanned(rows) > FLAT * product
 }
 
 export const isLattice = (result: Lattice | LatticeFault): result is Lattice => !('fault' in result)

@@ -3,7 +3,8 @@
  * was stated. The library only ever sees a reduced primitive cell in three periodic directions.
  */
 import type { BravaisType } from './bravais.ts'
-import { isLattice, latticeType } from './lattice-type.ts'
+import { spansLattice } from './lattice.ts'
+import { latticeType } from './lattice-type.ts'
 import { type Dimension, reduce } from './reduction.ts'
 import { bravaisOf, compactSymbol } from './space-group.ts'
 import { analyseCell, type LibraryAnswer, type Operation, spaceGroupType } from './symmetry-library.ts'
@@ -171,7 +172,7 @@ function unfit(cell: AtomicCell, tolerance: number): string | undefined {
   const { basis, positions, species } = cell
   if (positions.length !== species.length) return 'there are not as many kinds as positions'
   if (!positions.flat().every(Number.isFinite)) return 'a position is not a finite number'
-  if (!isLattice(basis)) return 'the lattice vectors span no volume'
+  if (!spansLattice(basis)) return 'the lattice vectors span no volume'
   if (!(tolerance > 0 && tolerance < Number.POSITIVE_INFINITY)) return 'the tolerance is no positive length'
   const reduced = reduce(basis, cell.dimension)
   const toReduced = inverse(reduced.change)

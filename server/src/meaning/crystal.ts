@@ -265,16 +265,16 @@ export class Crystal {
       numbers.set(atom.fraction, 10 + 4 * i)
       numbers[13 + 4 * i] = atom.kind
     })
-    const job = this.workshop.symmetries.get(String(lattice.dimension), numbers, () =>
+    const find = () =>
       this.workshop.symmetry.find({
         dimension: lattice.dimension,
         primitive: lattice.primitive,
         positions: atoms.map(atom => atom.fraction),
         species: atoms.map(atom => atom.kind),
         tolerance,
-      }),
-    )
-    return job.outcome
+      })
+    const { symmetries } = this.workshop
+    return symmetries.get(String(lattice.dimension), numbers, find, job => !job.dropped).outcome
   }
 
   /** Symmetry of lattice and atoms; of the lattice alone where there are no atoms. */

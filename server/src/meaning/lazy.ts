@@ -22,8 +22,11 @@ export class Memo<T> {
 
   constructor(private readonly size: number) {}
 
-  get(tag: string, key: Float64Array, compute: () => T): T {
-    const at = this.#entries.findIndex(entry => entry.tag === tag && sameNumbers(entry.key, key))
+  /** @param holds a kept result for which it says no is computed anew. */
+  get(tag: string, key: Float64Array, compute: () => T, holds: (value: T) => boolean = () => true): T {
+    const same = (entry: { tag: string; key: Float64Array }) =>
+      entry.tag === tag && sameNumbers(entry.key, key)
+    const at = this.#entries.findIndex(entry => same(entry) && holds(entry.value))
     if (at >= 0) {
       const [entry] = this.#entries.splice(at, 1)
       this.#entries.unshift(entry)

@@ -13,6 +13,8 @@ export type SymmetryOutcome =
 /** A search that may still be running: `outcome` is read anew at each look. */
 export interface SymmetryJob {
   readonly outcome: SymmetryOutcome
+  /** It will never run: whoever still needs it asks anew. */
+  readonly dropped?: boolean
 }
 
 export interface SymmetryService {

@@ -93,6 +93,30 @@ test('a large cell is searched elsewhere: pending first, found when the worker h
   service.dispose()
 })
 
+test('searches that pile up are dropped, the oldest first, and begun anew when they are asked for again', () => {
+  const posted: SymmetryInput[] = []
+  const service = new WorkerSymmetry(() => ({
+    postMessage: input => posted.push(input),
+    terminate: () => {},
+  }))
+  const workshop = new Workshop(service)
+  const atoms = Array.from({ length: 70 }, (_, i) => `  - Si: [${i / 70}, ${((i * 7) % 70) / 70}, 0.1]`).join(
+    '\n',
+  )
+  const stateOf = (a: number) =>
+    new Snapshot(`lattice: {bravais: cP, a: ${a}}\natoms:\n${atoms}\n`, workshop).documents[0].crystal
+      .symmetryOutcome.state
+  const searches = () => workshop.symmetries.computed
+  for (let a = 30; a < 45; a++) expect(stateOf(a)).toBe('pending')
+  const before = searches()
+  expect(stateOf(44)).toBe('pending')
+  expect(searches()).toBe(before)
+  expect(stateOf(31)).toBe('pending')
+  expect(searches()).toBe(before + 1)
+  expect(posted.length).toBe(1)
+  service.dispose()
+})
+
 test('a search that takes too long is given up, and the next one goes on', async () => {
   let ended = 0
   const service = new WorkerSymmetry(
