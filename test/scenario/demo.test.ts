@@ -2,7 +2,7 @@
 import { readdirSync, readFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { describe, expect, test } from 'vitest'
-import { snapshotOf } from '../unit/checks/harness.ts'
+import { applyEdits, findingsOf, snapshotOf } from '../unit/checks/harness.ts'
 
 const DEMO = 'demo'
 const isLatticeFile = (name: string) => name.endsWith('.lattice.yaml')
@@ -58,5 +58,20 @@ describe('drafts', () => {
     expect(found.map(({ rule, at }) => `${rule} @ ${text.slice(...at).replace(/\s+/g, ' ')}`)).toEqual(
       expected,
     )
+  })
+})
+
+/** The drafts that hold one mistake in a file that is otherwise sound. */
+const MENDED = Object.keys(DRAFTS).filter(name => Number(name.slice(0, 2)) <= 12)
+
+describe('the first fix that is offered', () => {
+  test.each(MENDED)('mends %s', name => {
+    let text = read('drafts', `${name}.lattice.yaml`)
+    for (const rule of DRAFTS[name].map(line => line.split(' ')[0])) {
+      const fix = findingsOf(text).find(finding => finding.rule === rule)?.fixes?.[0]
+      if (fix) text = applyEdits(text, fix.edits)
+    }
+    const left = findingsOf(text).filter(({ severity }) => severity !== 'info')
+    expect(left.map(({ rule, message }) => `${rule}: ${message}`)).toEqual([])
   })
 })
