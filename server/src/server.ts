@@ -16,6 +16,7 @@ import { TextDocument } from 'vscode-languageserver-textdocument'
 import { DEFAULT_SETTINGS, type Settings, Snapshot } from './analysis.ts'
 import type { Severities } from './checks/run.ts'
 import type { Severity } from './format/model.ts'
+import { completion } from './language/completion.ts'
 import { diagnostics } from './language/diagnostics.ts'
 import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
@@ -70,6 +71,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   let asksConfiguration = false
   let rulePages = options.rulePages
   let announces = false
+  let snippets = false
 
   const symmetry = new WorkerSymmetry(options.startWorker, () => {
     for (const [uri, snapshot] of snapshots) if (snapshot.pending) snapshots.delete(uri)
@@ -152,12 +154,14 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     const pages: unknown = initializationOptions?.rulePages
     if (typeof pages === 'string') rulePages = pages
     announces = initializationOptions?.status === true
+    snippets = capabilities.textDocument?.completion?.completionItem?.snippetSupport === true
     return {
       serverInfo: { name: 'Braggline', version: options.version },
       capabilities: {
         positionEncoding: 'utf-16',
         textDocumentSync: { openClose: true, change: TextDocumentSyncKind.Incremental, save: true },
         hoverProvider: true,
+        completionProvider: { triggerCharacters: [' ', '–', '-', '→', '|', ':'] },
         documentSymbolProvider: { label: 'Braggline' },
         codeActionProvider: { codeActionKinds: [CodeActionKind.QuickFix, FIX_ALL] },
         ...(pulls
@@ -203,6 +207,12 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     guard('hover', null, ({ textDocument, position }) => {
       const snapshot = snapshotOf(textDocument.uri)
       return snapshot ? hover(snapshot, position) : null
+    }),
+  )
+  connection.onCompletion(
+    guard('completion', [], ({ textDocument, position }) => {
+      const snapshot = snapshotOf(textDocument.uri)
+      return snapshot ? completion(snapshot, position, snippets) : []
     }),
   )
   connection.onDocumentSymbol(

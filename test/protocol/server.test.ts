@@ -1,5 +1,12 @@
 import { afterEach, beforeAll, describe, expect, test } from 'vitest'
-import type { CodeAction, DocumentSymbol, Hover, TextDocumentEdit } from 'vscode-languageserver-protocol/node'
+import type {
+  CodeAction,
+  CompletionItem,
+  DocumentSymbol,
+  Hover,
+  TextDocumentEdit,
+  TextEdit,
+} from 'vscode-languageserver-protocol/node'
 import { existsSync } from 'node:fs'
 import { CLI, Client, MODERN, marked, PLAIN } from './client.ts'
 
@@ -100,6 +107,42 @@ describe('hover', () => {
 
   test('nothing where there is nothing to say', async () => {
     expect(await hoverAt('lattice: {bravais: cF, a: 5.43}\n\n$0\n# a comment\n')).toBeNull()
+  })
+})
+
+describe('completion', () => {
+  const itemsAt = async (source: string) => {
+    const { text, position } = marked(source)
+    client = await Client.start(MODERN)
+    await client.open(text)
+    return client.request<CompletionItem[]>('textDocument/completion', { position })
+  }
+  const CELL = 'lattice: {bravais: cP, a: 4}\n'
+
+  test('an empty path is offered the book’s own, by name and written out', async () => {
+    const [byName, inFull] = await itemsAt(`${CELL}path: $0`)
+    expect(byName.label).toBe('recommended')
+    // Setyawan and Curtarolo 2010, simple cubic (from memory, as all paths of the books).
+    expect((inFull.textEdit as TextEdit).newText).toBe('Γ – X – M – Γ – R – X | M – R')
+  })
+
+  test('after a separator the labels come with the length of the step', async () => {
+    const items = await itemsAt(`${CELL}path: Γ – $0`)
+    // |ΓM| = √2 π/a = 1.1107 Å⁻¹.
+    expect(items.find(({ label }) => label === 'M')?.detail).toBe('[1/2, 1/2, 0], 1.1107 Å⁻¹ from Γ')
+    expect(items.map(({ label }) => label)).not.toContain('recommended')
+  })
+
+  test('keys that are there are not offered again', async () => {
+    const labels = (await itemsAt(`${CELL}p$0\n`)).map(({ label }) => label)
+    expect(labels).toContain('path')
+    expect(labels).not.toContain('lattice')
+  })
+
+  test('in a block its own keys, after a key the words that it takes', async () => {
+    expect((await itemsAt('lattice:\n  $0\n')).map(({ label }) => label)).toContain('bravais')
+    await client?.stop()
+    expect((await itemsAt('unit: $0\n')).map(({ label }) => label)).toEqual(['angstrom', 'nm', 'bohr'])
   })
 })
 
