@@ -1,6 +1,7 @@
 /** Starts the symmetry library under Node: its module lies beside the bundle, or in node_modules of a checkout. */
 import { existsSync, readFileSync } from 'node:fs'
 import { dirname, join } from 'node:path'
+import { setFlagsFromString } from 'node:v8'
 import { loadSymmetryLibrary, symmetryLibraryLoaded } from './crystal/symmetry-library.ts'
 
 const NAME = 'moyo_wasm_bg.wasm'
@@ -16,6 +17,9 @@ export function loadSymmetryFromDisk(): void {
   if (symmetryLibraryLoaded()) return
   const path = [join(HERE, NAME), ...inNodeModules(HERE)].find(existsSync)
   if (!path) throw new Error(`${NAME} is missing beside ${HERE}: the installation is not complete`)
+  // Optimising the whole module takes longer than any search that a session makes: half the start of the command, and a
+  // third of its memory. Unoptimised, a search takes up to four times as long, which is still milliseconds.
+  setFlagsFromString('--liftoff-only')
   loadSymmetryLibrary(readFileSync(path))
 }
 
