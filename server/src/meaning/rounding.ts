@@ -23,7 +23,7 @@ export function isRoundingOf(number: NumberValue, exact: number): boolean {
   const unit = 10 ** -decimals
   if (Math.abs(value - exact) <= unit * (0.5 + SAME)) return true
   const cutOff = Math.sign(exact) * (exact - value)
-  return cutOff >= 0 && cutOff < unit
+  return cutOff > 0 && cutOff < unit
 }
 
 /** Half a unit of the last digit: how well a plain decimal is known. 0 for whole numbers, fractions and expressions. */
