@@ -207,6 +207,7 @@ function points({ points, unit, book, changes, lattice }: Report): Section | und
     title: 'Points',
     facts: [
       ...(book ? [['label book', book.source] as const] : []),
+      ...(book?.doubts ?? []).map(doubt => ['doubt', doubt] as const),
       ...(changes?.bookFromPrimitive
         ? [["the book's primitive vectors", bookVectors(changes.bookFromPrimitive)] as const]
         : []),

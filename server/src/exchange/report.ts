@@ -1,5 +1,6 @@
 /** The lattice report: everything that one document means, as one plain object. Its shape is published in schema/report.json. */
 import type { DocumentAnalysis } from '../analysis.ts'
+import type { BookMatch } from '../books/match.ts'
 import { littleCoGroup } from '../crystal/kspace.ts'
 import type { Lattice } from '../crystal/lattice.ts'
 import { countOrbits, isSymmetricMesh, type Mesh, meshPoints } from '../crystal/mesh.ts'
@@ -31,7 +32,7 @@ export interface Report {
   readonly zone?: ZoneReport
   readonly symmetry?: SymmetryReport
   /** The label book in force. */
-  readonly book?: { readonly id: string; readonly source: string }
+  readonly book?: { readonly id: string; readonly source: string; readonly doubts?: readonly string[] }
   readonly points?: readonly PointReport[]
   readonly path?: PathReport
   /** The mesh, or the meshes by name where the file names them. */
@@ -151,7 +152,7 @@ export function reportOf(
       },
       ...given('zone', zoneReport(crystal)),
       ...given('symmetry', symmetryReport(crystal)),
-      ...given('book', crystal.book && { id: crystal.book.book, source: crystal.book.source }),
+      ...given('book', crystal.book && bookReport(crystal.book)),
       points: [...crystal.points.values(), ...crystal.bookPoints.values()].flatMap(
         point => pointReport(crystal, point) ?? [],
       ),
@@ -214,6 +215,8 @@ function zoneReport({ zone, dimension }: Crystal): ZoneReport | undefined {
     circumradius,
   }
 }
+
+const bookReport = ({ book: id, source, doubts }: BookMatch) => ({ id, source, ...(doubts.length > 0 ? { doubts } : {}) })
 
 function symmetryReport(crystal: Crystal): SymmetryReport | undefined {
   const { symmetry, rotations, kGroup, document } = crystal

@@ -6,7 +6,7 @@ import type { BookMatch } from '../books/match.ts'
 import { matchBook } from '../books/match.ts'
 import type { BravaisType } from '../crystal/bravais.ts'
 import { kRotations } from '../crystal/kspace.ts'
-import type { Dimension, Lattice } from '../crystal/lattice.ts'
+import { cellParameters, type Dimension, type Lattice } from '../crystal/lattice.ts'
 import { emptySlab } from '../crystal/neighbours.ts'
 import {
   groupOnLattice,
@@ -16,7 +16,17 @@ import {
   type Symmetry,
 } from '../crystal/symmetry.ts'
 import { IN_ANGSTROM, type Unit } from '../crystal/units.ts'
-import { add, combine, distance, inverse, type Mat3, scale, subtract, type Vec3 } from '../crystal/vector.ts'
+import {
+  add,
+  combine,
+  distance,
+  inverse,
+  type Mat3,
+  multiply,
+  scale,
+  subtract,
+  type Vec3,
+} from '../crystal/vector.ts'
 import { buildZone, type Zone } from '../crystal/zone.ts'
 import type {
   AtomEntry,
@@ -26,7 +36,7 @@ import type {
   PointEntry,
   VectorValue,
 } from '../format/model.ts'
-import { buildLattice, type LatticeBuild } from './lattice-build.ts'
+import { anyFace, buildLattice, distortedLattice, type LatticeBuild } from './lattice-build.ts'
 import { lazy } from './lazy.ts'
 import type { Rotations, SymmetryOutcome, Workshop } from './workshop.ts'
 
@@ -345,14 +355,36 @@ export class Crystal {
     return this.#book()
   }
 
+  /** The atoms keep a lower Bravais type than the lattice has, as far as is known. */
+  get isLessSymmetric(): boolean {
+    return this.atoms.length > 0 && this.symmetry?.bravais !== this.type?.bravais
+  }
+
+  /**
+   * The type that labels go by: that of the lattice, but of the file where it states a lower one and the atoms keep no
+   * more. The polar axis of a tetragonal crystal is another direction than its a, even where c = a.
+   */
+  readonly #labelType = lazy((): LatticeType | undefined => {
+    const { type, lattice, build, document } = this
+    const stated = document.lattice?.bravais?.value
+    if (!type || !lattice || !stated || !build.cell || !this.isLessSymmetric) return type
+    if (anyFace(stated) !== this.symmetry?.bravais || anyFace(stated) === type.bravais) return type
+    const distorted = distortedLattice(stated, build.cell)
+    const lower = distorted && this.typeOf(distorted.primitive, lattice.dimension)
+    if (!lower) return type
+    const conventional = multiply(lower.conventionalFromPrimitive, lattice.primitive)
+    return { ...lower, conventional, cell: cellParameters(conventional) }
+  })
+
   /** A book carried into this lattice, or into another one of the same crystal. */
   bookMatch(book: Exclude<LatticeDocument['labels'], 'none'>, lattice = this.lattice): BookMatch | undefined {
-    const type = lattice && this.typeOf(lattice.primitive, lattice.dimension)
+    const own = lattice === this.lattice
+    const type = own ? this.#labelType() : lattice && this.typeOf(lattice.primitive, lattice.dimension)
     if (!lattice || !type) return undefined
     const { pointGroup, spaceGroup } = this.rotations ?? {}
     const { tolerance } = this
     return this.workshop.matches.get(
-      `${book}/${lattice.dimension}/${spaceGroup ?? pointGroup}`,
+      `${book}/${lattice.dimension}/${type.bravais}/${spaceGroup ?? pointGroup}`,
       flat(lattice.primitive, tolerance),
       () =>
         matchBook(book, lattice.primitive, lattice.dimension, {

@@ -1,5 +1,11 @@
 /** From the `lattice` block to a `Lattice`, or to the reason why there is none. */
-import { BRAVAIS, type CompletedCell, completeCell, type Contradiction } from '../crystal/bravais.ts'
+import {
+  BRAVAIS,
+  type BravaisType,
+  type CompletedCell,
+  completeCell,
+  type Contradiction,
+} from '../crystal/bravais.ts'
 import {
   type Dimension,
   type Lattice,
@@ -80,4 +86,30 @@ function fromType(document: LatticeDocument): LatticeBuild {
   const { contradictions } = completed
   if ('fault' in built) return { dimension, fault: built, contradictions, cell: completed }
   return { dimension, lattice: built, contradictions, cell: completed }
+}
+
+/** The one-face-centred types are one type, whichever face it is. */
+export const anyFace = (type: BravaisType): BravaisType =>
+  /^o[AB]$/.test(type) ? 'oC' : /^m[ABI]$/.test(type) ? 'mC' : type
+
+/** Unequal enough that no lattice of a type keeps a symmetry that the type does not ask for. */
+const FACTORS: Readonly<Record<string, number>> = { a: 1, b: 1.0713, c: 1.1547 }
+const TURNS: Readonly<Record<string, number>> = { alpha: 2.3, beta: 3.1, gamma: 4.7 }
+
+/** A lattice of a type with its free parameters shifted a little: it has the type's own symmetry and no more. */
+export function distortedLattice(
+  type: BravaisType,
+  { cell, uniqueAxis }: CompletedCell,
+): Lattice | undefined {
+  const { free, centring, dimension } = BRAVAIS[type]
+  const oblique = uniqueAxis && ({ a: 'alpha', b: 'beta', c: 'gamma' } as const)[uniqueAxis]
+  const names = free.find(set => !oblique || set.includes(oblique)) ?? free[0]
+  const shifted = names.map(name => [
+    name,
+    name in FACTORS ? cell[name] * FACTORS[name] : cell[name] + TURNS[name],
+  ])
+  const completed = completeCell(type, Object.fromEntries(shifted))
+  if (!('cell' in completed)) return undefined
+  const built = latticeFromCell(completed.cell, centring, dimension)
+  return 'fault' in built ? undefined : built
 }

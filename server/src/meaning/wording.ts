@@ -21,9 +21,12 @@ const SUPERSCRIPTS: Record<string, string> = {
   9: '⁹',
 }
 
+/** What arithmetic leaves of a zero, in any unit that the format knows. */
+const NOISE = 1e-12
+
 /** Fixed digits in the ordinary range, powers of ten outside it. Uses a true minus. */
 export function plain(x: number, digits = DIGITS): string {
-  if (x === 0) return '0'
+  if (Math.abs(x) < NOISE) return '0'
   const size = Math.abs(x)
   if (size >= 1e6 || size < 10 ** -digits / 2) {
     const [mantissa, exponent] = x.toExponential(2).split('e')

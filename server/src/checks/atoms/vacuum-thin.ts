@@ -31,6 +31,14 @@ export const vacuumThin: Check<Facts> = {
     const vacuum = height.value - thickness
     const needed = THINNEST / crystal.angstrom
     if (vacuum >= needed) return
+    if (vacuum < 0) {
+      yield {
+        at: height.at,
+        message: `The atoms reach over ${length(thickness, unit, 2)}, more than the height of ${length(height.value, unit, 2)}: their third number is a fraction of \`height\` here. Are lengths meant? Then divide them by it.`,
+        facts: { vacuum, thickness },
+      }
+      return
+    }
     const sheet = thickness < FLAT * height.value ? 'flat sheet' : `sheet ${length(thickness, unit, 2)} thick`
     const inside = widestGap(along)
     const remedy =

@@ -44,12 +44,14 @@ function fixesFor({ crystal, text, document }: Context, found: BravaisType): Fix
   const { bravais, vectors } = document.lattice!
   const title = `State the type ${named(found)}`
   // Beside vectors the type is a claim, and nothing else refers to it.
-  if (vectors) return [{ title, safe: true, edits: [{ at: bravais!.at, text: found }] }]
+  if (vectors) return [{ title, safe: !crystal.isLessSymmetric, edits: [{ at: bravais!.at, text: found }] }]
   const change = axesOf(crystal, found)
   const restated = restate(crystal, text, { change, centring: BRAVAIS[found].centring, bravais: found })
   if (!restated) return []
   const isExact = type!.misfit <= SAME * norm(type!.conventional[0])
-  return [{ title, safe: isExact && keepsAll(restated) && !restated.rotation, edits: restated.edits }]
+  // Atoms that keep only the stated type keep its labels too, so another type would name other points.
+  const safe = isExact && keepsAll(restated) && !restated.rotation && !crystal.isLessSymmetric
+  return [{ title, safe, edits: restated.edits }]
 }
 
 /** What arithmetic leaves of a misfit of zero, relative to a lattice vector. */

@@ -23,7 +23,7 @@ export const pointOutsideZone: Check<Facts> = {
   summary: 'A k-point lies outside the first Brillouin zone.',
   why: 'It has the bands of its equivalent inside, but a path drawn to it is another line than the one to the equivalent.',
   wrong: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [0.8, 0.1, 0.2]}\n',
-  right: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [0.3, 0.1, 0.2]}\n',
+  right: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [-0.2, 0.1, 0.2]}\n',
   *run({ crystal, text }) {
     const { zone, unit } = crystal
     const diagnosis = diagnose(crystal)
