@@ -219,7 +219,6 @@ function fillSolids(): void {
       sites.flat(),
       sites.map(() => 3.4),
       { colour: theme.ink, opacity: 0.85 },
-      devicePixelRatio,
     )
   }
   if (zoneSolid) {
@@ -234,13 +233,7 @@ function fillSolids(): void {
   solids.remove('mesh')
   const [mesh] = scene.meshes
   if (values.mesh === 'on' && mesh)
-    solids.setDots(
-      'mesh',
-      mesh.points,
-      dotRadii(mesh),
-      { colour: theme.mesh, opacity: 0.95 },
-      devicePixelRatio,
-    )
+    solids.setDots('mesh', mesh.points, dotRadii(mesh), { colour: theme.mesh, opacity: 0.95 })
   const farthest = [...first, ...second].reduce((most, v) => Math.max(most, Math.hypot(...v)), 0)
   solids.reach = 1.2 * (farthest + camera.radius)
   Object.assign(stage.dataset, { around, shown: switches.summary })
@@ -293,8 +286,8 @@ function frame(): void {
   stage.dataset.frameTime = (performance.now() - started).toFixed(2)
   if (drawnFrames === 1) {
     stage.dataset.firstPicture = performance.now().toFixed(0)
-    // The picture comes first: what is not needed for it is made after it.
-    setTimeout(startGlass)
+    // The picture comes first, on the screen too: what is not needed for it is made after it.
+    requestAnimationFrame(() => setTimeout(startGlass))
   }
 }
 
