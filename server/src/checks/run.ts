@@ -14,7 +14,8 @@ export function runChecks(
   workspace: Severities,
 ): Reported[] {
   const context = { ...subject, ruleIds: new Set(checks.map(check => check.id)) }
-  const found = checks.flatMap(check => findingsOf(check, context))
+  const judge = hasAliases(subject) ? judged : (finding: Reported) => finding
+  const found = checks.flatMap(check => findingsOf(check, context).map(judge))
   const hidden = new Set(
     found.flatMap(finding => (finding.hides ?? []).map(({ rule, subject }) => `${rule}/${subject}`)),
   )
@@ -27,6 +28,17 @@ export function runChecks(
   }
   return reported
 }
+
+/** An alias repeats what stands at its anchor: an edit there changes both places, whatever the rule knows of one. */
+const hasAliases = ({ text, document }: Omit<Context, 'ruleIds'>): boolean => {
+  const own = text.slice(...document.at)
+  return ANCHOR.test(own) && ALIAS.test(own)
+}
+const ANCHOR = /(?:^|[\s[{,:-])&[^\s[\]{},]/
+const ALIAS = /(?:^|[\s[{,:-])\*[^\s[\]{},]/
+
+const judged = (finding: Reported): Reported =>
+  finding.fixes ? { ...finding, fixes: finding.fixes.map(fix => ({ ...fix, safe: false })) } : finding
 
 function findingsOf(check: Check, context: Context): Reported[] {
   try {

@@ -78,6 +78,8 @@ export const check: Verb = {
       desk.progress(`checking file ${i + 1} of ${names.length}: ${harmless(name)}`)
       try {
         const checked = await checkOne(engine, await readText(name, io), how, desk)
+        if (checked.snapshot.documents.length === 0 && checked.findings.length === 0)
+          throw new Refusal(`${name}: there is no crystal in this file`)
         const { errors, warnings, infos } = tally(checked.findings)
         total.files++
         total.errors += errors

@@ -314,3 +314,15 @@ points: {Q: [1e9, 0, 0]}
 path: Γ – Q
 #     ^^^^^ info path-leaves-zone: Γ–Q leaves the first zone at [1/2, 0, 0], k = (0.8055, 0, 0) Å⁻¹, 5.00·10⁻¹⁰ of the way.
 `))
+
+describe('Γ where the keyboard has none', () => {
+  test.each(['G', 'GM', 'GAMMA', 'gamma'])('%s', text =>
+    checkFix(
+      `lattice: {bravais: cP, a: 4}\npath: $0${text} – X – M – R\n`,
+      'lattice: {bravais: cP, a: 4}\npath: Γ – X – M – R\n',
+      {
+        rule: 'path-label-unknown',
+      },
+    ),
+  )
+})

@@ -67,9 +67,12 @@ describe('input', () => {
     world.write('run/1/a.lattice.yaml', CLEAN).write('run/2/b.lattice.yml', CLEAN)
     expect((await world.run(['check', 'run'])).out).toBe('No findings in 2 files.\n')
   })
-  test('an empty file has no crystal, which is no fault', async () => {
-    world.write('a.lattice.yaml', '')
-    expect(await world.run(['check', 'a.lattice.yaml'])).toMatchObject({ status: 0, err: '' })
+  test('an empty file has no crystal: nothing was checked, so it is not clean', async () => {
+    world.write('a.lattice.yaml', '# nothing yet\n')
+    expect(await world.run(['check', 'a.lattice.yaml'])).toMatchObject({
+      status: 2,
+      err: 'braggline: a.lattice.yaml: there is no crystal in this file\n',
+    })
   })
   test('one document of several', async () => {
     world.write('a.lattice.yaml', `${CLEAN}---\n${MISSPELLED}`)

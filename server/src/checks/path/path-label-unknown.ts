@@ -106,9 +106,12 @@ function ofCentredLattice(
   }
 }
 
+/** How Γ is written where the keyboard has none. */
+const CENTRE = /^(g|gm|gamma)$/i
+
 function ofLabel(context: Context, { label, at }: PathLabel, known: ReadonlySet<string>): Finding<Facts> {
   const own = context.document.points?.items.map(entry => entry.label) ?? []
-  const near = nearest(label, [...own, ...known])
+  const near = CENTRE.test(label) && known.has('Γ') ? 'Γ' : nearest(label, [...own, ...known])
   const book = bookInWords(context)
   return {
     at,
