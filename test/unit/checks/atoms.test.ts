@@ -438,3 +438,23 @@ test('a thousand atoms at one place are a hundred findings, the last of which sa
     'Cs (atom 101) is at the place of Cs (atom 1). There are 899 more like it.',
   )
 })
+
+describe('fractions of the primitive cell under a centred lattice', () => {
+  const RHOMBOHEDRAL = `lattice: {bravais: hR, a: 10.476, alpha: 24.166}
+atoms:
+  - Te: [0, 0, 0]
+  - Te: [0.2095, 0.2095, 0.2095]
+  - Te: [-0.2095, -0.2095, -0.2095]
+  - Bi: [0.4001, 0.4001, 0.4001]
+  - Bi: [-0.4001, -0.4001, -0.4001]
+`
+  test('are told by the symmetry that they lose', () => {
+    const found = findingsOf(RHOMBOHEDRAL).filter(({ rule }) => rule === 'atoms-frame-suspect')
+    expect(found.map(({ facts }) => facts)).toEqual([{ frame: 'primitive' }])
+  })
+
+  test('are in order where the frame is stated', () =>
+    expect(
+      findingsOf(`frames: {atoms: primitive}\n${RHOMBOHEDRAL}`).filter(({ severity }) => severity !== 'info'),
+    ).toEqual([]))
+})

@@ -1,7 +1,9 @@
 /** Are the atoms' numbers meant in another unit or another frame than the file states? */
 import { IN_ANGSTROM, type Unit, UNITS } from '../../crystal/units.ts'
+import type { Vec3 } from '../../crystal/vector.ts'
 import type { AtomFrame } from '../../format/model.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
+import type { SymmetryOutcome } from '../../meaning/workshop.ts'
 import { contradictsVectors } from '../lattice/kinship.ts'
 import { distinctAtoms, once, readOn, type Tightest, tightest, tightestAmong } from './contacts.ts'
 
@@ -68,3 +70,29 @@ function sensible(crystal: Crystal, frame: AtomFrame): FrameSuspicion | undefine
   const contact = tightestAmong(crystal, atoms, readOn(crystal, atoms, crystal.atomAxesOf(frame)))
   return contact && isOrdinary(contact.ratio) ? { frame, contact } : undefined
 }
+
+/** Each polar group is half of a centrosymmetric one: less gain than that is no sign of another reading. */
+const FAR_MORE = 2
+/** Of the sum of covalent radii: a reading that puts atoms nearer together is none. */
+const CLOSEST = 0.6
+
+export interface OtherReading {
+  /** Numbers of symmetry operations of the stated cell, as read and in the other reading. */
+  readonly now: number
+  readonly then: number
+}
+
+/** Is the crystal far more symmetric when its atoms stand at these fractions of the primitive cell, one an atom? */
+export function moreSymmetric(crystal: Crystal, reading: readonly Vec3[]): OtherReading | undefined {
+  const { atoms } = crystal
+  const now = operations(crystal.symmetryOutcome)
+  const then = operations(crystal.searchWith(atoms.map(({ kind }, i) => ({ kind, fraction: reading[i] }))))
+  if (!(then >= FAR_MORE * now)) return undefined
+  const contact = tightestAmong(crystal, atoms, reading)
+  return contact && contact.ratio < CLOSEST ? undefined : { now, then }
+}
+
+const operations = (outcome: SymmetryOutcome): number =>
+  outcome.state === 'found'
+    ? outcome.symmetry.operations.length * outcome.symmetry.translationsFold
+    : Number.NaN

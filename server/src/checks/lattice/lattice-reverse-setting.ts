@@ -3,20 +3,15 @@ import { combine } from '../../crystal/vector.ts'
 import type { Fix, NumberValue } from '../../format/model.ts'
 import { plusWhole, rational, sumOf, writeSum } from '../../meaning/combinations.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
-import type { SymmetryOutcome } from '../../meaning/workshop.ts'
 import type { Check } from '../check.ts'
-import { coincidences, tightestAmong } from '../atoms/contacts.ts'
+import { coincidences } from '../atoms/contacts.ts'
+import { moreSymmetric } from '../atoms/suspicions.ts'
 
 interface Facts {
   /** Numbers of symmetry operations as read, and in the reverse setting. */
   readonly operations: number
   readonly reversed: number
 }
-
-/** Each polar group is half of a centrosymmetric one: less gain than that is no sign of a setting. */
-const FAR_MORE = 2
-/** Of the sum of covalent radii: a reading that puts atoms nearer together is none. */
-const CLOSEST = 0.6
 
 export const latticeReverseSetting: Check<Facts> = {
   id: 'lattice-reverse-setting',
@@ -35,12 +30,9 @@ export const latticeReverseSetting: Check<Facts> = {
     if (!at || lattice?.centring !== 'R' || document.frames.atoms !== 'conventional' || atoms.length < 2)
       return
     if (!crystal.atomsComplete || coincidences(crystal).length > 0) return
-    const reading = reversed(crystal)
-    const now = operations(crystal.symmetryOutcome)
-    const then = operations(crystal.searchWith(atoms.map(({ kind }, i) => ({ kind, fraction: reading[i] }))))
-    if (!(then >= FAR_MORE * now)) return
-    const contact = tightestAmong(crystal, atoms, reading)
-    if (contact && contact.ratio < CLOSEST) return
+    const other = moreSymmetric(crystal, reversed(crystal))
+    if (!other) return
+    const { now, then } = other
     yield {
       at,
       message: `As read, in the obverse setting, the crystal has ${now} symmetry operations; read in the reverse setting it has ${then}. The coordinates seem to be those of the reverse setting: x and y change their sign.`,
@@ -53,11 +45,6 @@ export const latticeReverseSetting: Check<Facts> = {
 /** Half a turn about c leads from one setting to the other. */
 const reversed = ({ atoms, lattice }: Crystal): Vec3[] =>
   atoms.map(({ stated: [x, y, z] }) => combine([-x, -y, z], lattice!.conventionalFromPrimitive))
-
-const operations = (outcome: SymmetryOutcome): number =>
-  outcome.state === 'found'
-    ? outcome.symmetry.operations.length * outcome.symmetry.translationsFold
-    : Number.NaN
 
 function rewritten({ atoms }: Crystal): Fix {
   const edits = atoms.flatMap(({ entry }) =>
