@@ -75,7 +75,7 @@ export const tightest = once((crystal): Tightest | undefined =>
 export function tightestAmong(
   crystal: Crystal,
   atoms: readonly PlacedAtom[],
-  positions = atoms.map(a => a.fraction),
+  positions: readonly Vec3[] = atoms.map(a => a.fraction),
 ): Tightest | undefined {
   const { lattice, angstrom } = crystal
   if (!lattice) return undefined
