@@ -216,7 +216,11 @@ function zoneReport({ zone, dimension }: Crystal): ZoneReport | undefined {
   }
 }
 
-const bookReport = ({ book: id, source, doubts }: BookMatch) => ({ id, source, ...(doubts.length > 0 ? { doubts } : {}) })
+const bookReport = ({ book: id, source, doubts }: BookMatch) => ({
+  id,
+  source,
+  ...(doubts.length > 0 ? { doubts } : {}),
+})
 
 function symmetryReport(crystal: Crystal): SymmetryReport | undefined {
   const { symmetry, rotations, kGroup, document } = crystal

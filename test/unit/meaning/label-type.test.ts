@@ -11,7 +11,10 @@ atoms:
   - O: [0, 1/2, 0.61]
 space-group: 99
 `
-const labelsOf = (text: string) => snapshotOf(text).documents[0].crystal.book?.points.map(({ label }) => label).sort()
+const labelsOf = (text: string) =>
+  snapshotOf(text)
+    .documents[0].crystal.book?.points.map(({ label }) => label)
+    .sort()
 
 test('a polar tetragonal crystal with c = a has the tetragonal labels (Setyawan and Curtarolo 2010)', () => {
   expect(labelsOf(`${POLAR}path: recommended\n`)).toEqual(['A', 'M', 'R', 'X', 'Z', 'Γ'].sort())
@@ -25,13 +28,15 @@ test('Z lies along the polar axis', () => {
 })
 
 test('the higher type is not offered as a safe fix there, but is for the lattice alone', () => {
-  const fixOf = (text: string) => findingsOf(text).find(({ rule }) => rule === 'lattice-hidden-symmetry')?.fixes?.[0]
+  const fixOf = (text: string) =>
+    findingsOf(text).find(({ rule }) => rule === 'lattice-hidden-symmetry')?.fixes?.[0]
   expect(fixOf(POLAR)?.safe).toBe(false)
   expect(fixOf('lattice: {bravais: tP, a: 3.97, c: 3.97}\n')?.safe).toBe(true)
 })
 
 test('cubic atoms in a lattice stated tetragonal have the cubic labels', () => {
-  const cubic = 'lattice: {bravais: tP, a: 3.97, c: 3.97}\natoms:\n  - Cs: [0, 0, 0]\n  - Cl: [1/2, 1/2, 1/2]\n'
+  const cubic =
+    'lattice: {bravais: tP, a: 3.97, c: 3.97}\natoms:\n  - Cs: [0, 0, 0]\n  - Cl: [1/2, 1/2, 1/2]\n'
   expect(labelsOf(cubic)).toEqual(['M', 'R', 'X', 'Γ'])
 })
 
