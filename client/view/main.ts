@@ -219,6 +219,7 @@ function fillSolids(): void {
       sites.flat(),
       sites.map(() => 3.4),
       { colour: theme.ink, opacity: 0.85 },
+      devicePixelRatio,
     )
   }
   if (zoneSolid) {
@@ -233,7 +234,13 @@ function fillSolids(): void {
   solids.remove('mesh')
   const [mesh] = scene.meshes
   if (values.mesh === 'on' && mesh)
-    solids.setDots('mesh', mesh.points, dotRadii(mesh), { colour: theme.mesh, opacity: 0.95 })
+    solids.setDots(
+      'mesh',
+      mesh.points,
+      dotRadii(mesh),
+      { colour: theme.mesh, opacity: 0.95 },
+      devicePixelRatio,
+    )
   const farthest = [...first, ...second].reduce((most, v) => Math.max(most, Math.hypot(...v)), 0)
   solids.reach = 1.2 * (farthest + camera.radius)
   Object.assign(stage.dataset, { around, shown: switches.summary })
@@ -286,8 +293,8 @@ function frame(): void {
   stage.dataset.frameTime = (performance.now() - started).toFixed(2)
   if (drawnFrames === 1) {
     stage.dataset.firstPicture = performance.now().toFixed(0)
-    // The picture comes first, on the screen too: what is not needed for it is made after it.
-    requestAnimationFrame(() => setTimeout(startGlass))
+    // The picture comes first: what is not needed for it is made after it.
+    setTimeout(startGlass)
   }
 }
 

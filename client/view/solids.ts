@@ -1,71 +1,62 @@
 /** What WebGL draws: translucent solids, and points by the thousand. Lines and labels are drawn above it. */
+import {
+  BufferGeometry,
+  Camera as ThreeCamera,
+  Color,
+  DoubleSide,
+  Float32BufferAttribute,
+  LineBasicMaterial,
+  LineSegments,
+  LinearSRGBColorSpace,
+  Mesh,
+  type Object3D,
+  Points,
+  Scene as ThreeScene,
+  ShaderMaterial,
+  WebGLRenderer,
+} from 'three'
 import type { SceneMesh, SceneSolid, Triple } from '../../server/src/protocol.ts'
 import { type Camera, sum } from './camera.ts'
 
-// Three small programs need no library: the page is read and understood before anything is seen of it.
-
-/** A place goes in as attribute 0, what its program wants with it as attribute 1. */
-const HEAD = `#version 300 es
-precision highp float;
-uniform mat4 view;
-uniform mat4 projection;
-uniform vec3 colour;
-uniform float opacity;
-`
-const VERTEX = `${HEAD}layout(location = 0) in vec3 position;
-`
-const FRAGMENT = `${HEAD}out vec4 seen;
-`
-
 /** Faces seen edge-on are a little denser, as of glass; one side is in the light. */
 const GLASS = {
-  vertex: `${VERTEX}layout(location = 1) in vec3 normal;
-out vec3 turned;
+  vertexShader: `varying vec3 turned;
 void main() {
-  turned = normalize(mat3(view) * normal);
-  gl_Position = projection * view * vec4(position, 1.0);
+  turned = normalize(mat3(viewMatrix) * normal);
+  gl_Position = projectionMatrix * viewMatrix * vec4(position, 1.0);
 }`,
-  fragment: `${FRAGMENT}uniform vec3 light;
+  fragmentShader: `uniform vec3 colour;
+uniform vec3 light;
+uniform float opacity;
 uniform float shade;
-in vec3 turned;
+varying vec3 turned;
 void main() {
   vec3 n = normalize(turned);
   float lit = 0.5 + 0.5 * dot(n.z < 0.0 ? -n : n, normalize(vec3(-0.5, 0.75, 0.6)));
-  seen = vec4(mix(colour, light, shade * (1.0 - lit)), opacity * (1.25 - 0.6 * abs(n.z)));
-}`,
-}
-
-const LINES = {
-  vertex: `${VERTEX}void main() {
-  gl_Position = projection * (view * vec4(position, 1.0));
-}`,
-  fragment: `${FRAGMENT}void main() {
-  seen = vec4(colour, opacity);
+  gl_FragColor = vec4(mix(colour, light, shade * (1.0 - lit)), opacity * (1.25 - 0.6 * abs(n.z)));
 }`,
 }
 
 const DOTS = {
-  vertex: `${VERTEX}layout(location = 1) in float radius;
+  vertexShader: `attribute float radius;
 uniform float ratio;
 uniform float reach;
-out float near;
+varying float near;
 void main() {
-  vec4 place = view * vec4(position, 1.0);
-  near = 0.5 + 0.5 * clamp(place.z / reach, -1.0, 1.0);
-  gl_Position = projection * place;
+  vec4 seen = viewMatrix * vec4(position, 1.0);
+  near = 0.5 + 0.5 * clamp(seen.z / reach, -1.0, 1.0);
+  gl_Position = projectionMatrix * seen;
   gl_PointSize = 2.0 * radius * ratio + 1.0;
 }`,
-  fragment: `${FRAGMENT}in float near;
+  fragmentShader: `uniform vec3 colour;
+uniform float opacity;
+varying float near;
 void main() {
   float r = length(gl_PointCoord - 0.5) * 2.0;
   float edge = fwidth(r);
-  seen = vec4(colour, (1.0 - smoothstep(1.0 - 2.0 * edge, 1.0, r)) * opacity * (0.45 + 0.55 * near));
+  gl_FragColor = vec4(colour, (1.0 - smoothstep(1.0 - 2.0 * edge, 1.0, r)) * opacity * (0.45 + 0.55 * near));
 }`,
 }
-
-const SHADERS = { glass: GLASS, lines: LINES, dots: DOTS }
-type Kind = keyof typeof SHADERS
-const KINDS = Object.keys(SHADERS) as Kind[]
 
 export interface SolidLook {
   readonly colour: string
@@ -76,123 +67,88 @@ export interface SolidLook {
   readonly solid?: boolean
 }
 
-interface Part {
-  readonly kind: Kind
-  /** Lower ones are drawn first; among the same, farther ones. */
-  readonly order: number
-  /** Of the box around it. */
-  readonly middle: Triple
-  readonly positions: Float32Array
-  /** Attribute 1, with `width` numbers a place. */
-  readonly more?: { readonly data: Float32Array; readonly width: number }
-  readonly colours: Readonly<Record<string, Triple>>
-  readonly numbers: Readonly<Record<string, number>>
-  readonly testsDepth: boolean
-  readonly writesDepth: boolean
-  /** What the graphics card holds of it, once it has been drawn. */
-  held?: { readonly array: WebGLVertexArrayObject; readonly buffers: readonly WebGLBuffer[] }
-}
+type Entries = Parameters<ThreeCamera['projectionMatrix']['set']>
 
 export class Solids {
-  readonly #gl: WebGL2RenderingContext
-  readonly #programs = new Map<Kind, WebGLProgram>()
-  readonly #parts = new Map<string, Part>()
-  #ratio = 1
-  #camera: Camera | undefined
+  readonly #renderer: WebGLRenderer
+  readonly #camera = new ThreeCamera()
+  readonly #scene = new ThreeScene()
+  readonly #parts = new Map<string, Object3D>()
   /** Of all that is drawn, from Γ. */
   reach = 1
 
   /** @throws where there is no WebGL. */
-  constructor(private readonly canvas: HTMLCanvasElement) {
-    const gl = canvas.getContext('webgl2', { alpha: true, antialias: true, preserveDrawingBuffer: false })
-    if (!gl) throw new Error('no WebGL')
-    this.#gl = gl
-    this.#begin()
-    // A graphics card that was taken away comes back empty.
-    canvas.addEventListener('webglcontextlost', event => event.preventDefault())
-    canvas.addEventListener('webglcontextrestored', () => {
-      for (const part of this.#parts.values()) part.held = undefined
-      this.#begin()
-      if (this.#camera) this.draw(this.#camera)
-    })
-  }
-
-  #begin(): void {
-    const gl = this.#gl
-    for (const kind of KINDS) this.#programs.set(kind, programOf(gl, SHADERS[kind]))
-    gl.clearColor(0, 0, 0, 0)
-    gl.enable(gl.BLEND)
-    gl.blendFuncSeparate(gl.SRC_ALPHA, gl.ONE_MINUS_SRC_ALPHA, gl.ONE, gl.ONE_MINUS_SRC_ALPHA)
-    gl.depthFunc(gl.LEQUAL)
-    gl.polygonOffset(1.5, 2)
+  constructor(canvas: HTMLCanvasElement) {
+    this.#renderer = new WebGLRenderer({ canvas, alpha: true, antialias: true, preserveDrawingBuffer: false })
+    // Colours of the theme go to the screen as they are.
+    this.#renderer.outputColorSpace = LinearSRGBColorSpace
+    this.#renderer.setClearColor(0x000000, 0)
+    this.#camera.matrixWorldAutoUpdate = false
   }
 
   resize(width: number, height: number, ratio: number): void {
-    this.canvas.width = Math.floor(width * ratio)
-    this.canvas.height = Math.floor(height * ratio)
-    this.#ratio = ratio
+    this.#renderer.setPixelRatio(ratio)
+    this.#renderer.setSize(width, height, false)
+    this.#forDots(material => (material.uniforms.ratio.value = ratio))
   }
 
   draw(camera: Camera): void {
-    const gl = this.#gl
-    this.#camera = camera
-    if (gl.isContextLost()) return
     const { view, projection } = camera.matrices(this.reach)
-    gl.viewport(0, 0, this.canvas.width, this.canvas.height)
-    gl.depthMask(true)
-    gl.clear(gl.COLOR_BUFFER_BIT | gl.DEPTH_BUFFER_BIT)
-    // Rounded: two that have one middle keep their order while they turn.
-    const depth = ({ middle }: Part) => Math.round((1e6 * camera.depth(middle)) / this.reach)
-    const parts = [...this.#parts.values()].sort((a, b) => a.order - b.order || depth(a) - depth(b))
-    for (const part of parts) {
-      const program = this.#programs.get(part.kind)!
-      const place = (name: string) => gl.getUniformLocation(program, name)
-      gl.useProgram(program)
-      gl.uniformMatrix4fv(place('view'), true, view)
-      gl.uniformMatrix4fv(place('projection'), true, projection)
-      const numbers = { ...part.numbers, ratio: this.#ratio, reach: camera.radius }
-      for (const [name, value] of Object.entries(numbers)) gl.uniform1f(place(name), value)
-      for (const [name, value] of Object.entries(part.colours)) gl.uniform3f(place(name), ...value)
-      if (part.testsDepth) gl.enable(gl.DEPTH_TEST)
-      else gl.disable(gl.DEPTH_TEST)
-      gl.depthMask(part.writesDepth)
-      // Edges of a solid lie in its faces: the faces, and nothing else, stand back a little.
-      if (part.kind === 'glass') gl.enable(gl.POLYGON_OFFSET_FILL)
-      else gl.disable(gl.POLYGON_OFFSET_FILL)
-      part.held ??= hold(gl, part)
-      gl.bindVertexArray(part.held.array)
-      const mode = { glass: gl.TRIANGLES, lines: gl.LINES, dots: gl.POINTS }[part.kind]
-      gl.drawArrays(mode, 0, part.positions.length / 3)
-    }
+    this.#camera.matrixWorldInverse.set(...(view as Entries))
+    this.#camera.matrixWorld.copy(this.#camera.matrixWorldInverse).invert()
+    this.#camera.projectionMatrix.set(...(projection as Entries))
+    this.#camera.projectionMatrixInverse.copy(this.#camera.projectionMatrix).invert()
+    this.#forDots(material => (material.uniforms.reach.value = camera.radius))
+    this.#renderer.render(this.#scene, this.#camera)
+  }
+
+  #forDots(change: (material: ShaderMaterial) => void): void {
+    for (const part of this.#parts.values())
+      if (part instanceof Points) change(part.material as ShaderMaterial)
   }
 
   remove(name: string): void {
-    for (const [key, { held }] of [...this.#parts]) {
+    for (const key of [...this.#parts.keys()]) {
       if (key !== name && !key.startsWith(`${name}/`)) continue
-      if (held) {
-        this.#gl.deleteVertexArray(held.array)
-        for (const buffer of held.buffers) this.#gl.deleteBuffer(buffer)
-      }
+      const part = this.#parts.get(key) as Mesh
+      this.#scene.remove(part)
+      part.geometry.dispose()
+      for (const material of [part.material].flat()) material.dispose()
       this.#parts.delete(key)
     }
+  }
+
+  #add(name: string, part: Object3D, order: number): void {
+    part.frustumCulled = false
+    part.renderOrder = order
+    part.matrixAutoUpdate = false
+    this.#parts.set(name, part)
+    this.#scene.add(part)
   }
 
   /** The faces of a solid, or of copies of it. */
   setSolid(name: string, solid: SceneSolid, look: SolidLook, copies: readonly Triple[] = [[0, 0, 0]]): void {
     this.remove(name)
-    const { positions, normals } = triangles(solid, copies)
-    if (positions.length === 0) return
-    this.#parts.set(name, {
-      kind: 'glass',
-      order: look.solid ? 3 : 1,
-      middle: middleOf(positions),
-      positions: new Float32Array(positions),
-      more: { data: new Float32Array(normals), width: 3 },
-      colours: { colour: plainColour(look.colour), light: plainColour(look.shadow) },
-      numbers: { opacity: look.opacity, shade: look.solid ? 0.55 : 0.4 },
-      testsDepth: look.solid ?? false,
-      writesDepth: look.solid ?? false,
+    const geometry = triangles(solid, copies)
+    if (!geometry) return
+    const material = new ShaderMaterial({
+      ...GLASS,
+      uniforms: {
+        colour: { value: plainColour(look.colour) },
+        light: { value: plainColour(look.shadow) },
+        opacity: { value: look.opacity },
+        shade: { value: look.solid ? 0.55 : 0.4 },
+      },
+      transparent: true,
+      depthWrite: look.solid ?? false,
+      depthTest: look.solid ?? false,
+      side: DoubleSide,
+      // Edges of a solid lie in its faces: the faces stand back a little.
+      polygonOffset: true,
+      polygonOffsetFactor: 1.5,
+      polygonOffsetUnits: 2,
     })
+    this.#add(name, new Mesh(geometry, material), look.solid ? 3 : 1)
   }
 
   /** Thin edges of a solid, or of copies of it. */
@@ -206,16 +162,16 @@ export class Solids {
     const positions = copies.flatMap(at =>
       edges.flatMap(([i, j]) => [...sum(vertices[i], at), ...sum(vertices[j], at)]),
     )
-    this.#parts.set(name, {
-      kind: 'lines',
-      order: solid ? 4 : 2,
-      middle: middleOf(positions),
-      positions: new Float32Array(positions),
-      colours: { colour: plainColour(colour) },
-      numbers: { opacity },
-      testsDepth: solid ?? false,
-      writesDepth: false,
+    const geometry = new BufferGeometry()
+    geometry.setAttribute('position', new Float32BufferAttribute(positions, 3))
+    const material = new LineBasicMaterial({
+      color: plainColour(colour),
+      opacity,
+      transparent: true,
+      depthTest: solid ?? false,
+      depthWrite: false,
     })
+    this.#add(name, new LineSegments(geometry, material), solid ? 4 : 2)
   }
 
   /** Round dots of a size on the screen, in px. */
@@ -224,65 +180,26 @@ export class Solids {
     positions: readonly number[],
     radii: readonly number[],
     { colour, opacity }: { colour: string; opacity: number },
+    ratio: number,
   ): void {
     this.remove(name)
-    this.#parts.set(name, {
-      kind: 'dots',
-      order: 5,
-      middle: middleOf(positions),
-      positions: new Float32Array(positions),
-      more: { data: new Float32Array(radii), width: 1 },
-      colours: { colour: plainColour(colour) },
-      numbers: { opacity },
-      testsDepth: false,
-      writesDepth: false,
+    const geometry = new BufferGeometry()
+    geometry.setAttribute('position', new Float32BufferAttribute(positions, 3))
+    geometry.setAttribute('radius', new Float32BufferAttribute(radii, 1))
+    const material = new ShaderMaterial({
+      ...DOTS,
+      uniforms: {
+        colour: { value: plainColour(colour) },
+        opacity: { value: opacity },
+        ratio: { value: ratio },
+        reach: { value: 1 },
+      },
+      transparent: true,
+      depthTest: false,
+      depthWrite: false,
     })
+    this.#add(name, new Points(geometry, material), 5)
   }
-}
-
-function middleOf(positions: readonly number[]): Triple {
-  const middle = (axis: number): number => {
-    let [least, most] = [Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY]
-    for (let i = axis; i < positions.length; i += 3) {
-      least = Math.min(least, positions[i])
-      most = Math.max(most, positions[i])
-    }
-    return (least + most) / 2
-  }
-  return [middle(0), middle(1), middle(2)]
-}
-
-/** @throws where the graphics card takes no such program. */
-function programOf(gl: WebGL2RenderingContext, { vertex, fragment }: (typeof SHADERS)[Kind]): WebGLProgram {
-  const program = gl.createProgram()
-  for (const [type, text] of [
-    [gl.VERTEX_SHADER, vertex],
-    [gl.FRAGMENT_SHADER, fragment],
-  ] as const) {
-    const shader = gl.createShader(type)
-    if (!shader) throw new Error('no shader')
-    gl.shaderSource(shader, text)
-    gl.compileShader(shader)
-    gl.attachShader(program, shader)
-  }
-  gl.linkProgram(program)
-  if (!gl.getProgramParameter(program, gl.LINK_STATUS))
-    throw new Error(gl.getProgramInfoLog(program) || 'a shader does not link')
-  return program
-}
-
-function hold(gl: WebGL2RenderingContext, { positions, more }: Part): NonNullable<Part['held']> {
-  const array = gl.createVertexArray()
-  gl.bindVertexArray(array)
-  const buffers = [{ data: positions, width: 3 }, ...(more ? [more] : [])].map(({ data, width }, at) => {
-    const buffer = gl.createBuffer()
-    gl.bindBuffer(gl.ARRAY_BUFFER, buffer)
-    gl.bufferData(gl.ARRAY_BUFFER, data, gl.STATIC_DRAW)
-    gl.enableVertexAttribArray(at)
-    gl.vertexAttribPointer(at, width, gl.FLOAT, false, 0, 0)
-    return buffer
-  })
-  return { array, buffers }
 }
 
 /** Radii of mesh points in px: the area goes with the weight. */
@@ -291,10 +208,7 @@ export const dotRadii = ({ weights }: SceneMesh): number[] => {
   return weights.map(weight => 1.6 + 2.6 * Math.sqrt(weight / most))
 }
 
-function triangles(
-  { vertices, faces }: SceneSolid,
-  copies: readonly Triple[],
-): { positions: number[]; normals: number[] } {
+function triangles({ vertices, faces }: SceneSolid, copies: readonly Triple[]): BufferGeometry | undefined {
   const positions: number[] = []
   const normals: number[] = []
   for (const face of faces) {
@@ -307,7 +221,11 @@ function triangles(
           normals.push(...normal)
         }
   }
-  return { positions, normals }
+  if (positions.length === 0) return undefined
+  const geometry = new BufferGeometry()
+  geometry.setAttribute('position', new Float32BufferAttribute(positions, 3))
+  geometry.setAttribute('normal', new Float32BufferAttribute(normals, 3))
+  return geometry
 }
 
 export function normalOf(corners: readonly Triple[]): Triple {
@@ -323,12 +241,16 @@ export function normalOf(corners: readonly Triple[]): Triple {
 }
 
 /** A colour of the theme as it stands, without conversion: the canvas is not colour-managed either. */
-function plainColour(css: string): Triple {
+function plainColour(css: string): Color {
   probe.fillStyle = '#888888'
   probe.fillStyle = css
   probe.clearRect(0, 0, 1, 1)
   probe.fillRect(0, 0, 1, 1)
   const [r, g, b] = probe.getImageData(0, 0, 1, 1).data
-  return [r / 255, g / 255, b / 255]
+  const colour = new Color()
+  colour.r = r / 255
+  colour.g = g / 255
+  colour.b = b / 255
+  return colour
 }
 const probe = new OffscreenCanvas(1, 1).getContext('2d', { willReadFrequently: true })!
