@@ -54,10 +54,7 @@ describe('the package', () => {
 
   it('holds a page for each rule that has a setting', () => {
     const rules = Object.keys(manifest.contributes.configuration.properties['braggline.checks'].properties)
-    assert.ok(rules.length > 50)
-    assert.deepStrictEqual(
-      rules.filter(rule => !files.includes(`docs/rules/${rule}.md`)),
-      [],
-    )
+    const pages = files.filter(file => /^docs\/rules\/[a-z-]+\.md$/.test(file))
+    assert.deepStrictEqual(pages.sort(), rules.map(rule => `docs/rules/${rule}.md`).sort())
   })
 })
