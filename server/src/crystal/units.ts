@@ -14,5 +14,4 @@ export const IN_ANGSTROM: Record<Unit, number> = { angstrom: 1, nm: 10, bohr: BO
 export const SYMBOL: Record<Unit, string> = { angstrom: 'Å', nm: 'nm', bohr: 'a₀' }
 export const INVERSE_SYMBOL: Record<Unit, string> = { angstrom: 'Å⁻¹', nm: 'nm⁻¹', bohr: 'a₀⁻¹' }
 
-export const toRadians = (degrees: number): number => (degrees * Math.PI) / 180
 export const isFiniteVector = (v: Vec3): boolean => v.every(Number.isFinite)
