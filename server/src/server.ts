@@ -107,6 +107,18 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     }
   }
 
+  /** The answer about the text that a request names; nothing where that text is not open. */
+  function about<P extends { uri: string } | { textDocument: { uri: string } }, R>(
+    name: string,
+    nothing: R,
+    answer: (snapshot: Snapshot, params: P) => R,
+  ): (params: P, token?: CancellationToken) => R {
+    return guard(name, nothing, params => {
+      const snapshot = snapshotOf('uri' in params ? params.uri : params.textDocument.uri)
+      return snapshot ? answer(snapshot, params) : nothing
+    })
+  }
+
   const findingsOf = guard('check', [] as Diagnostic[], (uri: string) => {
     const started = performance.now()
     const snapshot = snapshotOf(uri)
@@ -203,36 +215,22 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     return { kind: DocumentDiagnosticReportKind.Full, resultId, items }
   })
 
-  connection.onHover(
-    guard('hover', null, ({ textDocument, position }) => {
-      const snapshot = snapshotOf(textDocument.uri)
-      return snapshot ? hover(snapshot, position) : null
-    }),
-  )
+  // The features of the protocol.
+  connection.onHover(about('hover', null, (snapshot, { position }) => hover(snapshot, position)))
   connection.onCompletion(
-    guard('completion', [], ({ textDocument, position }) => {
-      const snapshot = snapshotOf(textDocument.uri)
-      return snapshot ? completion(snapshot, position, snippets) : []
-    }),
+    about('completion', [], (snapshot, { position }) => completion(snapshot, position, snippets)),
   )
-  connection.onDocumentSymbol(
-    guard('symbols', [], ({ textDocument }) => {
-      const snapshot = snapshotOf(textDocument.uri)
-      return snapshot ? symbols(snapshot) : []
-    }),
-  )
+  connection.onDocumentSymbol(about('symbols', [], snapshot => symbols(snapshot)))
   connection.onCodeAction(
-    guard('fixes', [], ({ textDocument: { uri }, range, context }) => {
-      const snapshot = snapshotOf(uri)
-      if (!snapshot) return []
-      return codeActions(snapshot, {
+    about('fixes', [], (snapshot, { textDocument: { uri }, range, context }) =>
+      codeActions(snapshot, {
         uri,
         version: snapshot.version,
         range,
         shown: context.diagnostics,
         only: context.only,
-      })
-    }),
+      }),
+    ),
   )
 
   connection.onRequest(CHECKED, async ({ uri, version }: CheckedParams): Promise<CheckedResult | null> => {
@@ -246,49 +244,43 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   })
   connection.onRequest(
     RECOMMENDED_PATH,
-    guard('recommended path', null, ({ uri, position }: RecommendedPathParams) => {
-      const snapshot = snapshotOf(uri)
-      return snapshot ? recommendedPathEdit(snapshot, position) : null
-    }),
+    about('recommended path', null, (snapshot, { position }: RecommendedPathParams) =>
+      recommendedPathEdit(snapshot, position),
+    ),
   )
 
   // The zone view. What needs a search for symmetry is left out of a picture until the search has ended.
   connection.onRequest(
     SCENE,
-    guard('scene', null, ({ uri, document }: DocumentParams): SceneResult | null => {
-      const snapshot = snapshotOf(uri)
-      return snapshot ? sceneAnswer(snapshot, document) : null
-    }),
+    about('scene', null, (snapshot, { document }: DocumentParams): SceneResult | null =>
+      sceneAnswer(snapshot, document),
+    ),
   )
   connection.onRequest(
     BANDS,
-    guard('bands', null, ({ uri, document }: DocumentParams): BandsResult | null => {
-      const snapshot = snapshotOf(uri)
-      return snapshot ? bandsAnswer(snapshot, document) : null
-    }),
+    about('bands', null, (snapshot, { document }: DocumentParams): BandsResult | null =>
+      bandsAnswer(snapshot, document),
+    ),
   )
   connection.onRequest(
     ZONE_SOLID,
-    guard('zone solid', null, ({ uri, document, n }: ZoneSolidParams): ZoneSolidResult | null => {
-      const snapshot = snapshotOf(uri)
-      return snapshot ? zoneSolidAnswer(snapshot, document, n) : null
-    }),
+    about('zone solid', null, (snapshot, { document, n }: ZoneSolidParams): ZoneSolidResult | null =>
+      zoneSolidAnswer(snapshot, document, n),
+    ),
   )
   connection.onRequest(
     FIGURE,
-    guard('figure', null, (params: FigureParams): FigureResult | null => {
-      const snapshot = snapshotOf(params.uri)
-      return snapshot ? figureAnswer(snapshot, params) : null
-    }),
+    about('figure', null, (snapshot, params: FigureParams): FigureResult | null =>
+      figureAnswer(snapshot, params),
+    ),
   )
   connection.onRequest(
     APPEND_TO_PATH,
-    guard(
+    about(
       'append to path',
       null,
-      ({ uri, version, document, labels, newPiece }: AppendParams): AppendResult | null => {
-        const snapshot = snapshotOf(uri)
-        const analysis = snapshot && documentOf(snapshot, document)
+      (snapshot, { version, document, labels, newPiece }: AppendParams): AppendResult | null => {
+        const analysis = documentOf(snapshot, document)
         if (!analysis || snapshot.version !== version) return null
         const edits = appendToPathEdits(snapshot, analysis, labels, newPiece)
         return edits && { version, edits }
