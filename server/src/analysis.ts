@@ -4,6 +4,7 @@ import { CHECKS } from './checks/index.ts'
 import { runChecks, type Severities, withoutAllowed } from './checks/run.ts'
 import { decode } from './format/decode.ts'
 import type { DecodedFile, LatticeDocument, Span } from './format/model.ts'
+import { SyntaxTree } from './format/tree.ts'
 import { Crystal } from './meaning/crystal.ts'
 import { lazy } from './meaning/lazy.ts'
 import type { Workshop } from './meaning/workshop.ts'
@@ -36,6 +37,12 @@ export class Snapshot {
   readonly #decoded = lazy(() => decode(this.text))
   get decoded(): DecodedFile {
     return this.#decoded()
+  }
+
+  readonly #tree = lazy(() => SyntaxTree.of(this.text))
+  /** The form of the text; undefined where it is too large or too deep to be read. */
+  get tree(): SyntaxTree | undefined {
+    return this.#tree()
   }
 
   readonly #documents = lazy((): readonly DocumentAnalysis[] =>

@@ -1,6 +1,7 @@
 /** Wires the protocol to analysis and features. Knows the connection and nothing of disk or process. */
 import {
   CancellationToken,
+  type ClientCapabilities,
   CodeActionKind,
   type Connection,
   type Diagnostic,
@@ -48,6 +49,7 @@ import {
   type ZoneSolidParams,
   type ZoneSolidResult,
 } from './protocol.ts'
+import { NAVIGATION, serveNavigation } from './server-navigation.ts'
 import { type StartWorker, WorkerSymmetry } from './symmetry-service.ts'
 
 export interface ServerOptions {
@@ -72,6 +74,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   let rulePages = options.rulePages
   let announces = false
   let snippets = false
+  let client: ClientCapabilities = {}
 
   const symmetry = new WorkerSymmetry(options.startWorker, () => {
     for (const [uri, snapshot] of snapshots) if (snapshot.pending) snapshots.delete(uri)
@@ -87,6 +90,13 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     const snapshot = new Snapshot(document.getText(), workshop, settings, document.version)
     snapshots.set(uri, snapshot)
     return snapshot
+  }
+
+  function* openTexts(): Iterable<[uri: string, snapshot: Snapshot]> {
+    for (const { uri } of documents.all()) {
+      const snapshot = snapshotOf(uri)
+      if (snapshot) yield [uri, snapshot]
+    }
   }
 
   /** One bad file, one bad request: it is logged, answered with nothing, and the server goes on. */
@@ -160,6 +170,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
 
   connection.onInitialize((params: InitializeParams): InitializeResult => {
     const { capabilities, initializationOptions } = params
+    client = capabilities
     pulls = capabilities.textDocument?.diagnostic !== undefined
     refreshes = capabilities.workspace?.diagnostics?.refreshSupport === true
     asksConfiguration = capabilities.workspace?.configuration === true
@@ -176,6 +187,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
         completionProvider: { triggerCharacters: [' ', '–', '-', '→', '|', ':'] },
         documentSymbolProvider: { label: 'Braggline' },
         codeActionProvider: { codeActionKinds: [CodeActionKind.QuickFix, FIX_ALL] },
+        ...NAVIGATION,
         ...(pulls
           ? { diagnosticProvider: { interFileDependencies: false, workspaceDiagnostics: false } }
           : {}),
@@ -232,6 +244,14 @@ export function startServer(connection: Connection, options: ServerOptions): voi
       }),
     ),
   )
+
+  serveNavigation({
+    connection,
+    about,
+    capabilities: () => client,
+    rulePages: () => rulePages,
+    open: openTexts,
+  })
 
   connection.onRequest(CHECKED, async ({ uri, version }: CheckedParams): Promise<CheckedResult | null> => {
     const document = documents.get(uri)

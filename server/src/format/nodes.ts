@@ -318,12 +318,12 @@ export const dashOf = ({ start }: CST.CollectionItem): CST.SourceToken | undefin
 const IS_BLANK: ReadonlySet<string> = new Set(['space', 'newline', 'comment', 'comma'])
 
 /** Where an item begins: its dash, its question mark, its key or its value. */
-function itemStart({ start, key, sep, value }: CST.CollectionItem): number {
+export function itemStart({ start, key, sep, value }: CST.CollectionItem): number {
   const first = start.find(({ type }) => !IS_BLANK.has(type)) ?? key ?? sep?.[0] ?? value
   return first?.offset ?? start[0]?.offset ?? 0
 }
 
-function itemEnd({ start, key, sep, value }: CST.CollectionItem): number {
+export function itemEnd({ start, key, sep, value }: CST.CollectionItem): number {
   if (value) return tokenEnd(value)
   const last = [...start, ...(sep ?? [])].findLast(({ type }) => !IS_BLANK.has(type))
   const end = last ? last.offset + last.source.length : 0

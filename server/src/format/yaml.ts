@@ -99,7 +99,7 @@ function tooLarge(size: number, most: number, besides: string): Problem {
 const CONTROLS = /[\0-\x08\x0b\x0c\x0e-\x1f\x7f]/g
 
 /** Of the same length, and without the characters by which the library's lexer talks to its parser. */
-const withoutControls = (text: string): string => text.replace(CONTROLS, '\ufffd')
+export const withoutControls = (text: string): string => text.replace(CONTROLS, '\ufffd')
 
 /** The lexer's marks: a document begins, a collection in brackets ends too early, a scalar follows. */
 const MARKS: ReadonlySet<string> = new Set(['\x02', '\x18', '\x1f'])
@@ -149,7 +149,7 @@ class Reading {
       return nothingBut(tooLarge(text.length, MOST_FOR_YAML, besides))
     }
     const faults = this.compose()
-    const runs = this.verifiedRuns()
+    const runs = verifiedRuns(this.documents, this.runs, this.cuts)
     if (!runs) return this.whole.length > MOST_FOR_YAML ? this.faultsAlone(faults) : undefined
     const documents = faults.map((own, i) => this.document(i, own, runs))
     this.addControls()
@@ -235,26 +235,6 @@ class Reading {
     } else if (first === '!') this.tags.push({ offset, source: lexeme })
   }
 
-  /** Each run by the item of its first row; undefined where one of them is not there. */
-  private verifiedRuns(): Map<CST.CollectionItem, Run> | undefined {
-    const verified = new Map<CST.CollectionItem, Run>()
-    if (this.runs.length === 0) return verified
-    const byDash = new Map(this.runs.map(run => [run.rows[0].dash, run]))
-    for (const { value } of this.documents) {
-      for (const { items } of blockSequences(value)) {
-        for (const [i, item] of items.entries()) {
-          const dash = dashOf(item)
-          const run = dash && byDash.get(this.cuts.back(dash.offset))
-          if (!run) continue
-          const last = i + 1 < items.length ? dashOf(items[i + 1]) : undefined
-          if (!last || this.cuts.back(last.offset) !== run.rows[run.rows.length - 1].dash) return undefined
-          verified.set(item, run)
-        }
-      }
-    }
-    return verified.size === this.runs.length ? verified : undefined
-  }
-
   private document(
     i: number,
     composed: readonly SyntaxFault[],
@@ -319,4 +299,28 @@ class Reading {
         this.comments.push({ at: [from, to], text: this.whole.slice(from, to) })
     this.comments.sort((a, b) => a.at[0] - b.at[0])
   }
+}
+
+/** Each run by the item of its first row; undefined where one of them is not there. */
+export function verifiedRuns(
+  documents: readonly CST.Document[],
+  runs: readonly Run[],
+  cuts: Cuts,
+): Map<CST.CollectionItem, Run> | undefined {
+  const verified = new Map<CST.CollectionItem, Run>()
+  if (runs.length === 0) return verified
+  const byDash = new Map(runs.map(run => [run.rows[0].dash, run]))
+  for (const { value } of documents) {
+    for (const { items } of blockSequences(value)) {
+      for (const [i, item] of items.entries()) {
+        const dash = dashOf(item)
+        const run = dash && byDash.get(cuts.back(dash.offset))
+        if (!run) continue
+        const last = i + 1 < items.length ? dashOf(items[i + 1]) : undefined
+        if (!last || cuts.back(last.offset) !== run.rows[run.rows.length - 1].dash) return undefined
+        verified.set(item, run)
+      }
+    }
+  }
+  return verified.size === runs.length ? verified : undefined
 }

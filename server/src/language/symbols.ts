@@ -1,6 +1,7 @@
 import { type DocumentSymbol, type Range, SymbolKind } from 'vscode-languageserver-types'
 import type { DocumentAnalysis, Snapshot } from '../analysis.ts'
 import type { Entry, Span } from '../format/model.ts'
+import { displayLabel } from '../format/path.ts'
 import { count } from '../meaning/wording.ts'
 import { rangeOf } from './diagnostics.ts'
 
@@ -15,6 +16,7 @@ export function symbols(snapshot: Snapshot): DocumentSymbol[] {
     const { document } = analysis
     const name = document.title?.value || `Crystal ${document.number}`
     return symbol(snapshot, name, SymbolKind.Namespace, document.at, document.title?.at ?? document.at, {
+      detail: analysis.crystal.bravais,
       children: partsOf(snapshot, analysis),
     })
   })
@@ -44,20 +46,29 @@ function partsOf(snapshot: Snapshot, { document, crystal }: DocumentAnalysis): D
   }
   if (document.points) {
     part('points', SymbolKind.Module, document.points, {
+      detail: count(document.points.items.length, 'point'),
       children: document.points.items.map(({ label, key, at }) =>
-        symbol(snapshot, label, SymbolKind.Key, [key[0], Math.max(key[1], at[1])], key),
+        symbol(snapshot, displayLabel(label), SymbolKind.Key, [key[0], Math.max(key[1], at[1])], key, {
+          detail: shortText(snapshot, at),
+        }),
       ),
     })
   }
   if (document.path) {
     part('path', SymbolKind.Array, document.path, {
       children: document.path.pieces.map(({ labels, at }) =>
-        symbol(snapshot, labels.map(({ label }) => label).join(' – '), SymbolKind.Event, at, at),
+        symbol(
+          snapshot,
+          labels.map(({ label }) => displayLabel(label)).join(' – '),
+          SymbolKind.Event,
+          at,
+          at,
+        ),
       ),
     })
   }
   for (const [name, entry] of document.keys) {
-    if (!PARTS_OF_THEIR_OWN.has(name)) part(name, SymbolKind.Property, entry, detailOf(snapshot, name, entry))
+    if (!PARTS_OF_THEIR_OWN.has(name)) part(name, SymbolKind.Property, entry, detailOf(snapshot, entry))
   }
   return parts.sort(
     (a, b) => a.range.start.line - b.range.start.line || a.range.start.character - b.range.start.character,
@@ -65,10 +76,21 @@ function partsOf(snapshot: Snapshot, { document, crystal }: DocumentAnalysis): D
 }
 
 const PARTS_OF_THEIR_OWN = new Set(['lattice', 'atoms', 'points', 'path'])
-const SHORT_VALUES = new Set(['title', 'unit', 'space-group', 'labels', 'tolerance', 'time-reversal'])
 
-const detailOf = (snapshot: Snapshot, name: string, { at }: Entry): Partial<DocumentSymbol> =>
-  SHORT_VALUES.has(name) ? { detail: snapshot.text.slice(...at) } : {}
+/** The value as it is written, on one line. */
+const detailOf = (snapshot: Snapshot, { at }: Entry): Partial<DocumentSymbol> => ({
+  detail: shortText(snapshot, at),
+})
+
+const LONGEST_DETAIL = 40
+/** Of a longer value its beginning. */
+function shortText({ text }: Snapshot, [start, end]: Span): string {
+  const line = text
+    .slice(start, Math.min(end, start + 4 * LONGEST_DETAIL))
+    .replace(/\s+/g, ' ')
+    .trim()
+  return line.length > LONGEST_DETAIL ? `${line.slice(0, LONGEST_DETAIL)}…` : line
+}
 
 function grouped(atoms: DocumentSymbol[]): DocumentSymbol[] {
   if (atoms.length <= GROUP) return atoms
