@@ -19,6 +19,14 @@ const RESTART_WINDOW_MS = 3 * 60_000
 /** The longest wait for a server to say goodbye before it is left behind, in ms. */
 const STOP_LIMIT_MS = 2_000
 
+/** Commands that a hover of the server may link to: none of them changes more than the text that it is about. */
+const LINKED_COMMANDS = [
+  'braggline.openZoneView',
+  'braggline.openReport',
+  'braggline.insertRecommendedPath',
+  'braggline.showLog',
+]
+
 export type CreateClient = (options: LanguageClientOptions) => Promise<BaseLanguageClient>
 
 interface Surroundings {
@@ -112,7 +120,9 @@ export class Server {
       initializationOptions: {
         rulePages: Uri.joinPath(extensionUri, 'docs', 'rules').toString(),
         status: true,
+        commands: true,
       },
+      markdown: { isTrusted: { enabledCommands: LINKED_COMMANDS } },
       initializationFailedHandler: () => false,
       errorHandler: errorHandler(log),
       diagnosticPullOptions: {

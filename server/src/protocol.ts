@@ -206,3 +206,18 @@ export interface FigureResult {
   readonly svg: string | null
 }
 export const FIGURE = 'braggline/figure'
+
+export interface ReportParams {
+  readonly uri: string
+  readonly version: number
+  /** Markdown unless it says otherwise. */
+  readonly format?: 'markdown' | 'html'
+}
+/** The lattice report of all crystals of a text. */
+export interface ReportResult {
+  readonly version: number
+  readonly text: string
+  /** A search for symmetry is still running: what needs it comes with the next answer. */
+  readonly pending: boolean
+}
+export const REPORT = 'braggline/report'

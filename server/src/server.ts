@@ -22,6 +22,7 @@ import { diagnostics } from './language/diagnostics.ts'
 import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
 import { hover } from './language/hover.ts'
+import { reportAnswer } from './language/report.ts'
 import { recommendedPathEdit } from './language/recommended-path.ts'
 import { statusOf } from './language/status.ts'
 import { bandsAnswer, documentOf, figureAnswer, sceneAnswer, zoneSolidAnswer } from './language/zone-view.ts'
@@ -42,6 +43,9 @@ import {
   type FigureResult,
   RECOMMENDED_PATH,
   type RecommendedPathParams,
+  REPORT,
+  type ReportParams,
+  type ReportResult,
   SCENE,
   type SceneResult,
   STATUS,
@@ -267,6 +271,11 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     about('recommended path', null, (snapshot, { position }: RecommendedPathParams) =>
       recommendedPathEdit(snapshot, position),
     ),
+  )
+
+  connection.onRequest(
+    REPORT,
+    about('report', null, (snapshot, params: ReportParams): ReportResult => reportAnswer(snapshot, params)),
   )
 
   // The zone view. What needs a search for symmetry is left out of a picture until the search has ended.

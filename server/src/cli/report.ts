@@ -1,6 +1,7 @@
 import pc from 'picocolors'
 import { harmless } from '../exchange/layout.ts'
-import { type Report, reportOf } from '../exchange/report.ts'
+import { type FullReport, fullReport } from '../exchange/report-full.ts'
+import { reportHtml } from '../exchange/report-html.ts'
 import { reportMarkdown } from '../exchange/report-markdown.ts'
 import { reportText } from '../exchange/report-text.ts'
 import { documentsOf, type Engine, withoutSymmetry } from './engine.ts'
@@ -22,8 +23,8 @@ export const report: Verb = {
     {
       name: 'format',
       value: 'FORMAT',
-      choices: ['text', 'markdown', 'json', 'jsonl'],
-      help: 'text (the default), markdown, json or jsonl (one crystal a line).',
+      choices: ['text', 'markdown', 'html', 'json', 'jsonl'],
+      help: 'text (the default), markdown or html (both with the figure of the zone), json or jsonl (one crystal a line).',
     },
     DOCUMENT,
     OUTPUT,
@@ -33,6 +34,7 @@ export const report: Verb = {
     'braggline report lead-telluride.lattice.yaml',
     'braggline report survey.lattice.yaml --document 2 --format json',
     'braggline report . --format markdown -o zones.md',
+    'braggline report lead-telluride.lattice.yaml --format html -o lead-telluride.html',
   ],
 
   async run({ given, io, engine: start }: Call): Promise<number> {
@@ -41,7 +43,7 @@ export const report: Verb = {
     const { names, failures } = await findFiles(given.operands, io)
     for (const failure of failures) desk.fail(failure)
     const engine = start()
-    const reports: Report[] = []
+    const reports: FullReport[] = []
     for (const [i, name] of names.entries()) {
       desk.progress(`reporting file ${i + 1} of ${names.length}: ${harmless(name)}`)
       try {
@@ -62,7 +64,7 @@ async function reportsOf(
   { name, text }: LatticeText,
   picked: number | undefined,
   desk: Desk,
-): Promise<Report[]> {
+): Promise<FullReport[]> {
   const snapshot = await engine.check(text)
   const documents = documentsOf(snapshot, name, picked)
   const why = '`braggline check` says why'
@@ -72,25 +74,24 @@ async function reportsOf(
     const { number } = analysis.document
     if (!analysis.crystal.lattice)
       desk.fail(`${name}: document ${number} has no lattice that could be built; ${why}`)
-    return reportOf(
-      name,
-      analysis,
-      snapshot.findings.filter(({ document }) => document === number),
-    )
+    return fullReport(name, snapshot, analysis)
   })
 }
 
-function written(reports: readonly Report[], format: string, colour: boolean): string {
+function written(reports: readonly FullReport[], format: string, colour: boolean): string {
+  const facts = reports.map(({ report }) => report)
   switch (format) {
     case 'json':
-      return `${JSON.stringify(reports.length === 1 ? reports[0] : reports, null, 2)}\n`
+      return `${JSON.stringify(facts.length === 1 ? facts[0] : facts, null, 2)}\n`
     case 'jsonl':
-      return reports.map(report => `${JSON.stringify(report)}\n`).join('')
+      return facts.map(report => `${JSON.stringify(report)}\n`).join('')
     case 'markdown':
-      return reports.map(reportMarkdown).join('\n')
+      return reportMarkdown(reports)
+    case 'html':
+      return reportHtml(reports)
     default: {
       const paint = pc.createColors(colour)
-      return reports.map(report => reportText(report, paint)).join('\n\n')
+      return facts.map(report => reportText(report, paint)).join('\n\n')
     }
   }
 }

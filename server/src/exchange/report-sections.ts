@@ -13,6 +13,7 @@ import {
   length,
   plain,
 } from '../meaning/wording.ts'
+import type { FindingJson } from './findings-json.ts'
 import { tallyInWords } from './findings-text.ts'
 import type { Alignment } from './layout.ts'
 import type { MeshReport, PointReport, Report } from './report.ts'
@@ -44,17 +45,26 @@ export const CARE =
 /** More digits than a message has: numbers of a report are compared with those of other programs. */
 const DIGITS = 6
 
-export function reportInWords(report: Report): ReportInWords {
+/** @param found each finding, for outputs that list them; else they are counted only. */
+export function reportInWords(report: Report, found: readonly FindingJson[] = []): ReportInWords {
   const { file, document, title } = report
   const origin = `${file}, document ${document}`
   return {
     title: title ?? 'Lattice report',
     origin,
-    sections: [lattice, reciprocal, zone, symmetry, points, path, meshes, findings].flatMap(
-      part => part(report) ?? [],
-    ),
+    sections: [
+      ...[lattice, reciprocal, zone, symmetry, points, path, meshes].flatMap(part => part(report) ?? []),
+      findings(report, found),
+    ],
     care: CARE,
   }
+}
+
+/** What stands below the figure of the zone. */
+export function figureCaption({ zone, path, lattice }: Report): string {
+  const of = lattice?.bravais ? ` of the ${BRAVAIS[lattice.bravais as BravaisType].words} lattice` : ''
+  const along = path ? `, with the path ${formatPath(path.pieces, displayLabel)}` : ''
+  return `First Brillouin zone${of}: ${zone?.solid ?? ''}${along}`
 }
 
 const SUBSCRIPTS = ['₁', '₂', '₃']
@@ -315,8 +325,17 @@ function meshSection(
   return { title, facts, tables: [] }
 }
 
-const findings = ({ findings }: Report): Section => ({
+const findings = ({ findings }: Report, found: readonly FindingJson[]): Section => ({
   title: 'Findings',
   facts: [['findings', tallyInWords(findings) || 'none']],
-  tables: [],
+  tables:
+    found.length === 0
+      ? []
+      : [
+          {
+            head: ['line', 'severity', 'finding', 'rule'],
+            rows: found.map(({ line, severity, message, rule }) => [String(line), severity, message, rule]),
+            alignments: ['right', 'left', 'left', 'left'],
+          },
+        ],
 })

@@ -3,7 +3,6 @@ import { join } from 'node:path'
 import { Ajv } from 'ajv'
 import { describe, expect, test } from 'vitest'
 import type { MeshReport, Report } from '../../../server/src/exchange/report.ts'
-import { reportMarkdown } from '../../../server/src/exchange/report-markdown.ts'
 import { isMesh } from '../../../server/src/exchange/report-sections.ts'
 import { closed } from './closed.ts'
 import { fixture, NAMES, reports } from './support.ts'
@@ -275,10 +274,4 @@ describe.each(NAMES)('%s', name => {
     for (const report of reports(fixture(name)))
       expect(validate(JSON.parse(JSON.stringify(report))), JSON.stringify(validate.errors)).toBe(true)
   })
-})
-
-test('a title cannot become markup', () => {
-  const title = '<img src=x> [a](http://b) *c* | `d` ![e](f)'
-  const line = reportMarkdown(one(`title: "${title}"\nlattice: {bravais: cP, a: 4}\n`)).split('\n')[0]
-  expect(line).toBe('# \\<img src=x\\> [a\\](http://b) \\*c\\* \\| \\`d\\` \\![e\\](f)')
 })

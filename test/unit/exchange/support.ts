@@ -3,6 +3,7 @@ import { join } from 'node:path'
 import { Snapshot } from '../../../server/src/analysis.ts'
 import type { CheckedFile } from '../../../server/src/exchange/findings-json.ts'
 import { type Report, reportOf } from '../../../server/src/exchange/report.ts'
+import { type FullReport, fullReport } from '../../../server/src/exchange/report-full.ts'
 import { Workshop } from '../../../server/src/meaning/workshop.ts'
 import { loadSymmetryFromDisk } from '../../../server/src/symmetry-node.ts'
 import { directSymmetry } from '../../../server/src/symmetry-service.ts'
@@ -28,4 +29,9 @@ export function reports(text: string, file = 'a.lattice.yaml'): Report[] {
       findings.filter(({ document }) => document === analysis.document.number),
     ),
   )
+}
+
+export function fullReports(text: string, file = 'a.lattice.yaml'): FullReport[] {
+  const { snapshot } = checked(text, file)
+  return snapshot.documents.map(analysis => fullReport(file, snapshot, analysis))
 }
