@@ -60,7 +60,10 @@ const builds = [
   {
     ...browser,
     entryPoints: { view: 'client/view/main.ts', 'view-style': 'client/view/view.css' },
-    format: 'iife',
+    // The library that draws solids is a bundle of its own, fetched after the first picture.
+    format: 'esm',
+    splitting: true,
+    chunkNames: 'view-[name]',
     minify: true,
   },
 ]

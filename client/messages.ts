@@ -39,6 +39,10 @@ const LARGEST_PICTURE = 100_000_000
 export const FIRST_SHELL_ZONE = 2
 export const LAST_SHELL_ZONE = 8
 
+/** Messages as JSON that no mark of HTML stands in: the page of the view begins with them. */
+export const embedded = (messages: readonly ToView[]): string =>
+  JSON.stringify(messages).replaceAll('<', '\\u003c')
+
 type Fields = Readonly<Record<string, unknown>>
 
 const isRecord = (data: unknown): data is Fields =>

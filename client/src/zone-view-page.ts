@@ -1,7 +1,11 @@
 import { Uri, type Webview } from 'vscode'
+import { embedded, type ToView } from '../messages.ts'
 
-/** The page of the zone view. Nothing in it comes from a file: all of that arrives as messages. */
-export function viewPage(webview: Webview, extensionUri: Uri): string {
+/**
+ * The page of the zone view. Nothing in it comes from a file but the messages that it begins with: data, that the page
+ * validates as it does those that come later.
+ */
+export function viewPage(webview: Webview, extensionUri: Uri, headStart: readonly ToView[]): string {
   const address = (name: string) => String(webview.asWebviewUri(Uri.joinPath(extensionUri, 'dist', name)))
   const nonce = newNonce()
   const policy = [
@@ -25,6 +29,7 @@ export function viewPage(webview: Webview, extensionUri: Uri): string {
 <button type="button" data-name="points" data-value="off" title="All points of the label book">All points</button>
 <button type="button" data-name="wedge" data-value="off" title="The irreducible wedge">Wedge</button>
 <button type="button" data-name="mesh" data-value="off" title="Irreducible mesh points, the larger the more they weigh">Mesh</button>
+<select data-name="which" data-value="0" aria-label="Which mesh" title="Which mesh of the file" hidden><option value="0"></option></select>
 <button type="button" data-name="bands" data-value="on" title="Empty-lattice bands along the path">Bands</button>
 <button type="button" data-name="perspective" data-value="off" title="Perspective instead of parallel projection">Perspective</button>
 <select data-name="around" data-value="none" aria-label="Around the first zone" title="What stands around the first zone">
@@ -66,7 +71,8 @@ export function viewPage(webview: Webview, extensionUri: Uri): string {
 <p id="words" class="aside"></p>
 </div>
 <div id="strip" tabindex="0" role="group" aria-label="Empty-lattice bands. Left and right arrow move the marker along the path."></div>
-<script nonce="${nonce}" src="${address('view.js')}"></script>
+<script type="application/json" id="head-start">${embedded(headStart)}</script>
+<script type="module" nonce="${nonce}" src="${address('view.js')}"></script>
 </body>
 </html>`
 }

@@ -39,6 +39,8 @@ import type { Server } from './server.ts'
 import { viewPage } from './zone-view-page.ts'
 
 const VIEW_TYPE = 'braggline.zoneView'
+/** How long the page waits for its first picture, in ms; the picture then follows as a message. */
+const HEAD_START_MS = 150
 /** How long a word stays in the status bar, in ms. */
 const WORD_MS = 6_000
 
@@ -106,11 +108,13 @@ class ZoneView {
   readonly #subscriptions: Disposable[] = []
   /** The page listens. A hidden tab has no page. */
   #ready = false
+  #disposed = false
   #asking = false
   #askAgain = false
   /** What was last asked for and found; said again to a page that has just come up. */
   #picture: ToView[] = []
   #shown: { readonly version: number; readonly pending: boolean; readonly document: number } | undefined
+  #recoloured = false
   #documents: readonly TextRange[] = []
   /** Ordinal of the crystal in its file, from 1. */
   #document = 1
@@ -118,14 +122,17 @@ class ZoneView {
   constructor(
     private readonly panel: WebviewPanel,
     private readonly uri: Uri,
-    extensionUri: Uri,
+    private readonly extensionUri: Uri,
     private readonly tools: Tools,
   ) {
     const isMine = (document: TextDocument) => document.uri.toString() === uri.toString()
     this.#subscriptions.push(
       panel.webview.onDidReceiveMessage(data => void this.#receive(data)),
       panel.onDidChangeViewState(() => {
-        if (!panel.visible) this.#ready = false
+        if (panel.visible || !this.#ready) return
+        this.#ready = false
+        // The page is gone. The one that comes with the tab must not begin with an old picture.
+        this.#setPage([])
       }),
       workspace.onDidChangeTextDocument(({ document, contentChanges }) => {
         if (isMine(document) && contentChanges.length > 0) void this.#refresh()
@@ -138,17 +145,33 @@ class ZoneView {
       }),
       // What needed a search for symmetry, and the findings after it.
       tools.server.onChecked(({ uri: checked, version, pending }) => {
-        if (checked === uri.toString() && this.#shown?.pending && !pending && version >= this.#shown.version)
-          void this.#refresh()
+        if (checked !== uri.toString() || !this.#shown || version < this.#shown.version) return
+        if (!this.#recoloured && !(this.#shown.pending && !pending)) return
+        this.#shown = undefined
+        this.#recoloured = false
+        void this.#refresh()
+      }),
+      // The same text with other severities: its colours change after the next check.
+      workspace.onDidChangeConfiguration(change => {
+        if (change.affectsConfiguration('braggline.checks', uri)) this.#recoloured = true
       }),
     )
     panel.onDidDispose(() => {
       this.#ready = false
+      this.#disposed = true
       for (const subscription of this.#subscriptions) subscription.dispose()
     })
-    panel.webview.html = viewPage(panel.webview, extensionUri)
-    // The picture is made while the page loads.
-    void this.#refresh()
+    void this.#open()
+  }
+
+  /** The page comes with its first picture in it, unless that takes long: a message would need a round trip more. */
+  async #open(): Promise<void> {
+    await Promise.race([this.#refresh(), new Promise(resolve => setTimeout(resolve, HEAD_START_MS))])
+    if (!this.#disposed) this.#setPage(this.#picture)
+  }
+
+  #setPage(headStart: readonly ToView[]): void {
+    this.panel.webview.html = viewPage(this.panel.webview, this.extensionUri, headStart)
   }
 
   get isActive(): boolean {

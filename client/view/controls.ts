@@ -59,6 +59,14 @@ export class Switches {
     }
   }
 
+  /** The choices of one select, by their place; a single one is none, and it hides. */
+  offer(name: string, choices: readonly string[]): void {
+    const control = this.#controls.get(name) as HTMLSelectElement
+    control.replaceChildren(...choices.map((choice, i) => new Option(choice, String(i))))
+    control.hidden = choices.length < 2
+    this.#show(name)
+  }
+
   /** Names of what is on. */
   get summary(): string {
     return Object.entries(this.values)
@@ -71,7 +79,8 @@ export class Switches {
     const control = this.#controls.get(name)!
     if (control instanceof HTMLSelectElement) {
       control.value = this.values[name]
-      if (control.value !== this.values[name]) this.values[name] = control.value = control.options[0].value
+      if (control.value !== this.values[name])
+        this.values[name] = control.value = control.options[0]?.value ?? ''
     } else control.setAttribute('aria-pressed', String(this.values[name] === 'on'))
   }
 }

@@ -1,7 +1,7 @@
 /** Lines, arrows and small marks: drawn on a plain canvas above the solids, so that they are crisp at any size. */
 import type { Scene, SceneSegment, SceneSeverity, Triple } from '../../server/src/protocol.ts'
 import { along, type Camera, dot } from './camera.ts'
-import { normalOf } from './solids.ts'
+import { normalOf } from './shapes.ts'
 import type { Theme } from './theme.ts'
 
 export interface Shown {

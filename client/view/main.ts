@@ -1,6 +1,14 @@
 /** The zone view inside its webview: takes finished geometry, draws it, and says what a person does with it. */
 import { type FromView, LAST_SHELL_ZONE, readToView, type ToView } from '../messages.ts'
-import type { Bands, Scene, ScenePoint, SceneSolid, TextRange, Triple } from '../../server/src/protocol.ts'
+import type {
+  Bands,
+  Scene,
+  SceneMesh,
+  ScenePoint,
+  SceneSolid,
+  TextRange,
+  Triple,
+} from '../../server/src/protocol.ts'
 import { along, Camera, dot, type Stand } from './camera.ts'
 import { fillCard } from './card.ts'
 import { element, Switches } from './controls.ts'
@@ -9,7 +17,8 @@ import { extentOf, Ink, type Marks, triad } from './ink.ts'
 import { distanceTo, LabelLayout, nearestOn, type Wanted } from './labels.ts'
 import { type Name, namesOf, putInto } from './names.ts'
 import { pictureOf } from './picture.ts'
-import { dotRadii, Solids } from './solids.ts'
+import { dotRadii, filled } from './shapes.ts'
+import { Solids } from './solids.ts'
 import { Strip } from './strip.ts'
 import { onThemeChange, readTheme, type Theme } from './theme.ts'
 
@@ -79,10 +88,12 @@ function keep(): void {
 
 // What comes in.
 
-window.addEventListener('message', ({ data }: MessageEvent<unknown>) => {
+window.addEventListener('message', ({ data }: MessageEvent<unknown>) => take(data))
+
+function take(data: unknown): void {
   const message = readToView(data)
   if (message) receive(message)
-})
+}
 
 function receive(message: ToView): void {
   switch (message.kind) {
@@ -130,6 +141,10 @@ function show(next: Scene): void {
   if (zoneAsked() !== undefined) say({ kind: 'solid', n: zoneAsked()! })
   waiting = waiting.filter(label => next.points.some(point => point.label === label))
   words.textContent = next.words.join(' ')
+  switches.offer(
+    'which',
+    next.meshes.map(({ name }, i) => name ?? `mesh ${i + 1}`),
+  )
   switches.enable({
     wedge: next.wedge !== undefined,
     mesh: next.meshes.length > 0,
@@ -143,7 +158,6 @@ function show(next: Scene): void {
     edges: String(next.zone.edges.length),
     vertices: String(next.zone.vertices.length),
     segments: String(next.segments.length),
-    mesh: String(next.meshes[0]?.weights.length ?? 0),
     dimension: String(next.dimension),
   })
   fillSolids()
@@ -168,20 +182,12 @@ function marksAt(line: number, character: number): Marks {
 
 // What is drawn.
 
-/** In the plane the zone has no faces: it is one. */
-function filled(solid: SceneSolid): SceneSolid {
-  if (solid.faces.length > 0 || solid.vertices.length < 3) return solid
-  const corners = solid.vertices.map((_, i) => i)
-  const middle = solid.vertices.reduce<Triple>((m, v) => along(m, v, 1 / 2), solid.vertices[0])
-  const bearing = (i: number) =>
-    Math.atan2(solid.vertices[i][1] - middle[1], solid.vertices[i][0] - middle[0])
-  return { ...solid, faces: [corners.sort((i, j) => bearing(i) - bearing(j))] }
-}
-
 const zoneAsked = (): number | undefined => {
   const [, n] = /^zone-(\d)$/.exec(switches.values.around) ?? []
   return n ? Number(n) : undefined
 }
+
+const chosenMesh = (): SceneMesh | undefined => scene?.meshes[Number(switches.values.which)]
 
 function fillSolids(): void {
   if (!solids || !scene) return
@@ -232,7 +238,7 @@ function fillSolids(): void {
     solids.setEdges('nth/edges', zoneSolid.solid, { colour: theme.ink, opacity: 0.7, solid: true })
   }
   solids.remove('mesh')
-  const [mesh] = scene.meshes
+  const mesh = chosenMesh()
   if (values.mesh === 'on' && mesh)
     solids.setDots(
       'mesh',
@@ -243,7 +249,11 @@ function fillSolids(): void {
     )
   const farthest = [...first, ...second].reduce((most, v) => Math.max(most, Math.hypot(...v)), 0)
   solids.reach = 1.2 * (farthest + camera.radius)
-  Object.assign(stage.dataset, { around, shown: switches.summary })
+  Object.assign(stage.dataset, {
+    around,
+    shown: switches.summary,
+    mesh: String(mesh?.weights.length ?? 0),
+  })
 }
 
 let shownNames: Name[] = []
@@ -294,7 +304,7 @@ function frame(): void {
   if (drawnFrames === 1) {
     stage.dataset.firstPicture = performance.now().toFixed(0)
     // The picture comes first: what is not needed for it is made after it.
-    setTimeout(startGlass)
+    setTimeout(() => void startGlass())
   }
 }
 
@@ -315,10 +325,10 @@ function drawInk(target: CanvasRenderingContext2D): void {
 const fontFamily = (): string => getComputedStyle(document.body).fontFamily
 
 /** WebGL takes a moment to wake up. Without it, lines and labels are drawn all the same. */
-function startGlass(): void {
+async function startGlass(): Promise<void> {
   if (solids) return
   try {
-    solids = new Solids(glass)
+    solids = new Solids(glass, await import('./three.ts'))
     solids.resize(camera.width, camera.height, devicePixelRatio)
     stage.dataset.glass = 'on'
   } catch {
@@ -581,4 +591,6 @@ onThemeChange(() => {
 document.body.classList.toggle('with-bands', switches.values.bands === 'on')
 tellWriting()
 switches.offerZones(LAST_SHELL_ZONE)
+// What the page brought with it is drawn at once; a message would come a little later.
+for (const message of JSON.parse(element('head-start').textContent || '[]')) take(message)
 say({ kind: 'ready' })

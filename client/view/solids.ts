@@ -1,22 +1,20 @@
 /** What WebGL draws: translucent solids, and points by the thousand. Lines and labels are drawn above it. */
-import {
+import type {
   BufferGeometry,
   Camera as ThreeCamera,
   Color,
-  DoubleSide,
-  Float32BufferAttribute,
-  LineBasicMaterial,
-  LineSegments,
-  LinearSRGBColorSpace,
   Mesh,
-  type Object3D,
-  Points,
+  Object3D,
   Scene as ThreeScene,
   ShaderMaterial,
   WebGLRenderer,
 } from 'three'
-import type { SceneMesh, SceneSolid, Triple } from '../../server/src/protocol.ts'
+import type { SceneSolid, Triple } from '../../server/src/protocol.ts'
 import { type Camera, sum } from './camera.ts'
+import { normalOf } from './shapes.ts'
+
+/** The part of the library that is used. It comes after the first picture, which does without. */
+export type Three = typeof import('./three.ts')
 
 /** Faces seen edge-on are a little denser, as of glass; one side is in the light. */
 const GLASS = {
@@ -70,18 +68,27 @@ export interface SolidLook {
 type Entries = Parameters<ThreeCamera['projectionMatrix']['set']>
 
 export class Solids {
+  readonly #three: Three
   readonly #renderer: WebGLRenderer
-  readonly #camera = new ThreeCamera()
-  readonly #scene = new ThreeScene()
+  readonly #camera: ThreeCamera
+  readonly #scene: ThreeScene
   readonly #parts = new Map<string, Object3D>()
   /** Of all that is drawn, from Γ. */
   reach = 1
 
   /** @throws where there is no WebGL. */
-  constructor(canvas: HTMLCanvasElement) {
-    this.#renderer = new WebGLRenderer({ canvas, alpha: true, antialias: true, preserveDrawingBuffer: false })
+  constructor(canvas: HTMLCanvasElement, three: Three) {
+    this.#three = three
+    this.#camera = new three.Camera()
+    this.#scene = new three.Scene()
+    this.#renderer = new three.WebGLRenderer({
+      canvas,
+      alpha: true,
+      antialias: true,
+      preserveDrawingBuffer: false,
+    })
     // Colours of the theme go to the screen as they are.
-    this.#renderer.outputColorSpace = LinearSRGBColorSpace
+    this.#renderer.outputColorSpace = three.LinearSRGBColorSpace
     this.#renderer.setClearColor(0x000000, 0)
     this.#camera.matrixWorldAutoUpdate = false
   }
@@ -104,7 +111,7 @@ export class Solids {
 
   #forDots(change: (material: ShaderMaterial) => void): void {
     for (const part of this.#parts.values())
-      if (part instanceof Points) change(part.material as ShaderMaterial)
+      if (part instanceof this.#three.Points) change(part.material as ShaderMaterial)
   }
 
   remove(name: string): void {
@@ -129,13 +136,14 @@ export class Solids {
   /** The faces of a solid, or of copies of it. */
   setSolid(name: string, solid: SceneSolid, look: SolidLook, copies: readonly Triple[] = [[0, 0, 0]]): void {
     this.remove(name)
-    const geometry = triangles(solid, copies)
+    const { DoubleSide, Mesh, ShaderMaterial } = this.#three
+    const geometry = this.#triangles(solid, copies)
     if (!geometry) return
     const material = new ShaderMaterial({
       ...GLASS,
       uniforms: {
-        colour: { value: plainColour(look.colour) },
-        light: { value: plainColour(look.shadow) },
+        colour: { value: this.#plainColour(look.colour) },
+        light: { value: this.#plainColour(look.shadow) },
         opacity: { value: look.opacity },
         shade: { value: look.solid ? 0.55 : 0.4 },
       },
@@ -159,13 +167,14 @@ export class Solids {
     copies: readonly Triple[] = [[0, 0, 0]],
   ): void {
     this.remove(name)
+    const { BufferGeometry, Float32BufferAttribute, LineBasicMaterial, LineSegments } = this.#three
     const positions = copies.flatMap(at =>
       edges.flatMap(([i, j]) => [...sum(vertices[i], at), ...sum(vertices[j], at)]),
     )
     const geometry = new BufferGeometry()
     geometry.setAttribute('position', new Float32BufferAttribute(positions, 3))
     const material = new LineBasicMaterial({
-      color: plainColour(colour),
+      color: this.#plainColour(colour),
       opacity,
       transparent: true,
       depthTest: solid ?? false,
@@ -183,13 +192,14 @@ export class Solids {
     ratio: number,
   ): void {
     this.remove(name)
+    const { BufferGeometry, Float32BufferAttribute, Points, ShaderMaterial } = this.#three
     const geometry = new BufferGeometry()
     geometry.setAttribute('position', new Float32BufferAttribute(positions, 3))
     geometry.setAttribute('radius', new Float32BufferAttribute(radii, 1))
     const material = new ShaderMaterial({
       ...DOTS,
       uniforms: {
-        colour: { value: plainColour(colour) },
+        colour: { value: this.#plainColour(colour) },
         opacity: { value: opacity },
         ratio: { value: ratio },
         reach: { value: 1 },
@@ -200,57 +210,41 @@ export class Solids {
     })
     this.#add(name, new Points(geometry, material), 5)
   }
-}
 
-/** Radii of mesh points in px: the area goes with the weight. */
-export const dotRadii = ({ weights }: SceneMesh): number[] => {
-  const most = Math.max(...weights)
-  return weights.map(weight => 1.6 + 2.6 * Math.sqrt(weight / most))
-}
-
-function triangles({ vertices, faces }: SceneSolid, copies: readonly Triple[]): BufferGeometry | undefined {
-  const positions: number[] = []
-  const normals: number[] = []
-  for (const face of faces) {
-    const corners = face.map(i => vertices[i])
-    const normal = normalOf(corners)
-    for (const at of copies)
-      for (let i = 1; i + 1 < corners.length; i++)
-        for (const corner of [corners[0], corners[i], corners[i + 1]]) {
-          positions.push(...sum(corner, at))
-          normals.push(...normal)
-        }
+  #triangles({ vertices, faces }: SceneSolid, copies: readonly Triple[]): BufferGeometry | undefined {
+    const { BufferGeometry, Float32BufferAttribute } = this.#three
+    const positions: number[] = []
+    const normals: number[] = []
+    for (const face of faces) {
+      const corners = face.map(i => vertices[i])
+      const normal = normalOf(corners)
+      for (const at of copies)
+        for (let i = 1; i + 1 < corners.length; i++)
+          for (const corner of [corners[0], corners[i], corners[i + 1]]) {
+            positions.push(...sum(corner, at))
+            normals.push(...normal)
+          }
+    }
+    if (positions.length === 0) return undefined
+    const geometry = new BufferGeometry()
+    geometry.setAttribute('position', new Float32BufferAttribute(positions, 3))
+    geometry.setAttribute('normal', new Float32BufferAttribute(normals, 3))
+    return geometry
   }
-  if (positions.length === 0) return undefined
-  const geometry = new BufferGeometry()
-  geometry.setAttribute('position', new Float32BufferAttribute(positions, 3))
-  geometry.setAttribute('normal', new Float32BufferAttribute(normals, 3))
-  return geometry
-}
 
-export function normalOf(corners: readonly Triple[]): Triple {
-  const n: [number, number, number] = [0, 0, 0]
-  for (let i = 0; i < corners.length; i++) {
-    const [u, v] = [corners[i], corners[(i + 1) % corners.length]]
-    n[0] += u[1] * v[2] - u[2] * v[1]
-    n[1] += u[2] * v[0] - u[0] * v[2]
-    n[2] += u[0] * v[1] - u[1] * v[0]
+  /** A colour of the theme as it stands, without conversion: the canvas is not colour-managed either. */
+  #plainColour(css: string): Color {
+    probe.fillStyle = '#888888'
+    probe.fillStyle = css
+    probe.clearRect(0, 0, 1, 1)
+    probe.fillRect(0, 0, 1, 1)
+    const [r, g, b] = probe.getImageData(0, 0, 1, 1).data
+    const colour = new this.#three.Color()
+    colour.r = r / 255
+    colour.g = g / 255
+    colour.b = b / 255
+    return colour
   }
-  const length = Math.hypot(...n) || 1
-  return [n[0] / length, n[1] / length, n[2] / length]
 }
 
-/** A colour of the theme as it stands, without conversion: the canvas is not colour-managed either. */
-function plainColour(css: string): Color {
-  probe.fillStyle = '#888888'
-  probe.fillStyle = css
-  probe.clearRect(0, 0, 1, 1)
-  probe.fillRect(0, 0, 1, 1)
-  const [r, g, b] = probe.getImageData(0, 0, 1, 1).data
-  const colour = new Color()
-  colour.r = r / 255
-  colour.g = g / 255
-  colour.b = b / 255
-  return colour
-}
 const probe = new OffscreenCanvas(1, 1).getContext('2d', { willReadFrequently: true })!

@@ -1,6 +1,6 @@
 import fc from 'fast-check'
 import { describe, expect, test } from 'vitest'
-import { readFromView, readToView } from '../../../client/messages.ts'
+import { embedded, readFromView, readToView } from '../../../client/messages.ts'
 import { bandsAnswer, sceneAnswer, zoneSolidAnswer } from '../../../server/src/language/zone-view.ts'
 import { checked, fixture, NAMES } from '../exchange/support.ts'
 
@@ -100,4 +100,15 @@ describe('to the view', () => {
     expect(readToView({ kind: 'solid', n: 2, solid })).toBeDefined()
     expect(readToView({ kind: 'solid', n: 2, solid: { ...solid, edges: [[0, 2]] } })).toBeUndefined()
   })
+})
+
+test('messages stand in a page as data: no mark of HTML, the same after parsing', () => {
+  fc.assert(
+    fc.property(fc.string(), reason => {
+      const message = { kind: 'scene', uri: 'file:///x', version: 1, scene: null, reason } as const
+      const text = embedded([message, { ...message, reason: `</script>${reason}<!--` }])
+      expect(text).not.toContain('<')
+      expect(JSON.parse(text)[0]).toEqual(message)
+    }),
+  )
 })

@@ -51,6 +51,20 @@ export class Window {
     )
   }
 
+  /** Puts fingers on the window, moves them, lifts them. */
+  async fingers(): Promise<
+    (
+      type: 'touchStart' | 'touchMove' | 'touchEnd',
+      ...at: (readonly [x: number, y: number])[]
+    ) => Promise<void>
+  > {
+    const session = await this.page.context().newCDPSession(this.page)
+    return async (type, ...at) => {
+      const touchPoints = at.map(([x, y], id) => ({ x, y, id }))
+      await session.send('Input.dispatchTouchEvent', { type, touchPoints })
+    }
+  }
+
   async close(): Promise<void> {
     await this.browser.close()
   }

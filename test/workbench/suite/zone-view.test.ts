@@ -45,6 +45,19 @@ describe('zone view', function () {
   const has = (attributes: string): Promise<void> => view().locator(`#stage${attributes}`).waitFor()
   const frames = async (): Promise<number> => Number(await stage().getAttribute('data-frames'))
 
+  /** From the command to the first picture in ms, by the page's own clock, and how much of it passed in the page. */
+  async function timeFirstPicture(): Promise<string> {
+    const started = Date.now()
+    await vscode.commands.executeCommand('braggline.openZoneView')
+    await has('[data-first-picture]')
+    const [page, origin] = await stage().evaluate(element => [
+      Number(element.dataset.firstPicture),
+      performance.timeOrigin,
+    ])
+    assert.ok(page > 0)
+    return `${(origin + page - started).toFixed(0)} ms after the command (${page} ms in the page)`
+  }
+
   async function openView(name: string): Promise<vscode.TextEditor> {
     const editor = await open(name)
     await checked(editor.document)
@@ -98,6 +111,13 @@ describe('zone view', function () {
       }
     }
   }
+
+  // Before all others: a window's first panel takes the editor longer than later ones.
+  it('is drawn soon in the first panel of a window', async () => {
+    const editor = await open('lead-telluride.lattice.yaml')
+    await checked(editor.document)
+    console.log(`zone view, first panel: first picture ${await timeFirstPicture()}`)
+  })
 
   // Counts of faces, edges and vertices: the five parallelohedra (common practice).
   const files = {
@@ -265,6 +285,77 @@ describe('zone view', function () {
     await has(`[data-solid="rhombic dodecahedron"]${turned}`)
   })
 
+  it('comes back as it was when its page is loaded anew', async () => {
+    await openView('lead-telluride.lattice.yaml')
+    const turned = await turn('ArrowUp', 6, 0)
+    await view().locator('[data-name="wedge"]').click()
+    await has('[data-shown~="wedge"]')
+    const page = () => stage().evaluate(() => performance.timeOrigin)
+    const before = await page()
+    await vscode.commands.executeCommand('workbench.action.webview.reloadWebviewAction')
+    // While the frame is exchanged there is none to ask.
+    await soon(() =>
+      page().then(
+        origin => origin !== before,
+        () => false,
+      ),
+    )
+    await has(`[data-shown~="wedge"][data-glass="on"]${turned}`)
+  })
+
+  it('shows a hostile file as text', async () => {
+    const evil = '</script><img src=x onerror=document.body.id=1><script>document.body.id=2</script>'
+    const document = await vscode.workspace.openTextDocument({
+      language: 'braggline',
+      content: `title: "${evil}"\nlattice: {bravais: cF, a: 5.43}\npath: Γ – X\nmesh:\n  "<b>a</b>": {divisions: [2, 2, 2]}\n  "${evil}": {divisions: [4, 4, 4]}\n`,
+    })
+    await vscode.window.showTextDocument(document)
+    await checked(document)
+    await vscode.commands.executeCommand('braggline.openZoneView')
+    await has('[data-glass="on"][data-drawable="true"]')
+    assert.strictEqual(await stage().getAttribute('data-title'), evil)
+    assert.deepStrictEqual(await view().locator('[data-name="which"] option').allTextContents(), [
+      '<b>a</b>',
+      evil,
+    ])
+    assert.strictEqual(await view().locator('img, b, body[id]').count(), 0)
+  })
+
+  it('shows the mesh that is chosen of several', async () => {
+    const editor = await openView('lead-telluride.lattice.yaml')
+    assert.strictEqual(await view().locator('[data-name="which"]').isVisible(), false)
+    await replace(
+      editor,
+      'mesh:\n  divisions: [12, 12, 12]',
+      'mesh:\n  coarse: {divisions: [4, 4, 4]}\n  fine: {divisions: [8, 8, 8]}',
+    )
+    // spglib 2.0.2, get_ir_reciprocal_mesh: 8 irreducible points of 4³, 29 of 8³.
+    await has('[data-mesh="8"]')
+    await view().locator('[data-name="which"]').selectOption({ label: 'fine' })
+    await has('[data-mesh="29"]')
+  })
+
+  it('is turned by one finger and enlarged by two', async () => {
+    await openView('lead-telluride.lattice.yaml')
+    const box = (await stage().boundingBox())!
+    const fingers = await window.fingers()
+    const [x, y] = [box.x + 30, box.y + box.height - 120]
+    const before = await stage().getAttribute('data-view')
+    await fingers('touchStart', [x, y])
+    await fingers('touchMove', [x + 40, y])
+    await fingers('touchEnd')
+    await has(`:not([data-view="${before}"])`)
+    const size = async () => {
+      const [origin, tip] = await Promise.all(['Γ', 'X'].map(label => dot(label).boundingBox()))
+      return Math.hypot(tip!.x - origin!.x, tip!.y - origin!.y)
+    }
+    const small = await size()
+    await fingers('touchStart', [x, y], [x + 40, y])
+    await fingers('touchMove', [x, y], [x + 80, y])
+    await fingers('touchEnd')
+    await soon(async () => Math.abs((await size()) / small - 2) < 0.1)
+  })
+
   it('draws nothing while nothing moves', async () => {
     await openView('lead-telluride.lattice.yaml')
     await window.picture('zone-still')
@@ -309,10 +400,7 @@ describe('zone view', function () {
   it('is drawn soon', async () => {
     const editor = await open('lead-telluride.lattice.yaml')
     await checked(editor.document)
-    const started = Date.now()
-    await vscode.commands.executeCommand('braggline.openZoneView')
-    await has('[data-frames]')
-    const first = Date.now() - started
+    const first = await timeFirstPicture()
     await has('[data-glass="on"]')
     await view().locator('[data-name="mesh"]').click()
     await view().locator('[data-name="around"]').selectOption('shell-2')
@@ -328,10 +416,9 @@ describe('zone view', function () {
       }
       return { span: spans.sort((a, b) => a - b)[20], script: Number(element.dataset.frameTime) }
     })
-    const page = await stage().getAttribute('data-first-picture')
     console.log(
-      `zone view: first picture ${first} ms after the command (${page} ms in the page); with two shells and a mesh a frame takes ${turn.span.toFixed(1)} ms, ${turn.script} ms of it script`,
+      `zone view, a later panel: first picture ${first}; with two shells and a mesh a frame takes ${turn.span.toFixed(1)} ms, ${turn.script} ms of it script`,
     )
-    assert.ok(first > 0)
+    assert.ok(turn.span > 0)
   })
 })
