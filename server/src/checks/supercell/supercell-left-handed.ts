@@ -1,6 +1,6 @@
 import type { SupercellBlock, TextEdit } from '../../format/model.ts'
 import type { Check } from '../check.ts'
-import { integerDeterminant } from './determinant.ts'
+import { integerDeterminant } from '../../crystal/supercell.ts'
 
 interface Facts {
   readonly determinant: number

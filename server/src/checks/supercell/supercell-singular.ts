@@ -1,5 +1,5 @@
 import type { Check } from '../check.ts'
-import { integerDeterminant } from './determinant.ts'
+import { integerDeterminant } from '../../crystal/supercell.ts'
 
 interface Facts {
   /** The entry that is no whole number; absent where the determinant vanishes. */
