@@ -7,6 +7,7 @@ import { draw } from './draw.ts'
 import { Engine, type Symmetries } from './engine.ts'
 import { explain } from './explain.ts'
 import { fold } from './fold.ts'
+import { importVerb } from './import.ts'
 import { type Io, Refusal } from './io.ts'
 import { mesh } from './mesh.ts'
 import { HELP, type OptionSpec, readOptions } from './options.ts'
@@ -16,7 +17,18 @@ import { serve } from './serve.ts'
 import { CLEAN, NOT_DONE, type Verb } from './verb.ts'
 import { VERSION } from './version.ts'
 
-export const VERBS: readonly Verb[] = [check, report, path, mesh, fold, bands, draw, explain, serve]
+export const VERBS: readonly Verb[] = [
+  check,
+  report,
+  path,
+  mesh,
+  fold,
+  bands,
+  draw,
+  importVerb,
+  explain,
+  serve,
+]
 
 const WIDTH = 92
 

@@ -71,6 +71,9 @@ export interface SpaceGroupSetting {
   readonly symbol: string
   readonly fullSymbol: string
   readonly centring: string
+  readonly hallSymbol: string
+  /** What tells settings of one type apart: `b1`, `-c2`, `H`, `R`, `1`, `2cab` …; empty where there is one only. */
+  readonly choice: string
 }
 
 /** How often the library was asked and the most atoms it was handed; tests read it, the program does not. */
@@ -183,8 +186,14 @@ export function spaceGroupSettings(number: number): readonly SpaceGroupSetting[]
     symbol: entry.hm_short,
     fullSymbol: entry.hm_full,
     centring: entry.centering,
+    hallSymbol: entry.hall_symbol,
+    choice: entry.setting,
   }))
 }
+
+/** All operations of a space group in a setting, those of the centring among them. */
+export const settingOperations = ({ number, hallNumber }: SpaceGroupSetting): readonly Operation[] =>
+  operations_from_number(number, { type: 'HallNumber', value: hallNumber }, false).map(operationFrom)
 
 /** The distinct rotations of a space group on columns of fractions of its conventional cell in that setting. */
 export function settingRotations(setting: SpaceGroupSetting): readonly Mat3[] {
