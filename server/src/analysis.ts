@@ -5,6 +5,7 @@ import { runChecks, type Severities, withoutAllowed } from './checks/run.ts'
 import { decode } from './format/decode.ts'
 import type { DecodedFile, LatticeDocument, Span } from './format/model.ts'
 import { SyntaxTree } from './format/tree.ts'
+import { type Columns, columnsBetween, offsetAfter } from './format/text.ts'
 import { Crystal } from './meaning/crystal.ts'
 import { lazy } from './meaning/lazy.ts'
 import type { Workshop } from './meaning/workshop.ts'
@@ -32,6 +33,8 @@ export class Snapshot {
     private readonly workshop: Workshop,
     readonly settings: Settings = DEFAULT_SETTINGS,
     readonly version = 0,
+    /** What columns count. */
+    private readonly columns: Columns = 'utf-16',
   ) {}
 
   readonly #decoded = lazy(() => decode(this.text))
@@ -97,17 +100,17 @@ export class Snapshot {
     return low
   }
 
-  /** 0-based line and UTF-16 column. */
+  /** 0-based line and column. */
   positionOf(offset: number): { line: number; character: number } {
     const line = this.lineOf(offset)
-    return { line, character: offset - this.#lines()[line] }
+    return { line, character: columnsBetween(this.text, this.#lines()[line], offset, this.columns) }
   }
 
   offsetOf(position: { line: number; character: number }): number {
     const starts = this.#lines()
     if (position.line >= starts.length) return this.text.length
     const end = position.line + 1 < starts.length ? starts[position.line + 1] : this.text.length
-    return Math.min(starts[position.line] + position.character, end)
+    return offsetAfter(this.text, [starts[position.line], end], position.character, this.columns)
   }
 
   /** The document that an offset stands in. */

@@ -17,6 +17,7 @@ import { TextDocument } from 'vscode-languageserver-textdocument'
 import { DEFAULT_SETTINGS, type Settings, Snapshot } from './analysis.ts'
 import type { Severities } from './checks/run.ts'
 import type { Severity } from './format/model.ts'
+import type { Columns } from './format/text.ts'
 import { completion } from './language/completion.ts'
 import { diagnostics } from './language/diagnostics.ts'
 import { appendToPathEdits } from './language/append-to-path.ts'
@@ -78,6 +79,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   let rulePages = options.rulePages
   let announces = false
   let snippets = false
+  let columns: Columns = 'utf-16'
   let client: ClientCapabilities = {}
 
   const symmetry = new WorkerSymmetry(options.startWorker, () => {
@@ -91,7 +93,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     if (!document) return undefined
     const known = snapshots.get(uri)
     if (known && known.version === document.version && known.settings === settings) return known
-    const snapshot = new Snapshot(document.getText(), workshop, settings, document.version)
+    const snapshot = new Snapshot(document.getText(), workshop, settings, document.version, columns)
     snapshots.set(uri, snapshot)
     return snapshot
   }
@@ -182,11 +184,17 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     if (typeof pages === 'string') rulePages = pages
     announces = initializationOptions?.status === true
     snippets = capabilities.textDocument?.completion?.completionItem?.snippetSupport === true
+    columns = columnsFor(capabilities.general?.positionEncodings)
     return {
       serverInfo: { name: 'Braggline', version: options.version },
       capabilities: {
-        positionEncoding: 'utf-16',
-        textDocumentSync: { openClose: true, change: TextDocumentSyncKind.Incremental, save: true },
+        positionEncoding: columns,
+        // Changes of a part come with positions, which the library counts in UTF-16.
+        textDocumentSync: {
+          openClose: true,
+          change: columns === 'utf-16' ? TextDocumentSyncKind.Incremental : TextDocumentSyncKind.Full,
+          save: true,
+        },
         hoverProvider: true,
         completionProvider: { triggerCharacters: [' ', '–', '-', '→', '|', ':'] },
         documentSymbolProvider: { label: 'Braggline' },
@@ -320,6 +328,12 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   connection.onShutdown(() => symmetry.dispose())
   documents.listen(connection)
   connection.listen()
+}
+
+/** UTF-16 unless the client offers others only. */
+function columnsFor(offered: readonly string[] = ['utf-16']): Columns {
+  const known: readonly Columns[] = ['utf-16', 'utf-8', 'utf-32']
+  return known.find(each => offered.includes(each)) ?? 'utf-16'
 }
 
 const SEVERITIES = new Set<unknown>(['off', 'info', 'warning', 'error'])

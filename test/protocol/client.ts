@@ -102,10 +102,10 @@ export class Client {
   }
 
   /** The push for this version of the text. */
-  pushFor(version: number): Promise<Diagnostic[]> {
+  pushFor(version: number, uri = this.uri): Promise<Diagnostic[]> {
     return new Promise(resolve => {
       const look = () => {
-        const found = this.pushed.findLast(params => params.uri === this.uri && params.version === version)
+        const found = this.pushed.findLast(params => params.uri === uri && params.version === version)
         if (!found) return
         this.#listeners.delete(look)
         resolve(found.diagnostics)

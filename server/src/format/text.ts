@@ -1,3 +1,4 @@
+import type { Span } from './model.ts'
 /** Lines and blanks of a text. Offsets are in UTF-16 units. */
 
 const BYTE_ORDER_MARK = '\ufeff'
@@ -44,4 +45,33 @@ export class LineCounter {
     // A line break at the very end begins one more line.
     return offset >= this.next && this.text.endsWith('\n') ? this.line + 1 : this.line
   }
+}
+
+/** What a column counts: bytes, half-words or whole characters of the text in that encoding. */
+export type Columns = 'utf-8' | 'utf-16' | 'utf-32'
+
+/** How many columns lie between two offsets of one line. */
+export function columnsBetween(text: string, from: number, to: number, columns: Columns): number {
+  if (columns === 'utf-16') return to - from
+  let count = 0
+  for (const character of text.slice(from, to)) count += widthIn(columns, character)
+  return count
+}
+
+/** The offset so many columns into the line; its end where the line is shorter, the character's start inside of one. */
+export function offsetAfter(text: string, [from, to]: Span, column: number, columns: Columns): number {
+  if (columns === 'utf-16') return Math.min(from + column, to)
+  let [offset, count] = [from, 0]
+  for (const character of text.slice(from, to)) {
+    count += widthIn(columns, character)
+    if (count > column) break
+    offset += character.length
+  }
+  return offset
+}
+
+function widthIn(columns: Columns, character: string): number {
+  const code = character.codePointAt(0)!
+  if (columns === 'utf-32' || code < 0x80) return 1
+  return code < 0x800 ? 2 : code < 0x10000 ? 3 : 4
 }
