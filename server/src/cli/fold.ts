@@ -1,4 +1,5 @@
 import { type FoldJson, foldPoint } from '../exchange/fold.ts'
+import { supercellMap, supercellTable } from '../exchange/supercell-map.ts'
 import { inColumns } from '../exchange/layout.ts'
 import type { Vec3 } from '../crystal/vector.ts'
 import { INVERSE_SYMBOL } from '../crystal/units.ts'
@@ -16,10 +17,11 @@ const DIGITS = 6
 export const fold: Verb = {
   name: 'fold',
   operands: 'FILE',
-  summary: 'the equivalents of k-points in the first zone',
+  summary: 'the equivalents of k-points in the first zone, or in that of the supercell',
   about: [
-    'Folds k-points by reciprocal vectors to the shortest equivalent, and tells in which zone they were.',
+    'With --at, folds k-points by reciprocal vectors to the shortest equivalent, and tells in which zone they were.',
     "The numbers are in the file's own frame of k-points and may be written as in the file (1/3, sqrt(3)/2); the result is in fractions of the primitive reciprocal vectors.",
+    "With --supercell, tells where the points of the file and of its label book come to lie in the zone of the file's supercell, which primitive points each point of that zone holds, and where the path meets its Γ.",
   ],
   options: [
     {
@@ -28,18 +30,34 @@ export const fold: Verb = {
       repeatable: true,
       help: 'A k-point; may be given again for further ones.',
     },
+    { name: 'supercell', help: "The map between the primitive zone and that of the file's supercell." },
     { name: 'format', value: 'FORMAT', choices: ['table', 'json'], help: 'table (the default) or json.' },
     DOCUMENT,
     OUTPUT,
     OVERWRITE,
   ],
-  examples: ['braggline fold lead-telluride.lattice.yaml --at "3/4,0,0" --at "1/2,1/2,1"'],
+  examples: [
+    'braggline fold lead-telluride.lattice.yaml --at "3/4,0,0" --at "1/2,1/2,1"',
+    'braggline fold lead-telluride.lattice.yaml --supercell',
+  ],
 
   async run({ given, io, engine: start }: Call): Promise<number> {
     const desk = new Desk(io, given.value('output'), given.has('overwrite'))
     const asked = given.values('at')
-    if (asked.length === 0) throw new Refusal('no k-point is given: --at "k1,k2,k3"')
+    const byMatrix = given.has('supercell')
+    if (asked.length > 0 && byMatrix) throw new Refusal('--at and --supercell exclude each other')
+    if (asked.length === 0 && !byMatrix)
+      throw new Refusal('no k-point is given: --at "k1,k2,k3", or --supercell for the map of the supercell')
     const crystal = await oneCrystal(given, io, start)
+    if (byMatrix) {
+      const map = supercellMap(crystal)
+      if (!map) throw new Refusal(withoutSupercell(crystal))
+      desk.result(
+        given.value('format') === 'json' ? `${JSON.stringify(map, null, 2)}\n` : supercellTable(map),
+      )
+      await desk.close()
+      return CLEAN
+    }
     const folded = asked.map(text => {
       const one = foldPoint(crystal, point(text, crystal))
       if (!one) throw new Refusal('the frame 2pi/a of the file needs the lattice parameter a')
@@ -52,6 +70,11 @@ export const fold: Verb = {
     return CLEAN
   },
 }
+
+const withoutSupercell = ({ document }: Crystal): string =>
+  document.supercell
+    ? 'the supercell of the file spans no cell; `braggline check` says why'
+    : 'the file has no supercell: state it as `supercell: [2, 2, 2]` or by three rows'
 
 /** The numbers of one `--at`, filled up with zeros along directions without a period. */
 function point(text: string, { dimension, document }: Crystal): Vec3 {

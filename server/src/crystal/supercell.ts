@@ -76,8 +76,8 @@ export const landingOf = (matrix: Mat3, fraction: Vec3): Vec3 =>
 export const landsOnGamma = (matrix: Mat3, fraction: Vec3): boolean =>
   landingOf(matrix, fraction).every(x => x === 0)
 
-/** Longer lists of folded points serve nobody. */
-export const LARGEST_FOLD = 100_000
+/** Longer lists of folded points and of copies serve nobody. */
+export const LARGEST_FOLD = 5_000
 
 /**
  * The primitive k-points that come to lie on one point of the supercell's zone: |det M| of them, in [0, 1), in the order of

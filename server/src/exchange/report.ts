@@ -173,6 +173,10 @@ const PARAMETERS_OF = {
   3: ['a', 'b', 'c', 'alpha', 'beta', 'gamma'],
 } as const
 
+/** Lengths and angles of the conventional cell that belong to as many dimensions. */
+export const latticeParameters = (lattice: Lattice): Partial<Record<ParameterName, number>> =>
+  Object.fromEntries(PARAMETERS_OF[lattice.dimension].map(name => [name, lattice.parameters[name]]))
+
 const periodic = (rows: Mat3, { dimension }: Lattice): Rows => rows.slice(0, dimension)
 const square = (rows: Mat3, { dimension }: Lattice): Rows =>
   rows.slice(0, dimension).map(row => row.slice(0, dimension))
@@ -180,9 +184,7 @@ const square = (rows: Mat3, { dimension }: Lattice): Rows =>
 const latticeReport = (crystal: Crystal, lattice: Lattice): LatticeReport => ({
   ...given('bravais', crystal.bravais),
   dimension: lattice.dimension,
-  parameters: Object.fromEntries(
-    PARAMETERS_OF[lattice.dimension].map(name => [name, lattice.parameters[name]]),
-  ),
+  parameters: latticeParameters(lattice),
   vectors: periodic(lattice.primitive, lattice),
   conventional: periodic(lattice.conventional, lattice),
   volume: lattice.volume,

@@ -101,7 +101,24 @@ describe('fold', () => {
     const { out } = await world.run(['fold', 'cubic.lattice.yaml', '--at', '3/4,0,0'])
     expect(out).toMatch(/\[3\/4, 0, 0\] +outside +2 +\[-1\/4, 0, 0\]/)
   })
+  test('the map of a supercell', async () => {
+    world.write('doubled.lattice.yaml', 'lattice: {bravais: cP, a: 4}\nsupercell: [2, 1, 1]\n')
+    expect(await fold('doubled.lattice.yaml', '--supercell')).toMatchObject({
+      matrix: [
+        [2, 0, 0],
+        [0, 1, 0],
+        [0, 0, 1],
+      ],
+      fold: 2,
+      supercell: { bravais: 'tP' },
+    })
+    const { out, status } = await world.run(['fold', 'doubled.lattice.yaml', '--supercell'])
+    expect(status).toBe(0)
+    expect(out).toMatch(/^X +\[0, 1\/2, 0\]/m)
+  })
   test.each([
+    [['cubic.lattice.yaml', '--supercell'], /has no supercell: state it as `supercell: \[2, 2, 2\]`/],
+    [['cubic.lattice.yaml', '--supercell', '--at', '0,0,0'], /exclude each other/],
     [['cubic.lattice.yaml', '--at', '1,2'], /three numbers/],
     [['cubic.lattice.yaml', '--at', '1,x,0'], /--at "1,x,0"/],
     [['sheet.lattice.yaml', '--at', '0,0,1'], /without a period/],
