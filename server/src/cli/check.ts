@@ -35,7 +35,7 @@ export const check: Verb = {
   operands: 'FILE…',
   summary: 'what is wrong in lattice files; with --fix, what can safely be mended is',
   about: [
-    'Checks lattice, atoms, k-points, path and supercell of each crystal against its lattice, its symmetry and its first Brillouin zone. `braggline mesh` and `braggline report` say whether a mesh keeps the symmetry.',
+    'Checks each crystal of a file: its form, lattice, atoms, k-points, path, sampling, mesh and supercell, against its lattice, its symmetry and its first Brillouin zone.',
     'Exit status: 0 where no finding is at or over --fail-on, 1 where one is, 2 where the work could not be done.',
   ],
   options: [

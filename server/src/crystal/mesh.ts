@@ -194,7 +194,7 @@ const LARGEST_RATIO = 12
  */
 export function symmetricDivisions(least: Vec3, group: readonly Mat3[]): Vec3 {
   const divisions = [...least] as [number, number, number]
-  for (const tied of mixedDirections(group)) {
+  for (const tied of tiedDirections(group)) {
     let best = Number.POSITIVE_INFINITY
     for (const ratio of ratiosOf(tied)) {
       const times = Math.max(...tied.map(i => Math.ceil(least[i] / ratio[i])))
@@ -207,8 +207,8 @@ export function symmetricDivisions(least: Vec3, group: readonly Mat3[]): Vec3 {
   return divisions
 }
 
-/** Sets of directions that some rotation mixes; a direction of its own is left out. */
-function mixedDirections(group: readonly Mat3[]): number[][] {
+/** Sets of directions (from 0) that some rotation mixes, so that their divisions are tied; a direction of its own is left out. */
+export function tiedDirections(group: readonly Mat3[]): number[][] {
   const mixed = (i: number, j: number) => group.some(rotation => rotation[i][j] !== 0 || rotation[j][i] !== 0)
   const pairs = [
     [0, 1],
@@ -224,3 +224,26 @@ function* ratiosOf(tied: readonly number[]): Iterable<Vec3> {
     tied.includes(i) ? Array.from({ length: LARGEST_RATIO }, (_, n) => n + 1) : [1]
   for (const x of range(0)) for (const y of range(1)) for (const z of range(2)) yield [x, y, z]
 }
+
+/** Halves, and what a group without −1 allows besides: thirds and quarters along and about its axes. */
+const SHIFTS = [0, 1 / 2, 1 / 3, 2 / 3, 1 / 4, 3 / 4]
+
+/**
+ * The shifts near a given one that all rotations of a group keep with these divisions, the nearest first. A component may
+ * also stay as it is: along a polar axis any shift will do. None where the divisions themselves are not symmetric.
+ */
+export function symmetricShifts({ divisions, shift }: Mesh, group: readonly Mat3[]): Vec3[] {
+  const choices = shift.map(own => [...new Set([own, ...SHIFTS])])
+  const found: { shift: Vec3; moved: number }[] = []
+  for (const x of choices[0])
+    for (const y of choices[1])
+      for (const z of choices[2]) {
+        const other: Vec3 = [x, y, z]
+        if (!isSymmetricMesh({ divisions, shift: other }, group)) continue
+        found.push({ shift: other, moved: other.reduce((sum, s, i) => sum + apart(s, shift[i]), 0) })
+      }
+  return found.sort((a, b) => a.moved - b.moved).map(({ shift }) => shift)
+}
+
+/** A shift by a whole step gives the same mesh. */
+const apart = (s: number, t: number): number => Math.abs(s - t - Math.round(s - t))

@@ -1,0 +1,6 @@
+export { meshAcrossVacuum } from './mesh-across-vacuum.ts'
+export { meshBreaksSymmetry } from './mesh-breaks-symmetry.ts'
+export { meshCellSuspect } from './mesh-cell-suspect.ts'
+export { meshCoarse } from './mesh-coarse.ts'
+export { meshMissesPoint } from './mesh-misses-point.ts'
+export { meshUneven } from './mesh-uneven.ts'

@@ -1,0 +1,2 @@
+export { samplingCoarse } from './sampling-coarse.ts'
+export { samplingUneven } from './sampling-uneven.ts'
