@@ -9,7 +9,7 @@ import { fractions } from '../../meaning/wording.ts'
 import type { Check, Context } from '../check.ts'
 import { diagnose, isInDoubt } from '../points/diagnosis.ts'
 import { listLabels, offer } from '../points/numbers.ts'
-import { integerDeterminant } from './determinant.ts'
+import { integerDeterminant } from '../../crystal/supercell.ts'
 
 interface Facts {
   readonly missed: readonly string[]

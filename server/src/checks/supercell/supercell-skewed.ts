@@ -2,7 +2,7 @@ import { replaceValue } from '../../format/edits.ts'
 import type { Mat3 } from '../../crystal/vector.ts'
 import { length, plain } from '../../meaning/wording.ts'
 import type { Check } from '../check.ts'
-import { integerDeterminant } from './determinant.ts'
+import { integerDeterminant } from '../../crystal/supercell.ts'
 import { roundest, shortestImage } from './rounder.ts'
 
 interface Facts {
