@@ -25,6 +25,7 @@ import { codeActions, FIX_ALL } from './language/fixes.ts'
 import { hover } from './language/hover.ts'
 import { reportAnswer } from './language/report.ts'
 import { recommendedPathEdit } from './language/recommended-path.ts'
+import { DEFAULT_EDITOR_SETTINGS, readEditorSettings } from './language/settings.ts'
 import { statusOf } from './language/status.ts'
 import { bandsAnswer, documentOf, figureAnswer, sceneAnswer, zoneSolidAnswer } from './language/zone-view.ts'
 import { symbols } from './language/symbols.ts'
@@ -54,6 +55,7 @@ import {
   type ZoneSolidParams,
   type ZoneSolidResult,
 } from './protocol.ts'
+import { EDITING, serveEditing } from './server-editing.ts'
 import { NAVIGATION, serveNavigation } from './server-navigation.ts'
 import { type StartWorker, WorkerSymmetry } from './symmetry-service.ts'
 
@@ -73,6 +75,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   const waiting = new Map<string, ReturnType<typeof setTimeout>>()
   const costs = new Map<string, number>()
   let settings: Settings = DEFAULT_SETTINGS
+  let editor = DEFAULT_EDITOR_SETTINGS
   let pulls = false
   let refreshes = false
   let asksConfiguration = false
@@ -171,6 +174,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
       ? await connection.workspace.getConfiguration('braggline')
       : undefined
     settings = readSeverities(asked)
+    editor = readEditorSettings(asked)
     recheckAll()
   }
 
@@ -200,6 +204,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
         documentSymbolProvider: { label: 'Braggline' },
         codeActionProvider: { codeActionKinds: [CodeActionKind.QuickFix, FIX_ALL] },
         ...NAVIGATION,
+        ...EDITING,
         ...(pulls
           ? { diagnosticProvider: { interFileDependencies: false, workspaceDiagnostics: false } }
           : {}),
@@ -215,6 +220,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   connection.onDidChangeConfiguration(({ settings: sent }) => {
     if (asksConfiguration) return void readSettings()
     settings = readSeverities(sent?.braggline)
+    editor = readEditorSettings(sent?.braggline)
     recheckAll()
   })
 
@@ -264,6 +270,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     rulePages: () => rulePages,
     open: openTexts,
   })
+  serveEditing({ connection, about, settings: () => editor })
 
   connection.onRequest(CHECKED, async ({ uri, version }: CheckedParams): Promise<CheckedResult | null> => {
     const document = documents.get(uri)

@@ -8,6 +8,7 @@ import type {
   SelectionRange,
   SemanticTokens,
   SemanticTokensDelta,
+  TextEdit,
   WorkspaceEdit,
   WorkspaceSymbol,
 } from 'vscode-languageserver-protocol/node'
@@ -88,4 +89,21 @@ test('colours come whole, as a difference and for a range', async () => {
   const range = { start: { line: 3, character: 0 }, end: { line: 4, character: 0 } }
   const part = await client.request<SemanticTokens>('textDocument/semanticTokens/range', { range })
   expect(part.data).toHaveLength(5)
+})
+
+test('formatting: the whole, some lines, while typing', async () => {
+  client = await Client.start(MODERN)
+  await client.open('unit:   nm\nlabels:   none\nlattice: {bravais: cP, a: 4}\n')
+  const options = { tabSize: 2, insertSpaces: true }
+  const all = await client.request<TextEdit[]>('textDocument/formatting', { options })
+  expect(all).toHaveLength(2)
+  const range = { start: { line: 1, character: 0 }, end: { line: 2, character: 0 } }
+  const some = await client.request<TextEdit[]>('textDocument/rangeFormatting', { options, range })
+  expect(some.map(edit => edit.range.start)).toEqual([{ line: 1, character: 8 }])
+  const onType = await client.request<TextEdit[]>('textDocument/onTypeFormatting', {
+    options,
+    position: { line: 1, character: 0 },
+    ch: '\n',
+  })
+  expect(onType.map(edit => edit.range.start.line)).toEqual([0])
 })

@@ -3,6 +3,7 @@ import fc from 'fast-check'
 import { expect, test } from 'vitest'
 import type { Range } from 'vscode-languageserver-types'
 import type { Snapshot } from '../../../server/src/analysis.ts'
+import { formatting, formattingOnType } from '../../../server/src/language/formatting.ts'
 import { foldingRanges } from '../../../server/src/language/folding.ts'
 import { documentLinks } from '../../../server/src/language/links.ts'
 import { definition, highlights, references } from '../../../server/src/language/references.ts'
@@ -15,6 +16,7 @@ import { snapshotOf } from '../checks/harness.ts'
 import { DEMO_FILES } from './marks.ts'
 
 const RUNS = Number(process.env.FUZZ_RUNS ?? 150)
+const FORMATTING = { tabSize: 2, columns: true, enDash: true }
 const KNOWN = new Set(['path-misses', 'point-rounded'])
 
 function holds(snapshot: Snapshot, { start, end }: Range): void {
@@ -32,6 +34,7 @@ function askOfText(snapshot: Snapshot): void {
     }
   for (const { range } of documentLinks(snapshot, 'file:///rules', KNOWN)) holds(snapshot, range)
   for (const { range } of symbols(snapshot)) holds(snapshot, range)
+  for (const { range } of formatting(snapshot, FORMATTING)) holds(snapshot, range)
   const data = semanticTokens(snapshot)
   for (let i = 0; i < data.length; i += 5) {
     expect(data[i] > 0 || data[i + 1] > 0 || i === 0).toBe(true)
@@ -43,11 +46,14 @@ function askAt(snapshot: Snapshot, offset: number): void {
   for (const { range } of definition(snapshot, 'file:///x', offset)) holds(snapshot, range)
   for (const { range } of references(snapshot, 'file:///x', offset, true)) holds(snapshot, range)
   for (const { range } of highlights(snapshot, offset)) holds(snapshot, range)
+  const position = snapshot.positionOf(offset)
+  for (const typed of ['\n', '-'])
+    for (const { range } of formattingOnType(snapshot, position, typed, FORMATTING)) holds(snapshot, range)
   const prepared = prepareRename(snapshot, offset)
   if (prepared && 'range' in prepared) holds(snapshot, prepared.range)
   const edits = rename(snapshot, offset, 'N')
   if (Array.isArray(edits)) for (const { range } of edits) holds(snapshot, range)
-  const [selection] = selectionRanges(snapshot, [snapshot.positionOf(offset)])
+  const [selection] = selectionRanges(snapshot, [position])
   for (let step = selection; step; step = step.parent!) {
     holds(snapshot, step.range)
     if (!step.parent) break
