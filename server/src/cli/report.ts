@@ -24,7 +24,7 @@ export const report: Verb = {
       name: 'format',
       value: 'FORMAT',
       choices: ['text', 'markdown', 'html', 'json', 'jsonl'],
-      help: 'text (the default), markdown or html (both with the figure of the zone), json or jsonl (one crystal a line).',
+      help: 'text (the default), markdown or html (with the figure of the zone), json or jsonl.',
     },
     DOCUMENT,
     OUTPUT,

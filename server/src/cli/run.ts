@@ -12,6 +12,7 @@ import { type Io, Refusal } from './io.ts'
 import { mesh } from './mesh.ts'
 import { HELP, type OptionSpec, readOptions } from './options.ts'
 import { path } from './path.ts'
+import { probe } from './probe.ts'
 import { report } from './report.ts'
 import { serve } from './serve.ts'
 import { CLEAN, NOT_DONE, type Verb } from './verb.ts'
@@ -22,6 +23,7 @@ export const VERBS: readonly Verb[] = [
   report,
   path,
   mesh,
+  probe,
   fold,
   bands,
   draw,
