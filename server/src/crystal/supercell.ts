@@ -86,17 +86,15 @@ export const LARGEST_FOLD = 5_000
  * @returns undefined where there are more than `LARGEST_FOLD`.
  */
 export function unfoldedFrom(matrix: Mat3, landing: Vec3): Vec3[] | undefined {
-  const determinant = integerDeterminant(matrix)
-  const fold = magnitude(determinant)
   const classes = cosets(matrix)
   if (!classes) return undefined
-  // M⁻¹ = adj(M)/det, in whole numbers modulo the determinant.
-  const sign = determinant < 0n ? -1n : 1n
-  const adjugate = adjugateOf(matrix).map(row => row.map(x => Number((sign * x) % fold)))
-  const size = Number(fold)
+  const { numerators, denominator } = wholeInverse(matrix)
+  // Modulo the denominator the products below stay exact.
+  const rows = numerators.map(row => row.map(x => Number(x % denominator)))
+  const size = Number(denominator)
   const base = landing.every(x => x === 0) ? landing : apply(inverse(matrix), landing)
   const points = classes.map(n =>
-    adjugate.map((row, i) => {
+    rows.map((row, i) => {
       const numerator = modulo(row[0] * n[0] + row[1] * n[1] + row[2] * n[2], size)
       const x = base[i] + numerator / size
       const rest = x - Math.floor(x)
@@ -144,12 +142,16 @@ function triangular(matrix: Mat3): [bigint, bigint, bigint] {
   return [magnitude(columns[0][0]), magnitude(columns[1][1]), magnitude(columns[2][2])]
 }
 
-function adjugateOf(matrix: Mat3): bigint[][] {
+/** M⁻¹ as whole numbers over |det M|, exactly. */
+export function wholeInverse(matrix: Mat3): { numerators: bigint[][]; denominator: bigint } {
+  const determinant = integerDeterminant(matrix)
+  const sign = determinant < 0n ? -1n : 1n
   const m = matrix.map(row => row.map(BigInt))
   const minor = (i: number, j: number): bigint => {
     const [r, s] = [(i + 1) % 3, (i + 2) % 3]
     const [t, u] = [(j + 1) % 3, (j + 2) % 3]
     return m[r][t] * m[s][u] - m[r][u] * m[s][t]
   }
-  return [0, 1, 2].map(j => [0, 1, 2].map(i => minor(i, j)))
+  const numerators = [0, 1, 2].map(j => [0, 1, 2].map(i => sign * minor(i, j)))
+  return { numerators, denominator: magnitude(determinant) }
 }

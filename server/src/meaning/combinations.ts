@@ -37,10 +37,25 @@ export function sumOf(numbers: readonly NumberValue[], times: readonly Fraction[
 }
 
 /** The same plus a whole number. */
-export function plusWhole(sum: Sum, whole: number): Sum {
-  if (whole === 0) return sum
-  const moved = sum.exact && exact.add(sum.exact, { p: whole, q: 1 })
-  return { value: moved ? moved.p / moved.q : sum.value + whole, exact: moved, decimal: sum.decimal }
+export const plusWhole = (sum: Sum, whole: number): Sum => plus(sum, { p: whole, q: 1 })
+
+/** The same plus a fraction. */
+export function plus(sum: Sum, by: Fraction): Sum {
+  if (by.p === 0) return sum
+  const moved = sum.exact && exact.add(sum.exact, by)
+  // A whole number is no decimal that another one would have to be written like.
+  const decimal = sum.decimal && (by.q === 1 || sum.exact?.q !== 1)
+  return { value: moved ? moved.p / moved.q : sum.value + by.p / by.q, exact: moved, decimal }
+}
+
+/** Relaxed structures have slightly negative fractions. */
+const SLIGHTLY = 0.05
+
+/** The fraction of an atom that is not one of the file's own numbers is brought into the cell. */
+export function wrapped(sum: Sum): Sum {
+  const isOwn = sum.single && !sum.single.negative
+  const isInside = sum.value >= -SLIGHTLY && sum.value < 1
+  return isOwn || isInside ? sum : plusWhole(sum, -Math.floor(sum.value + SAME))
 }
 
 /** Digits after the point of a decimal that ends, and of one that does not. */

@@ -32,6 +32,7 @@ import {
 } from '../crystal/vector.ts'
 import {
   insertKeys,
+  type NewKey,
   removeEntry,
   removeItems,
   replaceValue,
@@ -42,6 +43,7 @@ import {
   type Entry,
   type Fraction,
   type LatticeBlock,
+  type LatticeDocument,
   type MeshBlock,
   type NumberValue,
   PARAMETER_NAMES,
@@ -49,9 +51,12 @@ import {
   type TextEdit,
   type VectorValue,
 } from '../format/model.ts'
+import { formatPath } from '../format/path.ts'
 import { formatFraction, formatNumber, recogniseFraction } from '../format/numbers.ts'
-import { plusWhole, rational, type Sum, sumOf, writeSum } from './combinations.ts'
+import { lineBreak, lineStart } from '../format/text.ts'
+import { plusWhole, rational, sumOf, wrapped, writeSum } from './combinations.ts'
 import type { Crystal } from './crystal.ts'
+import { atomCopies } from './rewrite-copies.ts'
 
 /** Another cell of the same crystal. */
 export interface Cell {
@@ -63,6 +68,11 @@ export interface Cell {
   readonly centring: Centring
   /** State it by this type and its parameters, in the type's own orientation; by vectors where absent. */
   readonly bravais?: BravaisType
+  /**
+   * It holds several of the file's primitive cells, and these whole numbers give its primitive vectors by the file's.
+   * Atoms are written out in it, the places of the path are kept as points, and the key `supercell` goes.
+   */
+  readonly supercell?: Mat3
 }
 
 export interface Restatement {
@@ -95,7 +105,10 @@ export function restate(crystal: Crystal, text: string, cell: Cell): Restatement
     ...atoms,
     ...pointEdits(task),
     ...labels.edits,
-    ...meshes.flatMap(mesh => mesh.edits),
+    ...meshes.flatMap((mesh, i) => [
+      ...mesh.edits,
+      ...otherPointsNote(task, crystal.document.meshes[i], mesh),
+    ]),
     ...supercell,
   ]
   return {
@@ -136,7 +149,8 @@ function taskOf(crystal: Crystal, text: string, cell: Cell): Task | undefined {
   const table = CENTRING_TABLES[cell.centring]
   const primitiveFromConventional = mapMatrix(table.numerators, x => x / table.denominator)
   const change = multiply(multiply(primitiveFromConventional, cell.change), old.conventionalFromPrimitive)
-  if (Math.abs(determinant(change)) > 1 + SAME) return undefined // A larger cell would need atoms added.
+  // A larger cell needs atoms added: the caller must mean it.
+  if (Math.abs(determinant(change)) > 1 + SAME && !cell.supercell) return undefined
   const turn = multiply(inverse(rows), made.conventional)
   return {
     crystal,
@@ -260,12 +274,42 @@ function statedByVectors(task: Task): TextEdit[] {
   else added.push(['vectors', formatRows(lattice.conventional.slice(0, old.dimension))])
   if (block.centring) edits.push({ at: block.centring.at, text: cell.centring })
   else if (cell.centring !== 'P') added.push(['centring', cell.centring])
-  if (block.bravais && Math.abs(determinant(change)) < 1 - SAME) {
+  if (block.bravais && !isSame(Math.abs(determinant(change)), 1)) {
     const type = crystal.typeOf(lattice.primitive, lattice.dimension)?.bravais
     if (type) edits.push({ at: block.bravais.at, text: type })
   }
+  // Beside vectors a parameter is a definition; one that nobody uses would only go stale.
+  if (!block.vectors) edits.push(...removals(text, block, unusedParameters(crystal)))
   return added.length > 0 ? [...edits, ...insertKeys(text, block, added)] : edits
 }
+
+/** The stated parameters that no number of the document, and no frame, needs. */
+function unusedParameters({ document }: Crystal): ParameterName[] {
+  const { lattice, frames } = document
+  const numbers = [
+    ...PARAMETER_NAMES.map(name => lattice?.parameters[name]),
+    ...[lattice?.height, document.tolerance],
+    ...numbersOf(document),
+  ]
+  const used = new Set(numbers.flatMap(number => number?.uses ?? []))
+  if (frames.points === '2pi/a') used.add('a')
+  return PARAMETER_NAMES.filter(name => lattice?.keys.has(name) && !used.has(name))
+}
+
+const numbersOf = (document: LatticeDocument): (NumberValue | undefined)[] => [
+  ...(document.atoms?.items ?? []).flatMap(({ position }) => position?.items ?? []),
+  ...(document.points?.items ?? []).flatMap(({ coordinates, between }) => [
+    ...(coordinates?.items ?? []),
+    between?.fraction,
+  ]),
+  ...document.meshes.flatMap(({ divisions, spacing, shift }) => [
+    ...(divisions?.items ?? []),
+    spacing,
+    ...(shift?.items ?? []),
+  ]),
+  ...[document.sampling?.spacing, document.sampling?.steps, document.sampling?.total],
+  ...(document.supercell?.rows ?? []).flatMap(row => row?.items ?? []),
+]
 
 const formatRows = (rows: readonly Vec3[]): string =>
   `[${rows.map(row => `[${row.map(x => formatNumber(x, DIGITS)).join(', ')}]`).join(', ')}]`
@@ -286,19 +330,10 @@ function rowEdits({ text, cell, old, stays }: Task, rows: readonly VectorValue[]
 
 // Atoms
 
-/** Relaxed structures have slightly negative fractions. */
-const SLIGHTLY = 0.05
-
-/** A fraction that is not one of the file's own is brought into the cell. */
-const wrapped = (sum: Sum): Sum => {
-  const isOwn = sum.single && !sum.single.negative
-  const isInside = sum.value >= -SLIGHTLY && sum.value < 1
-  return isOwn || isInside ? sum : plusWhole(sum, -Math.floor(sum.value + SAME))
-}
-
 function atomEdits(task: Task): TextEdit[] | undefined {
   const { crystal, change } = task
   if (crystal.atoms.length === 0) return []
+  if (task.cell.supercell) return atomCopies(crystal, task.text, task.cell.supercell)
   const kept = firstOfEach(task)
   if (!kept) return undefined
   const frame = crystal.document.frames.atoms
@@ -386,29 +421,53 @@ function unitFactor({ block, parameters }: Task): number {
 
 /**
  * Labels of the book that the path uses: those that the new lattice's book has too stay as they are, the others become
- * points of the file.
+ * points of the file. In a supercell all of them do, and where its book would give one of the file's labels to another
+ * place, no book is in force any more.
  */
 function labelEdits(task: Task): { edits: TextEdit[]; kept: boolean } {
-  const { crystal, text, lattice, rotation = IDENTITY } = task
+  const { crystal, text, lattice, cell, rotation = IDENTITY } = task
   const { document } = crystal
   if (document.labels === 'none' || !crystal.book) return { edits: [], kept: true }
   const found = crystal.bookMatch(document.labels, lattice)
   const there = new Map(
     found?.points.map(({ label, fraction }) => [label, combine(fraction, lattice.reciprocal)]),
   )
-  const lost: [string, string][] = []
-  let kept = true
-  for (const label of bookLabels(crystal)) {
-    const k = combine(crystal.bookPoints.get(label)!.cartesian, rotation)
+  const isElsewhere = (label: string, k: Vec3): boolean => {
     const now = there.get(label)
-    if (!now) lost.push([label, `[${stated(task, k).map(coordinateText).join(', ')}]`])
-    else if (distance(k, now) > SAME_POINT * norm(lattice.reciprocal[0])) kept = false
+    return now !== undefined && distance(k, now) > SAME_POINT * norm(lattice.reciprocal[0])
   }
-  if (lost.length === 0) return { edits: [], kept }
-  const edits = document.points
-    ? insertKeys(text, document.points, lost)
-    : insertKeys(text, document, [['points', `{${lost.map(([label, k]) => `${label}: ${k}`).join(', ')}}`]])
-  return { edits, kept }
+  const used = bookLabels(crystal).map(label => {
+    const k = combine(crystal.bookPoints.get(label)!.cartesian, rotation)
+    return { label, k, moved: isElsewhere(label, k) }
+  })
+  const moves = used.some(({ moved }) => moved)
+  const lost = cell.supercell ? used : used.filter(({ label }) => !there.has(label))
+  const added = lost.map(
+    ({ label, k }): NewKey => [label, `[${stated(task, k).map(coordinateText).join(', ')}]`],
+  )
+  if (!cell.supercell) return { edits: labelledPoints(text, document, added), kept: !moves }
+  const own = [...crystal.points.values()].some(({ label, cartesian }) => isElsewhere(label, cartesian))
+  const edits = labelledPoints(text, document, added, moves || own ? 'none' : undefined)
+  const path = document.path?.recommended ? crystal.book.path : []
+  if (path.length > 0) edits.push(replaceValue(text, document.path!, formatPath(path)))
+  return { edits, kept: true }
+}
+
+/** Insert points, with a block for them where there is none, and perhaps name another book. */
+function labelledPoints(
+  text: string,
+  document: LatticeDocument,
+  added: readonly NewKey[],
+  book?: LatticeDocument['labels'],
+): TextEdit[] {
+  const { points, labelsEntry } = document
+  const edits = points && added.length > 0 ? insertKeys(text, points, added) : []
+  const keys: NewKey[] = []
+  if (!points && added.length > 0)
+    keys.push(['points', `{${added.map(([label, k]) => `${label}: ${k}`).join(', ')}}`])
+  if (book && labelsEntry) edits.push(replaceValue(text, labelsEntry, book))
+  else if (book) keys.push(['labels', book])
+  return keys.length > 0 ? [...edits, ...insertKeys(text, document, keys)] : edits
 }
 
 /** A coordinate that is not made of the file's own numbers: a simple fraction where it is one. */
@@ -480,6 +539,18 @@ function meshEdits(task: Task, mesh: MeshBlock): { edits: TextEdit[]; kept: bool
   return { edits: [...edits, ...shiftEdits(task, shift, matrix)], kept: true }
 }
 
+/** A mesh of a supercell that is not the old one says so, on a line of its own. */
+function otherPointsNote({ text, cell }: Task, mesh: MeshBlock, { kept }: { kept: boolean }): TextEdit[] {
+  const { divisions, shift, key } = mesh
+  const start = lineStart(text, key[0])
+  const indent = text.slice(start, key[0])
+  if (!cell.supercell || kept || !divisions || /\S/.test(indent)) return []
+  const before = [divisions, shift].flatMap(vector => (vector ? [text.slice(...vector.at)] : []))
+  if (before.some(part => /[\n#]/.test(part))) return []
+  const note = `# Steps as fine as, but not the k-points of, ${before.join(' shifted by ')} of the primitive cell.`
+  return [{ at: [start, start], text: `${indent}${note}${lineBreak(text)}` }]
+}
+
 const product = (numbers: readonly number[]): number => numbers.reduce((x, y) => x * y, 1)
 
 /** The smallest n for which every n·wⱼ/Nⱼ is whole. */
@@ -518,10 +589,12 @@ const zeroEdits = ({ text }: Task, vector: VectorValue): TextEdit[] =>
   )
 
 /** The rows of a supercell in terms of the new vectors: S′ = S W⁻¹, its vectors renumbered where the axes were. */
-function supercellEdits({ crystal, text, change }: Task): TextEdit[] | undefined {
+function supercellEdits(task: Task): TextEdit[] | undefined {
+  const { crystal, text, change } = task
   const { supercell, document } = crystal
   const block = document.supercell
   if (!block) return []
+  if (task.cell.supercell) return [removeEntry(task.text, block)]
   if (!supercell) return undefined
   const carried = mapMatrix(multiply(supercell, inverse(change)), round)
   if (!carried.every(row => row.every(Number.isInteger))) return undefined
