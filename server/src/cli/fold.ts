@@ -1,14 +1,18 @@
 import { type FoldJson, foldPoint } from '../exchange/fold.ts'
 import { supercellMap, supercellTable } from '../exchange/supercell-map.ts'
+import { applyEdits } from '../format/edits.ts'
 import { inColumns } from '../exchange/layout.ts'
 import type { Vec3 } from '../crystal/vector.ts'
 import { INVERSE_SYMBOL } from '../crystal/units.ts'
 import { evaluate } from '../format/numbers.ts'
 import type { Crystal } from '../meaning/crystal.ts'
+import { MOST_COPIES } from '../meaning/rewrite-copies.ts'
+import { isWritable, restateForSupercell } from '../meaning/rewrite-supercell.ts'
+import { supercellIn } from '../meaning/supercell-map.ts'
 import { fractions, plain } from '../meaning/wording.ts'
 import { Refusal } from './io.ts'
 import { Desk } from './output.ts'
-import { oneCrystal } from './pick.ts'
+import { onePick, type Pick } from './pick.ts'
 import { type Call, CLEAN, DOCUMENT, OUTPUT, OVERWRITE, type Verb } from './verb.ts'
 
 /** A point is written where another program's output is compared with it. */
@@ -22,6 +26,7 @@ export const fold: Verb = {
     'With --at, folds k-points by reciprocal vectors to the shortest equivalent, and tells in which zone they were.',
     "The numbers are in the file's own frame of k-points and may be written as in the file (1/3, sqrt(3)/2); the result is in fractions of the primitive reciprocal vectors.",
     "With --supercell, tells where the points of the file and of its label book come to lie in the zone of the file's supercell, which primitive points each point of that zone holds, and where the path meets its Γ.",
+    'With --rewrite beside it, gives the file anew for its supercell: lattice by vectors, atoms copied, points, path and mesh at the same k where they can be.',
   ],
   options: [
     {
@@ -31,6 +36,7 @@ export const fold: Verb = {
       help: 'A k-point; may be given again for further ones.',
     },
     { name: 'supercell', help: "The map between the primitive zone and that of the file's supercell." },
+    { name: 'rewrite', help: 'With --supercell: the lattice file of the supercell itself.' },
     { name: 'format', value: 'FORMAT', choices: ['table', 'json'], help: 'table (the default) or json.' },
     DOCUMENT,
     OUTPUT,
@@ -48,13 +54,20 @@ export const fold: Verb = {
     if (asked.length > 0 && byMatrix) throw new Refusal('--at and --supercell exclude each other')
     if (asked.length === 0 && !byMatrix)
       throw new Refusal('no k-point is given: --at "k1,k2,k3", or --supercell for the map of the supercell')
-    const crystal = await oneCrystal(given, io, start)
+    if (given.has('rewrite') && !byMatrix) throw new Refusal('--rewrite goes with --supercell')
+    if (given.has('rewrite') && given.has('format'))
+      throw new Refusal('--rewrite gives a lattice file: it takes no --format')
+    const pick = await onePick(given, io, start)
+    const { crystal } = pick
     if (byMatrix) {
-      const map = supercellMap(crystal)
-      if (!map) throw new Refusal(withoutSupercell(crystal))
-      desk.result(
-        given.value('format') === 'json' ? `${JSON.stringify(map, null, 2)}\n` : supercellTable(map),
-      )
+      if (!supercellIn(crystal)) throw new Refusal(withoutSupercell(crystal))
+      if (given.has('rewrite')) desk.result(rewritten(pick, note => desk.note(`braggline: ${note}\n`)))
+      else {
+        const map = supercellMap(crystal)!
+        desk.result(
+          given.value('format') === 'json' ? `${JSON.stringify(map, null, 2)}\n` : supercellTable(map),
+        )
+      }
       await desk.close()
       return CLEAN
     }
@@ -69,6 +82,20 @@ export const fold: Verb = {
     await desk.close()
     return CLEAN
   },
+}
+
+/** The text with its document restated; what could not stay the same is told. */
+function rewritten({ crystal, snapshot }: Pick, note: (text: string) => void): string {
+  const restated = restateForSupercell(crystal, snapshot.text)
+  if (!restated)
+    throw new Refusal(
+      isWritable(crystal)
+        ? 'something that refers to the cell cannot be read, or stands behind an alias; nothing was written'
+        : `the supercell would hold over ${MOST_COPIES} atoms; nothing was written`,
+    )
+  if (!restated.meshesKept)
+    note('a mesh of the supercell has not the k-points of the primitive one: its steps are as fine, or finer')
+  return applyEdits(snapshot.text, restated.edits)
 }
 
 const withoutSupercell = ({ document }: Crystal): string =>

@@ -116,7 +116,35 @@ describe('fold', () => {
     expect(status).toBe(0)
     expect(out).toMatch(/^X +\[0, 1\/2, 0\]/m)
   })
+  test('the file of a supercell, whole or not at all', async () => {
+    world.write(
+      'doubled.lattice.yaml',
+      'title: one\nlattice: {bravais: cP, a: 4}\nsupercell: [2, 1, 1]\n---\nlattice: {bravais: cP, a: 4} # two\natoms:\n  - Po: [0, 0, 0]\nmesh: {divisions: [3, 3, 3]}\nsupercell: [2, 1, 1]\n',
+    )
+    const args = ['fold', 'doubled.lattice.yaml', '--document', '2', '--supercell', '--rewrite']
+    const { out, err } = await world.run(args)
+    expect(out).toBe(
+      'title: one\nlattice: {bravais: cP, a: 4}\nsupercell: [2, 1, 1]\n---\nlattice: {bravais: tP, vectors: [[8, 0, 0], [0, 4, 0], [0, 0, 4]]} # two\natoms:\n  - Po: [0, 0, 0]\n  - Po: [1/2, 0, 0]\n# Steps as fine as, but not the k-points of, [3, 3, 3] of the primitive cell.\nmesh: {divisions: [2, 3, 3]}\n',
+    )
+    expect(err).toMatch(/mesh of the supercell has not the k-points/)
+    expect((await world.run([...args, '-o', 'new.lattice.yaml'])).out).toBe('')
+    expect(world.read('new.lattice.yaml')).toBe(out)
+    expect(await world.run([...args, '-o', 'new.lattice.yaml'])).toMatchObject({
+      status: 2,
+      err: expect.stringContaining('--overwrite'),
+    })
+    world.write('large.lattice.yaml', 'lattice: {bravais: cP, a: 4}\nsupercell: [100, 100, 1]\n')
+    expect(
+      await world.run(['fold', 'large.lattice.yaml', '--supercell', '--rewrite', '-o', 'l.yaml']),
+    ).toMatchObject({
+      status: 2,
+      err: expect.stringContaining('nothing was written'),
+    })
+  })
   test.each([
+    [['cubic.lattice.yaml', '--rewrite', '--at', '0,0,0'], /--rewrite goes with --supercell/],
+    [['cubic.lattice.yaml', '--supercell', '--rewrite', '--format', 'json'], /takes no --format/],
+    [['cubic.lattice.yaml', '--supercell', '--rewrite'], /has no supercell/],
     [['cubic.lattice.yaml', '--supercell'], /has no supercell: state it as `supercell: \[2, 2, 2\]`/],
     [['cubic.lattice.yaml', '--supercell', '--at', '0,0,0'], /exclude each other/],
     [['cubic.lattice.yaml', '--at', '1,2'], /three numbers/],
