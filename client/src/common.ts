@@ -13,6 +13,7 @@ import { registerCommands } from './commands.ts'
 import { registerReport } from './report.ts'
 import { type CreateClient, Server } from './server.ts'
 import { StatusItem } from './status.ts'
+import { registerWorkspaceCheck } from './workspace-check.ts'
 import { registerZoneView } from './zone-view.ts'
 
 /**
@@ -42,6 +43,7 @@ export function activate(context: ExtensionContext, createClient: CreateClient):
   context.subscriptions.push(log, status, startWithFirstFile(server))
   registerCommands(context, { server, log, selector: SELECTOR })
   registerReport(context, { server, log, selector: SELECTOR })
+  registerWorkspaceCheck(context, { server, log })
   registerZoneView(context, { server, log, selector: SELECTOR })
   return {
     async checked(uri) {

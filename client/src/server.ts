@@ -1,4 +1,12 @@
-import { type DocumentSelector, EventEmitter, type LogOutputChannel, Uri, workspace } from 'vscode'
+import {
+  type CancellationToken,
+  type Diagnostic,
+  type DocumentSelector,
+  EventEmitter,
+  type LogOutputChannel,
+  Uri,
+  workspace,
+} from 'vscode'
 import {
   type BaseLanguageClient,
   CloseAction,
@@ -10,7 +18,13 @@ import {
   State,
   vsdiag,
 } from 'vscode-languageclient'
-import { STATUS, type StatusParams } from '../../server/src/protocol.ts'
+import {
+  CHECK_TEXT,
+  type CheckTextParams,
+  type CheckTextResult,
+  STATUS,
+  type StatusParams,
+} from '../../server/src/protocol.ts'
 import type { StatusItem } from './status.ts'
 
 /** A server that ends by itself is started again, but not for ever: this often within this time. */
@@ -63,10 +77,25 @@ export class Server {
 
   /** @throws where the server cannot be started or answers with an error. */
   async request<R>(method: string, params: object): Promise<R> {
+    return (await this.#running()).sendRequest<R>(method, params)
+  }
+
+  /**
+   * What is wrong with a text that need not be open.
+   * @throws as `request` does, and where it is cancelled.
+   */
+  async check(uri: Uri, text: string, token: CancellationToken): Promise<Diagnostic[]> {
+    const client = await this.#running()
+    const params: CheckTextParams = { uri: client.code2ProtocolConverter.asUri(uri), text }
+    const { findings } = await client.sendRequest<CheckTextResult>(CHECK_TEXT, params, token)
+    return client.protocol2CodeConverter.asDiagnostics([...findings], token)
+  }
+
+  async #running(): Promise<BaseLanguageClient> {
     this.start()
     const client = await this.#client
     if (!client) throw new Error('The Braggline server is not running; its log says why.')
-    return client.sendRequest<R>(method, params)
+    return client
   }
 
   dispose(): Promise<void> {

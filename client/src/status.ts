@@ -1,5 +1,6 @@
 import {
   type DocumentSelector,
+  l10n,
   type LanguageStatusItem,
   LanguageStatusSeverity,
   languages,
@@ -65,34 +66,47 @@ export class StatusItem {
 function view(
   server: ServerState,
   file: StatusParams | undefined,
-): Pick<LanguageStatusItem, 'text' | 'detail' | 'busy' | 'severity' | 'command'> {
-  const showLog = { title: 'Show Log', command: 'braggline.showLog' }
-  const quiet = { severity: LanguageStatusSeverity.Information, command: showLog }
+): Pick<
+  LanguageStatusItem,
+  'text' | 'detail' | 'busy' | 'severity' | 'command' | 'accessibilityInformation'
+> {
+  const { Information, Warning, Error } = LanguageStatusSeverity
+  const showLog = { title: l10n.t('Show Log'), command: 'braggline.showLog' }
+  const quiet = { severity: Information, command: showLog, accessibilityInformation: undefined }
   if (server === 'stopped')
     return {
-      text: 'Server stopped',
-      detail: 'The log says why',
+      text: l10n.t('Server stopped'),
+      detail: l10n.t('The log says why'),
       busy: false,
-      severity: LanguageStatusSeverity.Error,
-      command: { title: 'Restart', command: 'braggline.restartServer' },
+      severity: Error,
+      command: { title: l10n.t('Restart'), command: 'braggline.restartServer' },
+      accessibilityInformation: undefined,
     }
   if (server !== 'running')
-    return { ...quiet, text: 'Starting', detail: undefined, busy: server === 'starting' }
-  if (!file) return { ...quiet, text: 'Lattice file', detail: undefined, busy: false }
+    return { ...quiet, text: l10n.t('Starting'), detail: undefined, busy: server === 'starting' }
+  if (!file) return { ...quiet, text: l10n.t('Lattice file'), detail: undefined, busy: false }
+  const text = file.crystal ?? l10n.t('Lattice file')
+  const found = tally(file)
+  const detail = file.pending
+    ? l10n.t('{0}; looking for symmetry', found)
+    : [found, ...file.limits].join('; ')
   return {
-    ...quiet,
-    text: file.crystal ?? 'Lattice file',
-    detail: file.pending ? 'Looking for symmetry' : tally(file),
+    text,
+    detail,
     busy: file.pending,
+    severity: file.limits.length > 0 ? Warning : Information,
+    command: { title: l10n.t('Open Report'), command: 'braggline.openReport' },
+    accessibilityInformation: { label: `${text}, ${detail}` },
   }
 }
 
 function tally({ errors, warnings, infos }: StatusParams): string {
-  const count = (n: number, one: string, many: string) => (n === 0 ? [] : [`${n} ${n === 1 ? one : many}`])
+  const count = (n: number, one: string, many: (n: number) => string) =>
+    n === 0 ? [] : [n === 1 ? one : many(n)]
   const parts = [
-    ...count(errors, 'error', 'errors'),
-    ...count(warnings, 'warning', 'warnings'),
-    ...count(infos, 'remark', 'remarks'),
+    ...count(errors, l10n.t('1 error'), n => l10n.t('{0} errors', n)),
+    ...count(warnings, l10n.t('1 warning'), n => l10n.t('{0} warnings', n)),
+    ...count(infos, l10n.t('1 remark'), n => l10n.t('{0} remarks', n)),
   ]
-  return parts.join(', ') || 'No findings'
+  return parts.join(', ') || l10n.t('No findings')
 }

@@ -1,4 +1,6 @@
 /** The requests of our own between server and client, as types. Every message about a text carries its version. */
+import type { Diagnostic } from 'vscode-languageserver-types'
+
 export interface CheckedParams {
   readonly uri: string
   readonly version: number
@@ -24,6 +26,8 @@ export interface StatusParams {
   readonly infos: number
   /** A search for symmetry is still running. */
   readonly pending: boolean
+  /** What could not be checked, and why: a search that was given up, say. */
+  readonly limits: readonly string[]
 }
 export const STATUS = 'braggline/status'
 
@@ -221,3 +225,13 @@ export interface ReportResult {
   readonly pending: boolean
 }
 export const REPORT = 'braggline/report'
+
+export interface CheckTextParams {
+  readonly uri: string
+  readonly text: string
+}
+export interface CheckTextResult {
+  readonly findings: readonly Diagnostic[]
+}
+/** All findings of a text that need not be open, symmetry included. */
+export const CHECK_TEXT = 'braggline/checkText'

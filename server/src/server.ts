@@ -36,6 +36,9 @@ import {
   type AppendResult,
   BANDS,
   type BandsResult,
+  CHECK_TEXT,
+  type CheckTextParams,
+  type CheckTextResult,
   CHECKED,
   type CheckedParams,
   type CheckedResult,
@@ -76,6 +79,8 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   const costs = new Map<string, number>()
   let settings: Settings = DEFAULT_SETTINGS
   let editor = DEFAULT_EDITOR_SETTINGS
+  /** The settings that were asked for have come. */
+  let settled: Promise<void> = Promise.resolve()
   let pulls = false
   let refreshes = false
   let asksConfiguration = false
@@ -178,6 +183,10 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     recheckAll()
   }
 
+  function askSettings(): void {
+    settled = readSettings().catch(error => connection.console.error(`settings: ${String(error)}`))
+  }
+
   connection.onInitialize((params: InitializeParams): InitializeResult => {
     const { capabilities, initializationOptions } = params
     client = capabilities
@@ -215,10 +224,10 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   connection.onInitialized(() => {
     if (!asksConfiguration) return
     void connection.client.register(DidChangeConfigurationNotification.type, { section: 'braggline' })
-    void readSettings()
+    askSettings()
   })
   connection.onDidChangeConfiguration(({ settings: sent }) => {
-    if (asksConfiguration) return void readSettings()
+    if (asksConfiguration) return askSettings()
     settings = readSeverities(sent?.braggline)
     editor = readEditorSettings(sent?.braggline)
     recheckAll()
@@ -281,6 +290,21 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     }
     return { version: snapshots.get(uri)?.version ?? version, findings: findingsOf(uri).length }
   })
+  connection.onRequest(
+    CHECK_TEXT,
+    async ({ uri, text }: CheckTextParams, token?: CancellationToken): Promise<CheckTextResult> => {
+      await settled
+      const look = () => new Snapshot(text, workshop, settings)
+      let snapshot = look()
+      // Each round ends the searches of one document at least.
+      for (let rounds = snapshot.documents.length; snapshot.pending && rounds > 0; rounds--) {
+        await symmetry.idle()
+        if (token?.isCancellationRequested) break
+        snapshot = look()
+      }
+      return { findings: guard('check', [], () => diagnostics(snapshot, uri, rulePages))(undefined) }
+    },
+  )
   connection.onRequest(
     RECOMMENDED_PATH,
     about('recommended path', null, (snapshot, { position }: RecommendedPathParams) =>

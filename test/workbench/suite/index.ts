@@ -29,5 +29,7 @@ const suites: Record<string, () => Promise<unknown>> = {
   pictures: () => import('./pictures.test.ts'),
   'zone-view': () => import('./zone-view.test.ts'),
   'zone-tab': () => import('./zone-tab.test.ts'),
+  report: () => import('./report.test.ts'),
+  'workspace-check': () => import('./workspace-check.test.ts'),
   asleep: () => import('./asleep.test.ts'),
 }

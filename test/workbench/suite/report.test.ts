@@ -1,0 +1,106 @@
+import * as assert from 'node:assert'
+import * as vscode from 'vscode'
+import { checked, closeAll, file, open, replace, soon } from './support.ts'
+import { Window } from './window.ts'
+
+const SCHEME = 'braggline-report'
+const tabs = () => vscode.window.tabGroups.all.flatMap(group => group.tabs)
+const previews = () =>
+  tabs().filter(
+    ({ input, label }) =>
+      input instanceof vscode.TabInputWebview && label.includes('lead-telluride report.md'),
+  )
+const reportUri = (source: vscode.Uri) =>
+  vscode.Uri.from({ scheme: SCHEME, path: '/lead-telluride report.md', query: source.toString() })
+const text = async (source: vscode.Uri) =>
+  (await vscode.workspace.openTextDocument(reportUri(source))).getText()
+
+describe('the lattice report', () => {
+  let window: Window | undefined
+  before(async () => {
+    window = await Window.connect()
+  })
+  after(async () => window?.close())
+  afterEach(async () => {
+    await closeAll()
+    await vscode.commands.executeCommand('workbench.action.closeAllEditors')
+  })
+
+  it('opens beside the file, follows its edits, and is there once', async () => {
+    const editor = await open('lead-telluride.lattice.yaml')
+    await checked(editor.document)
+    await vscode.commands.executeCommand('braggline.openReport')
+    await soon(() => previews().length === 1)
+    const [preview] = previews()
+    assert.notStrictEqual(preview.group.viewColumn, editor.viewColumn)
+    const before = await text(editor.document.uri)
+    assert.match(before, /Bravais type: cF/)
+    assert.match(before, /path-label-unknown/)
+    assert.match(before, /data:image\/svg\+xml;base64,/)
+
+    await vscode.window.showTextDocument(editor.document, editor.viewColumn)
+    await replace(editor, 'Ww', 'W')
+    await soon(async () => !(await text(editor.document.uri)).includes('path-label-unknown'))
+    await vscode.commands.executeCommand('braggline.openReport')
+    assert.strictEqual(previews().length, 1)
+  })
+
+  it('shows its figure and its tables in the preview', async function () {
+    if (!window) return this.skip()
+    const editor = await open('lead-telluride.lattice.yaml')
+    await checked(editor.document)
+    await vscode.commands.executeCommand('braggline.openReport')
+    await soon(() => previews().length === 1)
+    const frame = window.page.frameLocator('iframe.webview.ready').frameLocator('iframe#active-frame')
+    const figure = frame.locator('img[alt^="First Brillouin zone"]')
+    await figure.waitFor()
+    assert.ok(await figure.evaluate(image => (image as HTMLImageElement).naturalWidth > 100))
+    assert.ok((await frame.locator('table').count()) >= 3)
+    await window.picture('report-preview')
+    await vscode.workspace
+      .getConfiguration('workbench')
+      .update('colorTheme', 'Default Light Modern', vscode.ConfigurationTarget.Workspace)
+    await frame.locator('body.vscode-light').waitFor()
+    await window.picture('report-preview-light')
+    await vscode.workspace
+      .getConfiguration('workbench')
+      .update('colorTheme', undefined, vscode.ConfigurationTarget.Workspace)
+  })
+
+  it('is not made anew while no tab shows it, and is up to date when one does', async () => {
+    const editor = await open('lead-telluride.lattice.yaml')
+    await checked(editor.document)
+    await vscode.commands.executeCommand('braggline.openReport')
+    await soon(() => previews().length === 1)
+    const column = previews()[0].group.viewColumn
+    const other = await vscode.workspace.openTextDocument(file('services.yaml'))
+    await vscode.window.showTextDocument(other, column)
+    await soon(() => !previews()[0].isActive)
+    const hidden = await text(editor.document.uri)
+    await vscode.window.showTextDocument(editor.document, editor.viewColumn)
+    await replace(editor, 'Ww', 'W')
+    await checked(editor.document)
+    // Longer than typing is left to come to rest.
+    await new Promise(done => setTimeout(done, 1_000))
+    assert.strictEqual(await text(editor.document.uri), hidden)
+    await vscode.window.showTextDocument(other, column)
+    await vscode.commands.executeCommand('workbench.action.closeActiveEditor')
+    await soon(async () => !(await text(editor.document.uri)).includes('path-label-unknown'))
+  })
+
+  it('may not be written to', async () => {
+    const { document } = await open('lead-telluride.lattice.yaml')
+    await checked(document)
+    const report = await vscode.window.showTextDocument(
+      await vscode.workspace.openTextDocument(reportUri(document.uri)),
+    )
+    assert.ok(
+      await report
+        .edit(edit => edit.insert(new vscode.Position(0, 0), 'x'))
+        .then(
+          done => !done,
+          () => true,
+        ),
+    )
+  })
+})
