@@ -53,6 +53,8 @@ interface Report {
   text: string
   /** The text of the file has changed since, or symmetry was still being looked for. */
   stale: boolean
+  /** A tab has shown it. It is kept until the last one is closed. */
+  wasShown: boolean
   timer?: ReturnType<typeof setTimeout>
 }
 
@@ -89,6 +91,7 @@ class Reports {
   }
 
   async open(): Promise<void> {
+    const editor = window.activeTextEditor
     const document = this.#latticeFile()
     if (!document) return
     const source = document.uri
@@ -96,6 +99,8 @@ class Reports {
     await this.#refresh(report)
     try {
       await commands.executeCommand('markdown.showLockedPreviewToSide', report.uri)
+      // Who asked for it goes on writing.
+      if (editor?.viewColumn) await window.showTextDocument(document, editor.viewColumn)
     } catch (error) {
       // The editor's Markdown extension may be turned off.
       this.tools.log.warn('The preview cannot be had; the report is shown as text.', asError(error))
@@ -138,7 +143,7 @@ class Reports {
       path: `/${stem(source)} report.md`,
       query: source.toString(),
     })
-    const report: Report = { uri, source, text: '', stale: true }
+    const report: Report = { uri, source, text: '', stale: true, wasShown: false }
     this.#reports.set(source.toString(), report)
     return report
   }
@@ -173,9 +178,11 @@ class Reports {
     const all = window.tabGroups.all.flatMap(({ tabs }) => tabs)
     for (const [key, report] of this.#reports) {
       if (report.stale && this.#isShown(report)) void this.#refresh(report)
-      if (all.some(tab => shows(tab, report)) || report.text === '') continue
-      clearTimeout(report.timer)
-      this.#reports.delete(key)
+      if (all.some(tab => shows(tab, report))) report.wasShown = true
+      else if (report.wasShown) {
+        clearTimeout(report.timer)
+        this.#reports.delete(key)
+      }
     }
   }
 

@@ -27,6 +27,8 @@ import type { Server } from './server.ts'
 
 const PATTERN = '**/*.lattice.{yaml,yml}'
 const LATTICE_FILE = /\.lattice\.ya?ml$/
+/** What has such a name is hardly a folder. */
+const ORDINARY_FILE = /\.[a-z][a-z0-9]{0,4}$/i
 /** The server answers one after another: two on their way keep it busy, and a keystroke waits for no more than these. */
 const AT_ONCE = 2
 /** Changes on disk come in bursts, in ms. */
@@ -209,8 +211,8 @@ class WorkspaceCheck {
 
   #follow(): void {
     const files = workspace.createFileSystemWatcher(PATTERN)
-    // Of a folder that goes, only the folder itself is told.
-    const everything = workspace.createFileSystemWatcher('**', true, true, false)
+    // Of a folder that comes or goes, only the folder itself is told.
+    const everything = workspace.createFileSystemWatcher('**', false, true, false)
     const review = () => this.#reviewEditors()
     this.#following = [
       files,
@@ -218,6 +220,9 @@ class WorkspaceCheck {
       files.onDidCreate(uri => this.#look(uri)),
       files.onDidChange(uri => this.#look(uri)),
       files.onDidDelete(uri => this.#look(uri)),
+      everything.onDidCreate(uri => {
+        if (!LATTICE_FILE.test(uri.path) && !ORDINARY_FILE.test(uri.path)) void this.#lookInto(uri)
+      }),
       everything.onDidDelete(uri => this.#lookBelow(uri)),
       workspace.onDidDeleteFiles(({ files }) => {
         for (const uri of files) this.#lookBelow(uri)
@@ -278,6 +283,11 @@ class WorkspaceCheck {
   /** A file, or a folder with all that is in it, has a new name. */
   async #lookInto(uri: Uri): Promise<void> {
     if (LATTICE_FILE.test(uri.path)) return this.#look(uri)
+    try {
+      if (!((await workspace.fs.stat(uri)).type & FileType.Directory)) return
+    } catch {
+      return
+    }
     const { token } = new CancellationTokenSource()
     for (const found of await this.#find(token, uri)) this.#look(found)
   }

@@ -1,5 +1,5 @@
 /** The requests of our own between server and client, as types. Every message about a text carries its version. */
-import type { Diagnostic } from 'vscode-languageserver-types'
+import type { Diagnostic, TextEdit } from 'vscode-languageserver-types'
 
 export interface CheckedParams {
   readonly uri: string
@@ -235,3 +235,28 @@ export interface CheckTextResult {
 }
 /** All findings of a text that need not be open, symmetry included. */
 export const CHECK_TEXT = 'braggline/checkText'
+
+export interface PastedLatticeParams {
+  /** What was copied. */
+  readonly text: string
+  /** The open text that the lattice is for; none: a new one. */
+  readonly uri?: string
+  readonly position?: { readonly line: number; readonly character: number }
+}
+/** One way to read the vectors and to write them as a lattice. */
+export interface PastedChoice {
+  readonly title: string
+  readonly detail: string
+  /** The lattice that the document has goes. */
+  readonly replaces: boolean
+  readonly edits: readonly TextEdit[]
+}
+export interface PastedLatticeResult {
+  /** Of the open text; 0 of a new one. */
+  readonly version: number
+  /** The likeliest first. */
+  readonly choices: readonly PastedChoice[]
+  /** Why there are none. */
+  readonly reason?: string
+}
+export const PASTED_LATTICE = 'braggline/pastedLattice'

@@ -23,6 +23,7 @@ import { diagnostics } from './language/diagnostics.ts'
 import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
 import { hover } from './language/hover.ts'
+import { pastedLattice } from './language/pasted-lattice.ts'
 import { reportAnswer } from './language/report.ts'
 import { recommendedPathEdit } from './language/recommended-path.ts'
 import { DEFAULT_EDITOR_SETTINGS, readEditorSettings } from './language/settings.ts'
@@ -46,6 +47,9 @@ import {
   FIGURE,
   type FigureParams,
   type FigureResult,
+  PASTED_LATTICE,
+  type PastedLatticeParams,
+  type PastedLatticeResult,
   RECOMMENDED_PATH,
   type RecommendedPathParams,
   REPORT,
@@ -304,6 +308,18 @@ export function startServer(connection: Connection, options: ServerOptions): voi
       }
       return { findings: guard('check', [], () => diagnostics(snapshot, uri, rulePages))(undefined) }
     },
+  )
+  connection.onRequest(
+    PASTED_LATTICE,
+    guard(
+      'pasted lattice',
+      null,
+      ({ text, uri, position }: PastedLatticeParams): PastedLatticeResult | null => {
+        const snapshot = uri === undefined ? new Snapshot('', workshop, settings) : snapshotOf(uri)
+        if (!snapshot) return null
+        return pastedLattice(text, snapshot, position ? snapshot.offsetOf(position) : 0)
+      },
+    ),
   )
   connection.onRequest(
     RECOMMENDED_PATH,

@@ -31,5 +31,6 @@ const suites: Record<string, () => Promise<unknown>> = {
   'zone-tab': () => import('./zone-tab.test.ts'),
   report: () => import('./report.test.ts'),
   'workspace-check': () => import('./workspace-check.test.ts'),
+  paste: () => import('./paste.test.ts'),
   asleep: () => import('./asleep.test.ts'),
 }
