@@ -44,6 +44,11 @@ const DRAFTS: Record<string, readonly string[]> = {
     'lattice-type-mismatch @ 99',
   ],
   '15-outside-the-zone': ['path-repeats @ Γ – Γ', 'path-leaves-zone @ L – Q'],
+  '16-half-a-step-off-gamma': ['mesh-breaks-symmetry @ [1/2, 1/2, 1/2]'],
+  '17-divisions-of-other-axes': ['mesh-cell-suspect @ [8, 8, 3]'],
+  '18-divisions-across-a-vacuum': ['mesh-across-vacuum @ 4'],
+  '19-unequal-along-equivalent-vectors': ['mesh-breaks-symmetry @ [9, 9, 6]'],
+  '20-supercell-without-k': ['supercell-misses-point @ [4, 4]'],
 }
 
 describe('drafts', () => {
@@ -62,7 +67,8 @@ describe('drafts', () => {
 })
 
 /** The drafts that hold one mistake in a file that is otherwise sound. */
-const MENDED = Object.keys(DRAFTS).filter(name => Number(name.slice(0, 2)) <= 12)
+const SEVERAL = ['13', '14', '15']
+const MENDED = Object.keys(DRAFTS).filter(name => !SEVERAL.includes(name.slice(0, 2)))
 
 describe('the first fix that is offered', () => {
   test.each(MENDED)('mends %s', name => {

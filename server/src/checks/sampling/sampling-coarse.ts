@@ -37,6 +37,7 @@ export const samplingCoarse: Check<Facts> = {
         at: segment.own,
         message: `${describe(segment, crystal)}. ${usual(crystal)}: ${count(Number(steps), 'step')} here.`,
         facts: { step: stepOf(segment) },
+        hides: HIDDEN,
         fixes: [{ title: `Give it ${steps} steps`, safe: false, edits }],
       }
     }
@@ -52,6 +53,7 @@ export const samplingCoarse: Check<Facts> = {
       at: (block.spacing ?? block.steps ?? block.total)!.at,
       message: `${describe(worst, crystal)}.${more} ${usual(crystal)}.`,
       facts: { step: stepOf(worst) },
+      hides: HIDDEN,
       related: others.flatMap(segment =>
         segment.at ? [{ at: segment.at, message: describe(segment, crystal) }] : [],
       ),
@@ -59,6 +61,9 @@ export const samplingCoarse: Check<Facts> = {
     }
   },
 }
+
+/** Too few points in some segments are uneven as well: one mistake, one finding. */
+const HIDDEN = [{ rule: 'sampling-uneven', subject: 'sampling' }]
 
 function isCoarse(segment: Sampled, { angstrom }: Crystal): boolean {
   const step = stepOf(segment) / angstrom

@@ -36,6 +36,7 @@ export const samplingUneven: Check<Facts> = {
       at,
       message: `The steps differ ${plain(ratio, 1)}-fold: ${inverseLength(stepOf(sparse), unit, 3)} in ${sparse.name}, ${inverseLength(stepOf(dense), unit, 3)} in ${dense.name}.`,
       facts: { ratio },
+      subject: 'sampling',
       related: related([sparse, dense], crystal),
       fixes: sparse.own || dense.own ? [] : oneSpacing(context, path, block),
     }

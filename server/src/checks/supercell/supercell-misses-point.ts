@@ -1,5 +1,6 @@
 import { fixedDimensions, K_TOLERANCE, littleCoGroup, star } from '../../crystal/kspace.ts'
-import { apply, type Mat3, type Vec3 } from '../../crystal/vector.ts'
+import { integerDeterminant, supercellFraction } from '../../crystal/supercell.ts'
+import { type Mat3, subtract, type Vec3 } from '../../crystal/vector.ts'
 import { replaceVector } from '../../format/edits.ts'
 import type { SupercellBlock } from '../../format/model.ts'
 import type { Crystal, PlacedPoint } from '../../meaning/crystal.ts'
@@ -9,7 +10,6 @@ import { fractions } from '../../meaning/wording.ts'
 import type { Check, Context } from '../check.ts'
 import { diagnose, isInDoubt } from '../points/diagnosis.ts'
 import { listLabels, offer } from '../points/numbers.ts'
-import { integerDeterminant } from '../../crystal/supercell.ts'
 
 interface Facts {
   readonly missed: readonly string[]
@@ -27,19 +27,22 @@ export const supercellMissesPoint: Check<Facts> = {
     const { supercell, kGroup, dimension } = crystal
     const block = document.supercell
     if (!block || !supercell || !kGroup || !dimension || integerDeterminant(supercell) === 0n) return
-    const missed = symmetryPointsOf(crystal).filter(
-      point => !star(point.fraction, kGroup).some(k => isWhole(apply(supercell, k))),
+    const wanted = symmetryPointsOf(crystal)
+    const missed = wanted.filter(
+      point => !star(point.fraction, kGroup).some(k => isWhole(supercellFraction(supercell, k))),
     )
     if (missed.length === 0) return
     const labels = missed.map(({ label }) => label)
     const places = missed.map(({ fraction }) => fractions(fraction, dimension)).join(', ')
-    const larger = block.diagonal ? raised(supercell, missed, kGroup) : undefined
-    const written = larger && `[${larger.slice(0, dimension).join(', ')}]`
+    const needed = ([0, 1, 2] as const).map(i => multiple(wanted, kGroup, i))
+    const larger = needed.map((n, i) => Math.ceil(block.diagonal ? Math.abs(supercell[i][i]) / n : 1) * n)
+    const written = `[${larger.slice(0, dimension).join(', ')}]`
+    const all = wanted.length === missed.length ? '' : ', with the other symmetry points of the path'
     yield {
       at: block.at,
-      message: `${listLabels(labels)} (${places}) ${missed.length === 1 ? 'does' : 'do'} not fold onto Γ of this supercell: its rows times k are no whole numbers. ${written ? `${written} is the smallest diagonal one that does, and is nowhere smaller.` : demand(missed, kGroup, dimension)}`,
+      message: `${listLabels(labels)} (${places}) ${missed.length === 1 ? 'does' : 'do'} not fold onto Γ of this supercell: its rows times k are no whole numbers. ${written} is the smallest diagonal supercell ${block.diagonal ? 'from this size on ' : ''}that holds ${missed.length === 1 ? 'it' : 'them'}${all}.`,
       facts: { missed: labels },
-      fixes: larger && written ? offer(`Use ${written}`, diagonalEdits(context, block, larger)) : [],
+      fixes: block.diagonal ? offer(`Use ${written}`, diagonalEdits(context, block, larger)) : [],
     }
   },
 }
@@ -56,9 +59,7 @@ function symmetryPointsOf(crystal: Crystal): PlacedPoint[] {
     if (!point || isInDoubt(diagnosis, label)) continue
     if (fixedDimensions(littleCoGroup(point.fraction, group), dimension) > 0) continue
     const isKnown = found.some(other =>
-      star(other.fraction, kGroup).some(k =>
-        isWhole([0, 1, 2].map(i => k[i] - point.fraction[i]) as unknown as Vec3),
-      ),
+      star(other.fraction, kGroup).some(k => isWhole(subtract(k, point.fraction))),
     )
     if (!isKnown) found.push(point)
   }
@@ -78,17 +79,6 @@ function multiple(points: readonly PlacedPoint[], group: readonly Mat3[], i: num
   for (let n = 1; n < LARGEST_DENOMINATOR; n++)
     if (images.every(k => Math.abs(k[i] * n - Math.round(k[i] * n)) <= SAME)) return n
   return LARGEST_DENOMINATOR
-}
-
-const raised = (supercell: Mat3, points: readonly PlacedPoint[], group: readonly Mat3[]): number[] =>
-  supercell.map((row, i) => {
-    const n = multiple(points, group, i)
-    return Math.ceil(Math.abs(row[i]) / n) * n
-  })
-
-function demand(points: readonly PlacedPoint[], group: readonly Mat3[], dimension: number): string {
-  const needed = [0, 1, 2].slice(0, dimension).map(i => multiple(points, group, i))
-  return `[${needed.join(', ')}] is the smallest diagonal one that does.`
 }
 
 const diagonalEdits = ({ text }: Context, { rows }: SupercellBlock, larger: readonly number[]) =>
