@@ -9,6 +9,7 @@ import {
 } from '../../crystal/symmetry-library.ts'
 import { LAST_SPACE_GROUP, namedSpaceGroup } from '../../crystal/space-group.ts'
 import { apply, combine, inverse, type Mat3, type Vec3 } from '../../crystal/vector.ts'
+import { operationsOfHall } from './hall.ts'
 import {
   closed,
   groupNumber,
@@ -139,8 +140,24 @@ interface StatedGroup {
   readonly number: number
   readonly words: string
   readonly place: Place
-  readonly settings: readonly SpaceGroupSetting[]
+  readonly settings: readonly Setting[]
 }
+
+interface Setting {
+  /** Computed when asked for. */
+  readonly operations: readonly Operation[]
+  readonly name: string
+  /** Of two choices of the origin, the one at a centre of symmetry. */
+  readonly centred?: boolean
+}
+
+const tabulated = (setting: SpaceGroupSetting): Setting => ({
+  get operations() {
+    return closed(settingOperations(setting)) ?? []
+  },
+  name: setting.fullSymbol + (setting.choice ? ` (${setting.choice})` : ''),
+  centred: setting.choice.startsWith('2'),
+})
 
 class BlockReader {
   readonly #remarks: Remark[] = []
@@ -287,13 +304,12 @@ class BlockReader {
   }
 
   /** What the CIF states by number or symbol. */
-  #stated():
-    | { number: number; words: string; place: Place; settings: readonly SpaceGroupSetting[] }
-    | undefined {
+  #stated(): StatedGroup | undefined {
     const symbolValue = this.#value(HM_SYMBOLS)
     const hallValue = this.#value(HALL_SYMBOLS)
     const numberValue = this.#value(NUMBERS)
-    const hall = hallValue && settingOfHall(hallValue.text)
+    const hall = hallValue && operationsOfHall(hallValue.text)
+    const hallNumber = hall && groupNumber(hall)
     const named = symbolValue && settingsOfSymbol(symbolValue.text)
     const number = numberValue && numberOf(numberValue)?.value
     const numbered =
@@ -304,8 +320,13 @@ class BlockReader {
         `the symbol ${shown(symbolValue.text)} names no space group that is known here`,
         symbolValue,
       )
-    if (hall && (!numbered || hall.number === number))
-      return { number: hall.number, words: hall.hallSymbol, place: hallValue, settings: [hall] }
+    if (hall && hallNumber !== undefined && (!numbered || hallNumber === number))
+      return {
+        number: hallNumber,
+        words: shown(hallValue.text),
+        place: hallValue,
+        settings: [{ operations: hall, name: '' }],
+      }
     if (named && symbolValue) {
       if (numbered && named[0].number !== number)
         this.#remark(
@@ -313,10 +334,20 @@ class BlockReader {
           `the symbol ${shown(symbolValue.text)} is number ${named[0].number}, and the CIF says ${number}`,
           symbolValue,
         )
-      return { number: named[0].number, words: shown(symbolValue.text), place: symbolValue, settings: named }
+      return {
+        number: named[0].number,
+        words: shown(symbolValue.text),
+        place: symbolValue,
+        settings: named.map(tabulated),
+      }
     }
     if (numbered && numberValue)
-      return { number, words: 'number', place: numberValue, settings: spaceGroupSettings(number) }
+      return {
+        number,
+        words: 'number',
+        place: numberValue,
+        settings: spaceGroupSettings(number).map(tabulated),
+      }
     return undefined
   }
 
@@ -330,29 +361,20 @@ class BlockReader {
       return [IDENTITY_OPERATION]
     }
     const shortest = Math.min(...rows.map(row => Math.hypot(...row)))
-    const fitting = stated.settings.flatMap(setting => {
-      const operations = closed(settingOperations(setting))
-      const miss =
-        operations &&
-        metricMiss(
-          operations.map(o => o.rotation),
-          rows,
-        ).by
-      return operations && miss! <= LARGEST_MISS * shortest ? [{ setting, operations }] : []
+    const fitting = stated.settings.flatMap(({ operations, name, centred }) => {
+      const turns = operations.map(o => o.rotation)
+      const fits = turns.length > 0 && metricMiss(turns, rows).by <= LARGEST_MISS * shortest
+      return fits ? [{ operations, name, order: centred ? 0 : 1 }] : []
     })
     if (fitting.length === 0)
       this.#fail(stated.place, `no setting of ${stated.words}, space group ${stated.number}, fits the cell`)
-    const best = fitting
-      .map(each => ({
-        ...each,
-        atoms: atomsUnder(each.operations, rows, sites),
-        first: each.setting.choice.startsWith('2') ? 0 : 1,
-      }))
-      .sort((p, q) => p.atoms - q.atoms || p.first - q.first)[0]
+    const [best] = fitting
+      .map(each => ({ ...each, atoms: atomsUnder(each.operations, rows, sites) }))
+      .sort((p, q) => p.atoms - q.atoms || p.order - q.order)
     if (fitting.length > 1)
       this.#remark(
         'loss',
-        `no operations are listed, and ${stated.words} (space group ${stated.number}) has ${fitting.length} settings that fit the cell: ${best.setting.fullSymbol}${best.setting.choice ? ` (${best.setting.choice})` : ''} was taken, which makes fewest atoms`,
+        `no operations are listed, and ${stated.words} (space group ${stated.number}) has ${fitting.length} settings that fit the cell: ${best.name} was taken, which makes fewest atoms`,
         stated.place,
       )
     return best.operations
@@ -616,21 +638,6 @@ function settingsOfSymbol(text: string): readonly SpaceGroupSetting[] | undefine
   const choice = mark === 'S' ? '1' : mark === 'Z' ? '2' : mark
   const chosen = named.settings.filter(setting => setting.choice.toUpperCase() === choice)
   return chosen.length > 0 && choice ? chosen : named.settings
-}
-
-function settingOfHall(text: string): SpaceGroupSetting | undefined {
-  const plain = (symbol: string) =>
-    symbol
-      .replace(/[\s_]+/g, '')
-      .replace(/"/g, '=')
-      .replace(/=/g, "'")
-      .toLowerCase()
-  const wanted = plain(text)
-  for (let number = 1; number <= LAST_SPACE_GROUP; number++) {
-    const found = spaceGroupSettings(number).find(({ hallSymbol }) => plain(hallSymbol) === wanted)
-    if (found) return found
-  }
-  return undefined
 }
 
 /** Closer images than this, in Å, of one atom are one: it is on a special position. */

@@ -132,30 +132,44 @@ function settle(
 ): Set<number> {
   const left = new Set<number>()
   if (sites.length === 0) return left
-  const positions = atoms.flatMap(({ position }) => translations.map(t => wrap(add(position, t))))
-  const species = kinds.flatMap(kind => translations.map(() => kind))
-  const grid = new PositionGrid({ dimension: 3, basis: rows, positions, species }, ALTERNATIVES)
   const home = sites.map((_, i) => i)
   const rootOf = (i: number): number => {
     while (home[i] !== i) i = home[i] = home[home[i]]
     return i
   }
   const split = new Map<number, number>()
-  for (const [i, kind] of kinds.entries()) {
-    const at = i * translations.length
-    const found = grid.nearest(positions[at], undefined, at)
-    if (found < 0) continue
-    const other = species[found]
-    const away = norm(combine(nearestImage(subtract(positions[found], positions[at]), 3), rows))
-    if (other === kind) split.set(kind, Math.min(away, split.get(kind) ?? away))
-    else if (away < SPECIAL || (isPartial(sites[kind]) && isPartial(sites[other])))
-      home[rootOf(kind)] = rootOf(other)
+  // Each site meets the nearest of the others; those that fell together with it are out of the way in the next round.
+  for (let joined = true; joined; ) {
+    joined = false
+    const living = [...atoms.keys()].filter(i => rootOf(kinds[i]) === kinds[i])
+    const positions = living.flatMap(i => translations.map(t => wrap(add(atoms[i].position, t))))
+    const species = living.flatMap(i => translations.map(() => kinds[i]))
+    const grid = new PositionGrid({ dimension: 3, basis: rows, positions, species }, ALTERNATIVES)
+    for (let at = 0; at < positions.length; at += translations.length) {
+      const kind = species[at]
+      const found = grid.nearest(positions[at], undefined, at)
+      if (found < 0) continue
+      const other = species[found]
+      const away = norm(combine(nearestImage(subtract(positions[found], positions[at]), 3), rows))
+      if (other === kind) split.set(kind, Math.min(away, split.get(kind) ?? away))
+      else if (rootOf(kind) === kind && rootOf(other) === other)
+        if (away < SPECIAL || (isPartial(sites[kind]) && isPartial(sites[other]))) {
+          // The one that is there most stays, of equal ones the first.
+          const [major, minor] =
+            sites[kind].occupancy > sites[other].occupancy ||
+            (sites[kind].occupancy === sites[other].occupancy && kind < other)
+              ? [kind, other]
+              : [other, kind]
+          home[minor] = major
+          joined = true
+        }
+    }
   }
   const classes = new Map<number, number[]>()
   for (const i of sites.keys()) classes.set(rootOf(i), [...(classes.get(rootOf(i)) ?? []), i])
   const twice: string[] = []
   for (const members of classes.values()) {
-    const [major, ...others] = [...members].sort((p, q) => sites[q].occupancy - sites[p].occupancy)
+    const [major, ...others] = [...members].sort((p, q) => sites[q].occupancy - sites[p].occupancy || p - q)
     const site = sites[major]
     for (const other of others) left.add(other)
     if (
