@@ -46,6 +46,7 @@ const builds = [
       cli: 'server/src/cli.ts',
       server: 'server/src/server-entry.ts',
       'symmetry-worker': 'server/src/symmetry-worker.ts',
+      'form-worker': 'server/src/form-worker.ts',
     },
     mainFields: ['module', 'main'],
   },

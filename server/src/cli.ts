@@ -2,6 +2,7 @@
 /** The command line under Node: the process, its streams, its signals. */
 import type { Io } from './cli/io.ts'
 import { run } from './cli/run.ts'
+import { fillFormInThread } from './form-thread.ts'
 import { loadSymmetryFromDisk } from './symmetry-node.ts'
 import { WorkerSymmetry } from './symmetry-service.ts'
 import { startSymmetryThread } from './symmetry-thread.ts'
@@ -25,6 +26,7 @@ const io: Io = {
     return Buffer.concat(chunks)
   },
   now: () => performance.now(),
+  fillForm: fillFormInThread,
 }
 
 let symmetry: WorkerSymmetry | undefined

@@ -94,10 +94,10 @@ const REASONS: Record<string, string> = {
 }
 
 /** @throws Refusal saying why the file could not be read as text. */
-export async function readText(name: string, io: Io): Promise<LatticeText> {
-  if (name === STANDARD_INPUT) return decoded(name, undefined, await io.readInput())
+export async function readText(name: string, io: Io, what = 'lattice file'): Promise<LatticeText> {
+  if (name === STANDARD_INPUT) return decoded(name, undefined, await io.readInput(), what)
   const path = resolve(io.cwd, name)
-  return decoded(name, path, bytesOf(path, name))
+  return decoded(name, path, bytesOf(path, name), what)
 }
 
 function bytesOf(path: string, name: string): Uint8Array {
@@ -108,10 +108,10 @@ function bytesOf(path: string, name: string): Uint8Array {
   }
 }
 
-function decoded(name: string, path: string | undefined, bytes: Uint8Array): LatticeText {
+function decoded(name: string, path: string | undefined, bytes: Uint8Array, what: string): LatticeText {
   if (bytes.includes(0))
     throw new Refusal(
-      `${name}: ${startsUtf16(bytes) ? 'UTF-16 text: save it as UTF-8' : 'a binary file, no lattice file'}`,
+      `${name}: ${startsUtf16(bytes) ? 'UTF-16 text: save it as UTF-8' : `a binary file, no ${what}`}`,
     )
   try {
     const text = new TextDecoder('utf-8', { fatal: true, ignoreBOM: true }).decode(bytes)

@@ -1,3 +1,5 @@
+import type { FillForm } from '../exchange/forms/form.ts'
+
 /** What the command line needs of the world, so that tests can give it another one. */
 export interface Stream {
   write(text: string): void
@@ -15,6 +17,7 @@ export interface Io {
   readInput(): Promise<Uint8Array>
   /** Milliseconds from any fixed moment. */
   now(): number
+  readonly fillForm: FillForm
 }
 
 /** What a user did wrong, or what could not be done, told in one line. Ends the command with status 2. */

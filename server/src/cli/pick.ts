@@ -15,6 +15,8 @@ export interface Pick {
   readonly snapshot: Snapshot
   /** Among the documents of the snapshot, from 0. */
   readonly ordinal: number
+  /** Of the file, as it was asked for. */
+  readonly name: string
 }
 
 /** The same, with the text that it stands in. */
@@ -30,5 +32,5 @@ export async function onePick(given: Given, io: Io, engine: () => Engine): Promi
   const crystal = documents[0]?.crystal
   if (!crystal?.lattice)
     throw new Refusal(`${name} has no lattice that could be built; \`braggline check\` says why`)
-  return { crystal, snapshot, ordinal: snapshot.documents.indexOf(documents[0]) }
+  return { crystal, snapshot, ordinal: snapshot.documents.indexOf(documents[0]), name }
 }

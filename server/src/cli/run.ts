@@ -6,6 +6,7 @@ import { check } from './check.ts'
 import { draw } from './draw.ts'
 import { Engine, type Symmetries } from './engine.ts'
 import { explain } from './explain.ts'
+import { fill } from './fill.ts'
 import { fold } from './fold.ts'
 import { importVerb } from './import.ts'
 import { type Io, Refusal } from './io.ts'
@@ -27,6 +28,7 @@ export const VERBS: readonly Verb[] = [
   fold,
   bands,
   draw,
+  fill,
   importVerb,
   explain,
   serve,

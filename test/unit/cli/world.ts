@@ -5,6 +5,7 @@ import { dirname, join } from 'node:path'
 import type { Symmetries } from '../../../server/src/cli/engine.ts'
 import type { Io } from '../../../server/src/cli/io.ts'
 import { run } from '../../../server/src/cli/run.ts'
+import { fillForm } from '../../../server/src/exchange/forms/engine.ts'
 import { loadSymmetryFromDisk } from '../../../server/src/symmetry-node.ts'
 import { directSymmetry } from '../../../server/src/symmetry-service.ts'
 
@@ -60,6 +61,7 @@ export class World {
       err: stream('err'),
       readInput: async () => Buffer.from(around.input ?? ''),
       now: () => (time += around.slow ?? 0),
+      fillForm: async job => fillForm(job),
     }
     const status = await run(args, io, () => {
       loadSymmetryFromDisk()
