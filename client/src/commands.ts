@@ -34,6 +34,8 @@ mesh:
   divisions: [\${7:12, 12, 12}]
 $0`
 
+type TextPosition = RecommendedPathParams['position']
+
 interface Tools {
   readonly server: Server
   readonly log: LogOutputChannel
@@ -41,17 +43,22 @@ interface Tools {
 }
 
 export function registerCommands(context: ExtensionContext, { server, log, selector }: Tools): void {
-  const register = (name: string, run: () => unknown) =>
+  const register = (name: string, run: (...given: unknown[]) => unknown) =>
     context.subscriptions.push(commands.registerCommand(`braggline.${name}`, run))
   register('restartServer', () => server.restart())
   register('showLog', () => log.show())
   register('newFile', newFile)
-  register('insertRecommendedPath', async () => {
+  // A lens says where; else it is where the cursor stands.
+  register('insertRecommendedPath', async place => {
     const editor = window.activeTextEditor
-    if (editor && languages.match(selector, editor.document) > 0) await insertRecommendedPath(editor, server)
+    if (!editor || languages.match(selector, editor.document) === 0) return
+    await insertRecommendedPath(editor, server, isPosition(place) ? place : editor.selection.active)
   })
   void commands.executeCommand('setContext', 'braggline.active', true)
 }
+
+const isPosition = (value: unknown): value is TextPosition =>
+  typeof value === 'object' && value !== null && 'line' in value && 'character' in value
 
 async function newFile(): Promise<void> {
   const document = await workspace.openTextDocument({ language: 'braggline' })
@@ -59,12 +66,15 @@ async function newFile(): Promise<void> {
   await editor.insertSnippet(new SnippetString(NEW_FILE))
 }
 
-async function insertRecommendedPath(editor: TextEditor, server: Server): Promise<void> {
-  const { document, selection } = editor
+async function insertRecommendedPath(
+  { document }: TextEditor,
+  server: Server,
+  { line, character }: TextPosition,
+): Promise<void> {
   const params: RecommendedPathParams = {
     uri: document.uri.toString(),
     version: document.version,
-    position: { line: selection.active.line, character: selection.active.character },
+    position: { line, character },
   }
   const edits = await server.request<TextEdit[] | null>(RECOMMENDED_PATH, params)
   if (!edits) {

@@ -62,7 +62,7 @@ import {
   type ZoneSolidParams,
   type ZoneSolidResult,
 } from './protocol.ts'
-import { EDITING, serveEditing } from './server-editing.ts'
+import { EDITING, refreshShown, serveEditing } from './server-editing.ts'
 import { NAVIGATION, serveNavigation } from './server-navigation.ts'
 import { type StartWorker, WorkerSymmetry } from './symmetry-service.ts'
 
@@ -91,6 +91,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   let rulePages = options.rulePages
   let announces = false
   let snippets = false
+  let commands = false
   let columns: Columns = 'utf-16'
   let client: ClientCapabilities = {}
 
@@ -174,6 +175,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   }
 
   function recheckAll(): void {
+    refreshShown(connection, client)
     if (!pulls) for (const { uri } of documents.all()) schedule(uri)
     else if (refreshes) connection.languages.diagnostics.refresh()
   }
@@ -200,6 +202,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     const pages: unknown = initializationOptions?.rulePages
     if (typeof pages === 'string') rulePages = pages
     announces = initializationOptions?.status === true
+    commands = initializationOptions?.commands === true
     snippets = capabilities.textDocument?.completion?.completionItem?.snippetSupport === true
     columns = columnsFor(capabilities.general?.positionEncodings)
     return {
@@ -283,7 +286,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     rulePages: () => rulePages,
     open: openTexts,
   })
-  serveEditing({ connection, about, settings: () => editor })
+  serveEditing({ connection, about, settings: () => editor, commands: () => commands, snapshotOf })
 
   connection.onRequest(CHECKED, async ({ uri, version }: CheckedParams): Promise<CheckedResult | null> => {
     const document = documents.get(uri)

@@ -1,9 +1,11 @@
 import { existsSync } from 'node:fs'
 import { afterEach, beforeAll, expect, test } from 'vitest'
 import type {
+  CodeLens,
   DocumentHighlight,
   DocumentLink,
   FoldingRange,
+  InlayHint,
   Location,
   SelectionRange,
   SemanticTokens,
@@ -106,4 +108,30 @@ test('formatting: the whole, some lines, while typing', async () => {
     ch: '\n',
   })
   expect(onType.map(edit => edit.range.start.line)).toEqual([0])
+})
+
+test('hints and lenses, with the rest when it is asked for', async () => {
+  await open()
+  const range = { start: { line: 0, character: 0 }, end: { line: 9, character: 0 } }
+  const hints = await client.request<InlayHint[]>('textDocument/inlayHint', { range })
+  expect(hints.map(({ label }) => label)).toEqual(['volume 64 Å³'])
+  const hint = await client.connection.sendRequest<InlayHint>('inlayHint/resolve', hints[0])
+  expect(hint.tooltip).toBe('Volume of the primitive cell: 64 Å³.')
+  const lenses = await client.request<CodeLens[]>('textDocument/codeLens')
+  expect(lenses.map(lens => lens.range.start.line)).toEqual([4])
+  const lens = await client.connection.sendRequest<CodeLens>('codeLens/resolve', lenses[0])
+  // This client has no commands of ours: a title, and nothing to click.
+  expect(lens.command).toEqual({ title: expect.stringContaining('Å⁻¹ in 2 segments'), command: '' })
+})
+
+test('what a client makes up is no reason to fail', async () => {
+  await open()
+  const nonsense = {
+    position: { line: 0, character: 0 },
+    label: 'x',
+    data: { uri: 'file:///no', index: 'a' },
+  }
+  expect(await client.connection.sendRequest('inlayHint/resolve', nonsense)).toEqual(nonsense)
+  const lens = { range: { start: { line: 0, character: 0 }, end: { line: 0, character: 0 } }, data: 7 }
+  expect(await client.connection.sendRequest('codeLens/resolve', lens)).toEqual(lens)
 })

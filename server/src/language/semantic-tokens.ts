@@ -48,13 +48,14 @@ export function semanticTokens(snapshot: Snapshot, within: Span = [0, snapshot.t
   let end = 0
   for (const { at, modifiers } of tokens) {
     const start = snapshot.positionOf(at[0])
+    const stop = snapshot.positionOf(at[1])
     // No token goes over the end of a line or over another.
-    if (at[0] < end || at[1] <= at[0] || snapshot.lineOf(at[1]) !== start.line) continue
+    if (at[0] < end || at[1] <= at[0] || stop.line !== start.line) continue
     const down = start.line - line
     data.push(
       down,
       down > 0 ? start.character : start.character - character,
-      at[1] - at[0],
+      stop.character - start.character,
       KPOINT,
       modifiers,
     )

@@ -4,6 +4,8 @@ import { expect, test } from 'vitest'
 import type { Range } from 'vscode-languageserver-types'
 import type { Snapshot } from '../../../server/src/analysis.ts'
 import { formatting, formattingOnType } from '../../../server/src/language/formatting.ts'
+import { codeLenses, resolveLens } from '../../../server/src/language/code-lens.ts'
+import { type HintData, inlayHints, resolveHint } from '../../../server/src/language/inlay-hints.ts'
 import { foldingRanges } from '../../../server/src/language/folding.ts'
 import { documentLinks } from '../../../server/src/language/links.ts'
 import { definition, highlights, references } from '../../../server/src/language/references.ts'
@@ -16,6 +18,7 @@ import { snapshotOf } from '../checks/harness.ts'
 import { DEMO_FILES } from './marks.ts'
 
 const RUNS = Number(process.env.FUZZ_RUNS ?? 150)
+const HINTS = { pathLengths: true, zoneNumbers: true, meshCounts: true, volume: true }
 const FORMATTING = { tabSize: 2, columns: true, enDash: true }
 const KNOWN = new Set(['path-misses', 'point-rounded'])
 
@@ -34,6 +37,18 @@ function askOfText(snapshot: Snapshot): void {
     }
   for (const { range } of documentLinks(snapshot, 'file:///rules', KNOWN)) holds(snapshot, range)
   for (const { range } of symbols(snapshot)) holds(snapshot, range)
+  const whole = { start: snapshot.positionOf(0), end: snapshot.positionOf(snapshot.text.length) }
+  for (const hint of inlayHints(snapshot, 'file:///x', whole, HINTS)) {
+    expect(String(hint.label).length).toBeLessThanOrEqual(24)
+    const { tooltip } = resolveHint(snapshot, hint, hint.data as HintData, HINTS)
+    expect(tooltip).not.toMatch(/NaN|undefined|Infinity|\[object/)
+  }
+  for (const lens of codeLenses(snapshot, 'file:///x', true)) {
+    holds(snapshot, lens.range)
+    const { command } = lens.command ? lens : resolveLens(snapshot, lens, lens.data, true)
+    expect(command!.title).not.toMatch(/NaN|undefined|Infinity|\[object/)
+    expect(command!.title).not.toBe('')
+  }
   for (const { range } of formatting(snapshot, FORMATTING)) holds(snapshot, range)
   const data = semanticTokens(snapshot)
   for (let i = 0; i < data.length; i += 5) {
