@@ -2,6 +2,7 @@ import {
   commands,
   type DocumentSelector,
   type ExtensionContext,
+  l10n,
   languages,
   type LogOutputChannel,
   Range,
@@ -78,7 +79,7 @@ async function insertRecommendedPath(
   }
   const edits = await server.request<TextEdit[] | null>(RECOMMENDED_PATH, params)
   if (!edits) {
-    window.setStatusBarMessage('Braggline: the label book has no path for this lattice', WORD_MS)
+    window.setStatusBarMessage(l10n.t('Braggline: the label book has no path for this lattice'), WORD_MS)
     return
   }
   if (document.version !== params.version) return

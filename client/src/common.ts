@@ -14,6 +14,7 @@ import { registerPaste } from './paste.ts'
 import { registerReport } from './report.ts'
 import { type CreateClient, Server } from './server.ts'
 import { StatusItem } from './status.ts'
+import { registerWalkthrough } from './walkthrough.ts'
 import { registerWorkspaceCheck } from './workspace-check.ts'
 import { registerZoneView } from './zone-view.ts'
 
@@ -45,6 +46,7 @@ export function activate(context: ExtensionContext, createClient: CreateClient):
   registerCommands(context, { server, log, selector: SELECTOR })
   registerPaste(context, { server, log, selector: SELECTOR })
   registerReport(context, { server, log, selector: SELECTOR })
+  registerWalkthrough(context, { server })
   registerWorkspaceCheck(context, { server, log })
   registerZoneView(context, { server, log, selector: SELECTOR })
   return {

@@ -48,7 +48,7 @@ export function registerPaste(context: ExtensionContext, { server, log, selector
       const result = await server.request<PastedLatticeResult | null>(PASTED_LATTICE, params)
       if (!result?.choices.length) {
         window.setStatusBarMessage(
-          l10n.t('Braggline: {0}', result?.reason ?? l10n.t('The clipboard holds no lattice.')),
+          `Braggline: ${result?.reason ?? l10n.t('The clipboard holds no lattice.')}`,
           WORD_MS,
         )
         return

@@ -5,6 +5,7 @@ import {
   type DocumentSelector,
   EventEmitter,
   type ExtensionContext,
+  l10n,
   languages,
   type LogOutputChannel,
   type Tab,
@@ -26,6 +27,8 @@ import {
 import type { Server } from './server.ts'
 
 const SCHEME = 'braggline-report'
+/** How the name of every report ends: it is what its tab shows. */
+export const REPORT_NAME = ' report.md'
 /** Typing is left to come to rest before a report is made anew, in ms. */
 const REST_MS = 300
 /** How long a word stays in the status bar, in ms. */
@@ -119,8 +122,8 @@ class Reports {
     const { uri } = document
     const folder = uri.scheme === 'untitled' ? workspace.workspaceFolders?.[0]?.uri : Uri.joinPath(uri, '..')
     const target = await window.showSaveDialog({
-      title: 'Save Lattice Report',
-      filters: { 'HTML page': ['html'], Markdown: ['md'] },
+      title: l10n.t('Save Lattice Report'),
+      filters: { [l10n.t('HTML page')]: ['html'], [l10n.t('Markdown')]: ['md'] },
       defaultUri: folder && Uri.joinPath(folder, `${stem(uri)}-report.html`),
     })
     if (target) await this.saveTo(document, target)
@@ -134,13 +137,13 @@ class Reports {
     const params: ReportParams = { ...about, format }
     const result = await this.tools.server.request<ReportResult | null>(REPORT, params)
     if (result) await workspace.fs.writeFile(target, new TextEncoder().encode(result.text))
-    else window.setStatusBarMessage('Braggline: there is no report of this file', WORD_MS)
+    else window.setStatusBarMessage(l10n.t('Braggline: there is no report of this file'), WORD_MS)
   }
 
   #add(source: Uri): Report {
     const uri = Uri.from({
       scheme: SCHEME,
-      path: `/${stem(source)} report.md`,
+      path: `/${stem(source)}${REPORT_NAME}`,
       query: source.toString(),
     })
     const report: Report = { uri, source, text: '', stale: true, wasShown: false }
@@ -207,7 +210,7 @@ class Reports {
     const result = await this.tools.server.request<ReportResult | null>(REPORT, params)
     if (!result || result.version < version) return undefined
     report.stale = result.pending
-    return result.text || 'This file holds no crystal yet.\n'
+    return result.text.trim() ? result.text : `${l10n.t('This file holds no crystal yet.')}\n`
   }
 }
 

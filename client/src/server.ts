@@ -3,6 +3,7 @@ import {
   type Diagnostic,
   type DocumentSelector,
   EventEmitter,
+  l10n,
   type LogOutputChannel,
   Uri,
   workspace,
@@ -94,7 +95,7 @@ export class Server {
   async #running(): Promise<BaseLanguageClient> {
     this.start()
     const client = await this.#client
-    if (!client) throw new Error('The Braggline server is not running; its log says why.')
+    if (!client) throw new Error(l10n.t('The Braggline server is not running; its log says why.'))
     return client
   }
 
@@ -192,7 +193,10 @@ function errorHandler(log: LogOutputChannel): ErrorHandler {
       return {
         action: CloseAction.DoNotRestart,
         handled: true,
-        message: `The server ended ${recent} times within three minutes and is left alone until it is restarted by command.`,
+        message: l10n.t(
+          'The server ended {0} times within three minutes and is left alone until it is restarted by command.',
+          recent,
+        ),
       }
     },
   }

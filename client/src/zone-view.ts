@@ -4,6 +4,7 @@ import {
   type Disposable,
   type DocumentSelector,
   type ExtensionContext,
+  l10n,
   languages,
   type LogOutputChannel,
   Range,
@@ -102,7 +103,7 @@ const OPTIONS = (extensionUri: Uri) => ({
 })
 
 const nameOf = (uri: Uri): string => uri.path.split('/').at(-1) ?? ''
-const titleOf = (uri: Uri): string => `Zone: ${nameOf(uri).replace(/\.lattice\.ya?ml$/, '')}`
+const titleOf = (uri: Uri): string => l10n.t('Zone: {0}', nameOf(uri).replace(/\.lattice\.ya?ml$/, ''))
 
 class ZoneView {
   readonly #subscriptions: Disposable[] = []
@@ -340,7 +341,7 @@ class ZoneView {
     const result = await this.tools.server.request<AppendResult | null>(APPEND_TO_PATH, params)
     if (!result) {
       window.setStatusBarMessage(
-        'Braggline: the path of this file cannot be written to from the zone view',
+        l10n.t('Braggline: the path of this file cannot be written to from the zone view'),
         WORD_MS,
       )
       return
@@ -366,8 +367,11 @@ async function saveFigure(text: TextDocument, { what, view, document, server }: 
   const params: FigureParams = { uri: text.uri.toString(), version: text.version, document, kind: what, view }
   const result = await server.request<FigureResult | null>(FIGURE, params)
   if (!result?.svg) {
-    const missing = what === 'bands' ? 'has no path to draw bands along' : 'cannot be drawn'
-    window.setStatusBarMessage(`Braggline: ${nameOf(text.uri)} ${missing}`, WORD_MS)
+    const missing =
+      what === 'bands'
+        ? l10n.t('Braggline: {0} has no path to draw bands along', nameOf(text.uri))
+        : l10n.t('Braggline: {0} cannot be drawn', nameOf(text.uri))
+    window.setStatusBarMessage(missing, WORD_MS)
     return
   }
   await saveFile(text.uri, { kind: what, extension: 'svg', content: new TextEncoder().encode(result.svg) })
@@ -380,8 +384,8 @@ async function saveFile(
   const folder = uri.scheme === 'untitled' ? workspace.workspaceFolders?.[0]?.uri : Uri.joinPath(uri, '..')
   const name = `${nameOf(uri).replace(/\.lattice\.ya?ml$/, '')}-${kind}.${extension}`
   const target = await window.showSaveDialog({
-    title: kind === 'zone' ? 'Save Zone Figure' : 'Save Band Figure',
-    filters: extension === 'svg' ? { 'SVG figure': ['svg'] } : { 'PNG picture': ['png'] },
+    title: kind === 'zone' ? l10n.t('Save Zone Figure') : l10n.t('Save Band Figure'),
+    filters: extension === 'svg' ? { [l10n.t('SVG figure')]: ['svg'] } : { [l10n.t('PNG picture')]: ['png'] },
     defaultUri: folder && Uri.joinPath(folder, name),
   })
   if (target) await workspace.fs.writeFile(target, content)

@@ -11,9 +11,13 @@ interface Setting {
   enumDescriptions?: string[]
   properties?: Record<string, { enum: string[] }>
 }
-const { contributes, activationEvents } = JSON.parse(
-  readFileSync(new URL('../../package.json', import.meta.url), 'utf8'),
-) as {
+const read = (name: string) => readFileSync(new URL(`../../${name}`, import.meta.url), 'utf8')
+const words = JSON.parse(read('package.nls.json')) as Record<string, string>
+/** With its texts in English in their places. */
+const { contributes, activationEvents } = JSON.parse(read('package.json'), (_, value: unknown) => {
+  const key = typeof value === 'string' ? /^%(.+)%$/.exec(value)?.[1] : undefined
+  return key === undefined ? value : words[key]
+}) as {
   activationEvents: string[]
   contributes: {
     commands: { command: string; category?: string; title: string }[]

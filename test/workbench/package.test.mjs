@@ -15,7 +15,7 @@ describe('the package', () => {
 
   it('holds nothing but what is needed at run time', () => {
     const expected =
-      /^(package\.json|LICENSE\.txt|readme\.md|changelog\.md|\.vsixmanifest|(dist|docs\/rules|media|syntaxes)\/.*)$/i
+      /^(package(\.nls(\.[a-z-]+)?)?\.json|LICENSE\.txt|readme\.md|changelog\.md|\.vsixmanifest|(dist|docs\/rules|l10n|media|syntaxes)\/.*)$/i
     assert.deepStrictEqual(
       files.filter(file => !expected.test(file) || /node_modules|\.ts$|\.map$/.test(file)),
       [],
@@ -30,6 +30,9 @@ describe('the package', () => {
       icon,
       ...contributes.languages.flatMap(({ configuration, icon }) => [configuration, icon.light, icon.dark]),
       ...contributes.grammars.map(({ path }) => path),
+      ...contributes.walkthroughs.flatMap(({ steps }) => steps.map(({ media }) => media.svg)),
+      'package.nls.json',
+      'l10n/bundle.l10n.json',
     ]
     assert.deepStrictEqual(
       named.filter(file => !existsSync(join(installed, file))),
