@@ -75,11 +75,20 @@ const scene = sceneOf(
 /** Drawn as large as its letters ask for, and shown at a part of that. */
 const figure = (x, y, size, scale = 1) => {
   const drawn = zoneFigure(scene, { size, colours: { background: 'none', ink: INK, path: PATH, face: INK } })
-  return `<g transform="translate(${x} ${y}) scale(${scale})">\n${drawn.replace(/<(title|desc)>.*?<\/\1>\n/gs, '')}</g>`
+  const body = drawn.replace(/<\/?svg\b[^>]*>\n|<(title|desc)>.*?<\/\1>\n|<rect [^>]*\/>\n/gs, '')
+  return `<g transform="translate(${x} ${y}) scale(${scale})" font-family="Georgia, 'Times New Roman', serif" font-size="15">\n${body}</g>`
 }
 
-const svg = body =>
-  `<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 ${WIDTH} ${HEIGHT}" width="${WIDTH}" height="${HEIGHT}">\n${body.join('\n')}\n</svg>\n`
+const texts = JSON.parse(readFileSync(join(root, 'package.nls.json'), 'utf8'))
+/** What the walkthrough says of the picture, for those who do not see it. */
+const titleOf = name => {
+  const [{ steps }] = JSON.parse(readFileSync(join(root, 'package.json'), 'utf8')).contributes.walkthroughs
+  const { media } = steps.find(({ media }) => media.svg.endsWith(`/${name}.svg`))
+  return texts[media.altText.replaceAll('%', '')]
+}
+
+const svg = (name, body) =>
+  `<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 ${WIDTH} ${HEIGHT}" width="${WIDTH}" height="${HEIGHT}">\n<title>${escaped(titleOf(name))}</title>\n${body.join('\n')}\n</svg>\n`
 
 const TOP = 52
 const at = lines.findIndex(line => line.includes('Ww'))
@@ -154,7 +163,7 @@ const pictures = {
 const folder = join(root, 'media', 'walkthrough')
 mkdirSync(folder, { recursive: true })
 for (const [name, body] of Object.entries(pictures)) {
-  const text = svg(body)
+  const text = svg(name, body)
   const path = join(folder, `${name}.svg`)
   writeFileSync(path, text)
   console.log(`${path}: ${readFileSync(path).length} bytes`)
