@@ -1,6 +1,6 @@
 import { fixedDimensions, K_TOLERANCE, littleCoGroup, star } from '../../crystal/kspace.ts'
 import { integerDeterminant, supercellFraction } from '../../crystal/supercell.ts'
-import { type Mat3, subtract, type Vec3 } from '../../crystal/vector.ts'
+import { type Mat3, norm, subtract, type Vec3 } from '../../crystal/vector.ts'
 import { replaceVector } from '../../format/edits.ts'
 import type { SupercellBlock } from '../../format/model.ts'
 import type { Crystal, PlacedPoint } from '../../meaning/crystal.ts'
@@ -47,7 +47,7 @@ export const supercellMissesPoint: Check<Facts> = {
   },
 }
 
-/** The symmetry points of the path, each star once: where lines leave the zone, such as K and U of cF, nothing folds exactly. */
+/** The symmetry points of the path but Γ, each star once: where lines leave the zone, such as K and U of cF, nothing folds exactly. */
 function symmetryPointsOf(crystal: Crystal): PlacedPoint[] {
   const group = latticeGroup(crystal)
   const { kGroup, dimension } = crystal
@@ -56,7 +56,7 @@ function symmetryPointsOf(crystal: Crystal): PlacedPoint[] {
   const found: PlacedPoint[] = []
   for (const label of new Set(walkedPath(crystal).flatMap(({ labels }) => labels))) {
     const point = crystal.pointOf(label)
-    if (!point || isInDoubt(diagnosis, label)) continue
+    if (!point || norm(point.cartesian) === 0 || isInDoubt(diagnosis, label)) continue
     if (fixedDimensions(littleCoGroup(point.fraction, group), dimension) > 0) continue
     const isKnown = found.some(other =>
       star(other.fraction, kGroup).some(k => isWhole(subtract(k, point.fraction))),
