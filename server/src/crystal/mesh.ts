@@ -61,51 +61,77 @@ export interface MeshOrbits {
 export const LARGEST_LISTING = 2 ** 26
 
 /**
- * Irreducible points of the mesh with the number of points that each stands for.
+ * Irreducible points of the mesh with the number of points that each stands for. One byte for each point of the mesh, and
+ * no object for any: 200 × 200 × 200 points take the space of 8 million bytes and of the irreducible ones.
  * @param group rotations on columns of k-fractions, closed as a group, −1 among them where time reversal holds.
  * @returns undefined where the mesh has more than `LARGEST_LISTING` points.
  */
 export function meshOrbits(mesh: Mesh, group: readonly Mat3[]): MeshOrbits | undefined {
   const total = meshPoints(mesh)
   if (total > LARGEST_LISTING) return undefined
-  const [, q, r] = mesh.divisions
+  const [p, q, r] = mesh.divisions
   const maps = gridMaps(mesh, group).map(map => tables(map, mesh.divisions))
+  const orbits = countOrbits(mesh, group)!
   const seen = new Uint8Array(total)
-  const points: number[] = []
-  const sizes: number[] = []
-  for (let index = 0; index < total; index++) {
-    if (seen[index]) continue
-    const z = index % r
-    const y = ((index - z) / r) % q
-    const x = (index - z - y * r) / (q * r)
-    let size = 0
-    for (const image of maps) {
-      const at = image(x, y, z)
-      if (!seen[at]) {
-        seen[at] = 1
-        size++
+  const points = new Uint32Array(3 * orbits)
+  const sizes = new Uint32Array(orbits)
+  let orbit = 0
+  let index = 0
+  for (let x = 0; x < p; x++)
+    for (let y = 0; y < q; y++)
+      for (let z = 0; z < r; z++, index++) {
+        if (seen[index]) continue
+        let size = 0
+        for (let m = 0; m < maps.length; m++) {
+          const at = imageOf(maps[m], x, y, z, p, q, r)
+          if (seen[at]) continue
+          seen[at] = 1
+          size++
+        }
+        points[3 * orbit] = x
+        points[3 * orbit + 1] = y
+        points[3 * orbit + 2] = z
+        sizes[orbit++] = size
       }
-    }
-    points.push(x, y, z)
-    sizes.push(size)
-  }
-  return { points: Uint32Array.from(points), sizes: Uint32Array.from(sizes) }
+  return { points, sizes }
 }
 
-/** The index of a grid point's image, by tables of the nine products modulo the divisions. */
-function tables({ linear, offset }: GridMap, divisions: Vec3): (x: number, y: number, z: number) => number {
-  const column = (i: number, j: number): Int32Array =>
-    Int32Array.from({ length: divisions[j] }, (_, n) =>
-      modulo(linear[i][j] * n + (j === 2 ? offset[i] : 0), divisions[i]),
-    )
-  const [xx, xy, xz, yx, yy, yz, zx, zy, zz] = [0, 1, 2].flatMap(i => [0, 1, 2].map(j => column(i, j)))
-  const [p, q, r] = divisions
-  return (x, y, z) => {
-    const i = (xx[x] + xy[y] + xz[z]) % p
-    const j = (yx[x] + yy[y] + yz[z]) % q
-    const k = (zx[x] + zy[y] + zz[z]) % r
-    return (i * q + j) * r + k
-  }
+/**
+ * What n₁, n₂ and n₃ each add to the three components of the image, modulo the divisions: the three values for n₁ = 0 stand
+ * first, then those for 1, and so on; then the same for n₂ and n₃, with the offset.
+ */
+function tables({ linear, offset }: GridMap, divisions: Vec3): Int32Array {
+  const table: number[] = []
+  for (let j = 0; j < 3; j++)
+    for (let n = 0; n < divisions[j]; n++)
+      for (let i = 0; i < 3; i++)
+        table.push(modulo(linear[i][j] * n + (j === 2 ? offset[i] : 0), divisions[i]))
+  return Int32Array.from(table)
+}
+
+/** The index of a grid point's image. Each sum is under three times the divisions: taking them off twice is cheaper than %. */
+function imageOf(
+  table: Int32Array,
+  x: number,
+  y: number,
+  z: number,
+  p: number,
+  q: number,
+  r: number,
+): number {
+  const a = 3 * x
+  const b = 3 * (p + y)
+  const c = 3 * (p + q + z)
+  let i = table[a] + table[b] + table[c]
+  let j = table[a + 1] + table[b + 1] + table[c + 1]
+  let k = table[a + 2] + table[b + 2] + table[c + 2]
+  if (i >= p) i -= p
+  if (i >= p) i -= p
+  if (j >= q) j -= q
+  if (j >= q) j -= q
+  if (k >= r) k -= r
+  if (k >= r) k -= r
+  return (i * q + j) * r + k
 }
 
 const modulo = (x: number, n: number): number => ((x % n) + n) % n
