@@ -260,3 +260,20 @@ export interface PastedLatticeResult {
   readonly reason?: string
 }
 export const PASTED_LATTICE = 'braggline/pastedLattice'
+
+/** A file to begin with, in the snippet syntax of the LSP. */
+export interface SkeletonOffer {
+  /** `tI`, `hR-alpha`, `vectors`: what the command for a new file may be given. */
+  readonly id: string
+  readonly name: string
+  /** Crystal system. */
+  readonly system: string
+  /** Parameters that it asks for. */
+  readonly asks: string
+  readonly group: string
+  readonly text: string
+}
+export interface SkeletonsResult {
+  readonly skeletons: readonly SkeletonOffer[]
+}
+export const SKELETON_LIST = 'braggline/skeletons'

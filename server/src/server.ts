@@ -18,11 +18,9 @@ import { DEFAULT_SETTINGS, type Settings, Snapshot } from './analysis.ts'
 import type { Severities } from './checks/run.ts'
 import type { Severity } from './format/model.ts'
 import type { Columns } from './format/text.ts'
-import { completion } from './language/completion.ts'
 import { diagnostics } from './language/diagnostics.ts'
 import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
-import { hover } from './language/hover.ts'
 import { pastedLattice } from './language/pasted-lattice.ts'
 import { reportAnswer } from './language/report.ts'
 import { recommendedPathEdit } from './language/recommended-path.ts'
@@ -64,6 +62,7 @@ import {
 } from './protocol.ts'
 import { EDITING, refreshShown, serveEditing } from './server-editing.ts'
 import { NAVIGATION, serveNavigation } from './server-navigation.ts'
+import { serveWriting, WRITING } from './server-writing.ts'
 import { type StartWorker, WorkerSymmetry } from './symmetry-service.ts'
 
 export interface ServerOptions {
@@ -90,7 +89,6 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   let asksConfiguration = false
   let rulePages = options.rulePages
   let announces = false
-  let snippets = false
   let commands = false
   let columns: Columns = 'utf-16'
   let client: ClientCapabilities = {}
@@ -203,7 +201,6 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     if (typeof pages === 'string') rulePages = pages
     announces = initializationOptions?.status === true
     commands = initializationOptions?.commands === true
-    snippets = capabilities.textDocument?.completion?.completionItem?.snippetSupport === true
     columns = columnsFor(capabilities.general?.positionEncodings)
     return {
       serverInfo: { name: 'Braggline', version: options.version },
@@ -215,12 +212,11 @@ export function startServer(connection: Connection, options: ServerOptions): voi
           change: columns === 'utf-16' ? TextDocumentSyncKind.Incremental : TextDocumentSyncKind.Full,
           save: true,
         },
-        hoverProvider: true,
-        completionProvider: { triggerCharacters: [' ', '–', '-', '→', '|', ':'] },
         documentSymbolProvider: { label: 'Braggline' },
         codeActionProvider: { codeActionKinds: [CodeActionKind.QuickFix, FIX_ALL] },
         ...NAVIGATION,
         ...EDITING,
+        ...WRITING,
         ...(pulls
           ? { diagnosticProvider: { interFileDependencies: false, workspaceDiagnostics: false } }
           : {}),
@@ -262,10 +258,6 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   })
 
   // The features of the protocol.
-  connection.onHover(about('hover', null, (snapshot, { position }) => hover(snapshot, position)))
-  connection.onCompletion(
-    about('completion', [], (snapshot, { position }) => completion(snapshot, position, snippets)),
-  )
   connection.onDocumentSymbol(about('symbols', [], snapshot => symbols(snapshot)))
   connection.onCodeAction(
     about('fixes', [], (snapshot, { textDocument: { uri }, range, context }) =>
@@ -279,6 +271,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     ),
   )
 
+  serveWriting({ connection, about, capabilities: () => client, hasCommands: () => commands })
   serveNavigation({
     connection,
     about,

@@ -22,7 +22,7 @@ import {
 import { rangeOf } from './diagnostics.ts'
 import { locate, type Place } from './locate.ts'
 
-export function hover(snapshot: Snapshot, position: Position): Hover | null {
+export function hover(snapshot: Snapshot, position: Position, _options = { links: false }): Hover | null {
   const offset = snapshot.offsetOf(position)
   const analysis = snapshot.documentAt(offset)
   const place = analysis && locate(analysis.document, offset)
