@@ -1,5 +1,5 @@
 /** The one pipeline: text → decoded documents → crystals → findings. Each stage is computed once, on demand. */
-import type { Reported } from './checks/check.ts'
+import type { Check, Reported } from './checks/check.ts'
 import { CHECKS } from './checks/index.ts'
 import { runChecks, type Severities, withoutAllowed } from './checks/run.ts'
 import { decode } from './format/decode.ts'
@@ -9,6 +9,9 @@ import { type Columns, columnsBetween, offsetAfter } from './format/text.ts'
 import { Crystal } from './meaning/crystal.ts'
 import { lazy } from './meaning/lazy.ts'
 import type { Workshop } from './meaning/workshop.ts'
+
+/** What each rule says of itself, for those who explain them. */
+export const RULES: readonly Pick<Check, 'id' | 'severity' | 'summary' | 'why'>[] = CHECKS
 
 export interface Settings {
   /** Severities that the workspace or the caller asks for. */

@@ -1,9 +1,9 @@
 /** Words about what the trade knows by name, in Markdown: hovers and the long text of completion say the same. */
+import { RULES } from '../analysis.ts'
 import { BRAVAIS, type BravaisType, CENTRING_TABLES } from '../crystal/bravais.ts'
 import { elementOf } from '../crystal/elements.ts'
 import { namedSpaceGroup } from '../crystal/space-group.ts'
 import { IN_ANGSTROM, SYMBOL, UNITS } from '../crystal/units.ts'
-import { CHECKS } from '../checks/index.ts'
 import { findKey } from '../format/keys.ts'
 import { plain } from '../meaning/wording.ts'
 
@@ -48,7 +48,7 @@ export function aboutBravais(type: BravaisType): string {
 }
 
 export function aboutRule(id: string): string | undefined {
-  const rule = CHECKS.find(check => check.id === id)
+  const rule = RULES.find(check => check.id === id)
   return rule && `**${id}** · ${rule.severity}\n\n${rule.summary}\n\n${rule.why}`
 }
 

@@ -1,10 +1,10 @@
 /** Rules and their severities, under `checks` and in `# braggline: allow …`. */
 import { type CompletionItem, CompletionItemKind } from 'vscode-languageserver-types'
-import { CHECKS } from '../../checks/index.ts'
+import { RULES } from '../../analysis.ts'
 import { type Asked, both, items, type Offer } from './item.ts'
 
 export function ruleOffers({ place }: Asked): Offer[] {
-  return CHECKS.filter(({ id }) => !place.present.has(id)).map(({ id, summary, severity }) => ({
+  return RULES.filter(({ id }) => !place.present.has(id)).map(({ id, summary, severity }) => ({
     label: id,
     kind: CompletionItemKind.EnumMember,
     detail: `${severity}: ${summary}`,
