@@ -48,16 +48,22 @@ export class Client {
 
   static async start(
     capabilities: ClientCapabilities,
-    { uri = 'file:///crystal.lattice.yaml', checks = {} as Record<string, string> } = {},
+    {
+      uri = 'file:///crystal.lattice.yaml',
+      checks = {} as Record<string, string>,
+      server: script = CLI,
+      args = ['serve', '--stdio'],
+      configuration = (_section: string | undefined): unknown => ({ checks }),
+    } = {},
   ): Promise<Client & { initialized: InitializeResult }> {
-    const server = spawn(process.execPath, [CLI, 'serve', '--stdio'], { stdio: ['pipe', 'pipe', 'inherit'] })
+    const server = spawn(process.execPath, [script, ...args], { stdio: ['pipe', 'pipe', 'inherit'] })
     const connection = createProtocolConnection(
       new StreamMessageReader(server.stdout!),
       new StreamMessageWriter(server.stdin!),
     )
     const client = new Client(server, connection, uri)
-    connection.onRequest('workspace/configuration', ({ items }: { items: unknown[] }) =>
-      items.map(() => ({ checks })),
+    connection.onRequest('workspace/configuration', ({ items }: { items: { section?: string }[] }) =>
+      items.map(({ section }) => configuration(section)),
     )
     connection.onRequest('client/registerCapability', () => null)
     connection.onRequest('workspace/diagnostic/refresh', () => null)
@@ -101,11 +107,13 @@ export class Client {
     return (await this.request<{ items: Diagnostic[] }>('textDocument/diagnostic')).items
   }
 
-  /** The push for this version of the text. */
+  /** The push for this version of the text; of servers that do not say the version any that has not been taken. */
   pushFor(version: number, uri = this.uri): Promise<Diagnostic[]> {
     return new Promise(resolve => {
       const look = () => {
-        const found = this.pushed.findLast(params => params.uri === uri && params.version === version)
+        const found = this.pushed.findLast(
+          params => params.uri === uri && (params.version ?? version) === version,
+        )
         if (!found) return
         this.#listeners.delete(look)
         resolve(found.diagnostics)
