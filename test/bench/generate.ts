@@ -16,11 +16,12 @@ export function generatedFile(lines: number): string {
   const atoms = lines - tail.length - 9
   const cells = Math.ceil(Math.cbrt(atoms + 1))
   const side = 3 * cells
+  const sides = [side, side, 3 * Math.ceil(atoms / cells ** 2)]
   const head = ['title: generated', 'unit: angstrom', 'labels: none', 'lattice:', '  vectors:']
-  const rows = [0, 1, 2].map(i => `    - [${[0, 1, 2].map(j => (i === j ? side : 0)).join(', ')}]`)
+  const rows = [0, 1, 2].map(i => `    - [${[0, 1, 2].map(j => (i === j ? sides[i] : 0)).join(', ')}]`)
   const list = Array.from({ length: atoms }, (_, i) => {
     const grid = [i % cells, Math.floor(i / cells) % cells, Math.floor(i / cells / cells)]
-    return `  - Si: [${grid.map(g => ((g + 0.3 + 0.1 * random()) / cells).toFixed(6)).join(', ')}]`
+    return `  - Si: [${grid.map((g, i) => ((g + 0.3 + 0.1 * random()) / (sides[i] / 3)).toFixed(6)).join(', ')}]`
   })
   return `${[...head, ...rows, 'atoms:', ...list, ...tail].join('\n')}\n`
 }

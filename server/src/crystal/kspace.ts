@@ -9,23 +9,18 @@
  */
 import type { Dimension } from './reduction.ts'
 import {
-  add,
   apply,
-  combine,
-  cross,
-  dot,
   IDENTITY,
   inverse,
   type Mat3,
   mapMatrix,
-  norm,
   scale,
   subtract,
   tidy,
   transpose,
   type Vec3,
 } from './vector.ts'
-import { fold, leavesZone, type Zone } from './zone.ts'
+import { fold, type Zone } from './zone.ts'
 
 /**
  * Two k-points are one when no component differs by more than this, in parts of the reciprocal vectors. A simple
@@ -225,102 +220,3 @@ function indexOf(twelfths: Vec3, dimension: Dimension): number {
 }
 
 const modulo = (x: number, n: number): number => ((x % n) + n) % n
-
-export interface SymmetryLine {
-  /** Symmetry points at its ends; none lies between. `from` is in the first zone, `to` may lie beyond. */
-  readonly from: Vec3
-  readonly to: Vec3
-  /** Order of the group that leaves each of its points alone up to a reciprocal vector. */
-  readonly order: number
-  /** Where it leaves the first zone before its end: the part of its length, and the k-point. */
-  readonly leaves?: { readonly at: number; readonly fraction: Vec3 }
-}
-
-/**
- * Every inequivalent symmetry line of a lattice, from one symmetry point to the next along it, those from Γ first. No
- * line of any of the lattice types is without symmetry points, so they are found from these.
- * @param holohedry the k-group of the lattice alone.
- */
-export function symmetryLines(holohedry: readonly Mat3[], zone: Zone): SymmetryLine[] {
-  const { dimension } = zone
-  const lines: SymmetryLine[] = []
-  const known = new Set<string>()
-  for (const { twelfths } of pointsInTwelfths(holohedry, dimension)) {
-    const little = littleCoGroup(scale(twelfths, 1 / TWELFTHS), holohedry)
-    for (const direction of fixedDirections(little, dimension)) {
-      const along = scale(direction, stepsToNextPoint(twelfths, direction, holohedry, dimension))
-      const name = nameOfLine(twelfths, along, holohedry, dimension)
-      if (known.has(name)) continue
-      known.add(name)
-      const { fraction: from, shift } = fold(zone, scale(twelfths, 1 / TWELFTHS))
-      const to = subtract(scale(add(twelfths, along), 1 / TWELFTHS), shift)
-      const order = little.filter(R => isZero(subtract(apply(R, direction), direction), 0)).length
-      lines.push({ from, to, order, leaves: leavesAt(zone, from, to) })
-    }
-  }
-  return lines
-}
-
-/** The directions, as shortest whole vectors of either sign, that some subgroup leaves as the only ones. */
-function fixedDirections(group: readonly Mat3[], dimension: Dimension): Vec3[] {
-  const normals: Vec3[] = IDENTITY.slice(dimension)
-  const directions = new Map<string, Vec3>()
-  const keep = (v: Vec3) => {
-    if (norm(v) === 0 || v.slice(dimension).some(x => x !== 0)) return
-    const direction = lowestTerms(v)
-    directions.set(String(direction), direction)
-    directions.set(String(tidy(scale(direction, -1))), tidy(scale(direction, -1)))
-  }
-  for (const R of group) {
-    // Fixed vectors are at right angles to every row of R − 1: one row up to multiples leaves a plane, two a line.
-    const rows = R.map((row, i) => subtract(row, IDENTITY[i])).filter(row => norm(row) > 0)
-    if (rows.length === 0) continue
-    const line = pairs(rows)
-      .map(([u, v]) => cross(u, v))
-      .find(v => norm(v) > 0)
-    if (!line) normals.push(rows[0])
-    else if (rows.every(row => dot(row, line) === 0)) keep(line)
-  }
-  for (const [u, v] of pairs(normals)) keep(cross(u, v))
-  return [...directions.values()]
-}
-
-const pairs = <T>(list: readonly T[]): (readonly [T, T])[] =>
-  list.flatMap((u, i) => list.slice(0, i).map(v => [v, u] as const))
-
-/** Without a common factor. */
-function lowestTerms(v: Vec3): Vec3 {
-  const common = Math.abs(v.reduce(gcd))
-  return tidy([v[0] / common, v[1] / common, v[2] / common])
-}
-
-const gcd = (p: number, q: number): number => (q === 0 ? p : gcd(q, p % q))
-
-/** How many twelfths of a direction lead from one symmetry point to the next: at most six, since −1 is a symmetry. */
-function stepsToNextPoint(
-  twelfths: Vec3,
-  direction: Vec3,
-  holohedry: readonly Mat3[],
-  dimension: Dimension,
-): number {
-  for (let steps = 1; steps < TWELFTHS; steps++) {
-    const k = scale(add(twelfths, scale(direction, steps)), 1 / TWELFTHS)
-    if (freedom(k, holohedry, dimension) === 0) return steps
-  }
-  return TWELFTHS
-}
-
-/** One text for a line and all that the rotations and a change of its ends make of it. */
-function nameOfLine(from: Vec3, along: Vec3, holohedry: readonly Mat3[], dimension: Dimension): string {
-  const names = holohedry.flatMap(R => {
-    const [start, step] = [apply(R, from), apply(R, along)]
-    const back = tidy(scale(step, -1))
-    return [`${indexOf(start, dimension)}:${step}`, `${indexOf(add(start, step), dimension)}:${back}`]
-  })
-  return names.sort()[0]
-}
-
-function leavesAt(zone: Zone, from: Vec3, to: Vec3): SymmetryLine['leaves'] {
-  const exit = leavesZone(zone, combine(from, zone.reciprocal), combine(to, zone.reciprocal))
-  return exit && { at: exit.at, fraction: add(from, scale(subtract(to, from), exit.at)) }
-}

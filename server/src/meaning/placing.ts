@@ -3,6 +3,7 @@
  * k is Cartesian, in inverse units of the file's length with the 2π; fractions are those of the primitive reciprocal
  * vectors. Labels are matched by reciprocal vectors and the holohedry.
  */
+import { linesThrough } from '../books/lookup.ts'
 import type { BookMatch, BookPoint } from '../books/match.ts'
 import {
   type Ends,
@@ -28,7 +29,7 @@ import { fold, type Zone } from '../crystal/zone.ts'
 import type { NumberValue } from '../format/model.ts'
 import type { Crystal } from './crystal.ts'
 import { isRoundingOf, LARGEST_K_SHIFT } from './rounding.ts'
-import { acrossLine, isOn, lowestTerms, wholeDirection } from './whole-vectors.ts'
+import { lowestTerms } from './whole-vectors.ts'
 
 /** Every equivalent of every point of a book, modulo reciprocal vectors. Flat, because rules go through it at each edit. */
 interface Atlas {
@@ -311,7 +312,7 @@ export function lineHere(crystal: Crystal, k: Vec3, tolerance = K_TOLERANCE): Li
   const passed = bookPointsAlong(book, [subtract(fraction, direction), add(fraction, direction)])
   const before = passed.findLast(({ at }) => at < HERE)
   const after = passed.find(({ at }) => at > HERE)
-  const name = nameOfLine(book, fraction)
+  const name = nameOfLine(book, fraction, lattice.reciprocal)
   if (!before || !after) return { name }
   const size = ({ point }: Passed): number => norm(crystal.cartesianOf(point.fraction))
   const ends = [before, after].sort((p, q) => size(p) - size(q))
@@ -330,13 +331,11 @@ function fixedDirection(group: readonly Mat3[], dimension: number): Vec3 {
   return lowestTerms(column as unknown as Vec3)
 }
 
-function nameOfLine(book: BookMatch, fraction: Vec3): string | undefined {
-  return book.lines.find(({ from, to }) => {
-    const along = wholeDirection(subtract(to, from))
-    if (!along) return false
-    const across = acrossLine(along)
-    return book.holohedry.some(R => isOn(subtract(apply(R, fraction), from), across, K_TOLERANCE))
-  })?.label
+/** A line of a book ends: what lies beyond is another one, as S of the face-centred cubic lattice is beyond Σ. */
+function nameOfLine(book: BookMatch, fraction: Vec3, reciprocal: Mat3): string | undefined {
+  const tolerance = K_TOLERANCE * Math.max(...reciprocal.map(norm))
+  const lines = { ...book, path: [] }
+  return linesThrough(lines, fraction, { reciprocal, tolerance, kRotations: book.holohedry })[0]?.name
 }
 
 /** What a k-point is, in words: `X`, `on the line Γ–X, 0.85 of the way`, `in a symmetry plane`, `a general point`. */

@@ -15,7 +15,6 @@ import {
   littleCoGroup,
   segmentSymmetry,
   star,
-  symmetryLines,
   symmetryPoints,
 } from '../../../server/src/crystal/kspace.ts'
 import type { Lattice } from '../../../server/src/crystal/lattice.ts'
@@ -31,7 +30,6 @@ import {
   mapMatrix,
   multiply,
   norm,
-  scale,
   subtract,
   type Vec3,
 } from '../../../server/src/crystal/vector.ts'
@@ -179,26 +177,26 @@ const TYPES = [...BRAVAIS_TYPES_3D, ...BRAVAIS_TYPES_2D]
  * Inequivalent symmetry points and lines of each type: the points and the lines of C. J. Bradley and A. P. Cracknell
  * (1972), table 3.6, counted (from memory); aP has the eight halves and no line. Plane lattices: common practice.
  */
-const COUNTS: Partial<Record<BravaisType, readonly [points: number, lines: number]>> = {
-  cP: [4, 6],
-  cF: [4, 5],
-  cI: [4, 6],
-  tP: [6, 9],
-  tI: [5, 6],
-  oP: [8, 12],
-  oC: [6, 7],
-  oF: [5, 6],
-  oI: [6, 6],
-  hP: [6, 9],
-  hR: [4, 3],
-  mP: [8, 4],
-  mC: [6, 2],
-  aP: [8, 0],
-  tp: [3, 3],
-  op: [4, 4],
-  oc: [3, 2],
-  hp: [3, 3],
-  mp: [4, 0],
+const COUNTS: Partial<Record<BravaisType, number>> = {
+  cP: 4,
+  cF: 4,
+  cI: 4,
+  tP: 6,
+  tI: 5,
+  oP: 8,
+  oC: 6,
+  oF: 5,
+  oI: 6,
+  hP: 6,
+  hR: 4,
+  mP: 8,
+  mC: 6,
+  aP: 8,
+  tp: 3,
+  op: 4,
+  oc: 3,
+  hp: 3,
+  mp: 4,
 }
 
 describe.each(TYPES)('symmetry points and lines of %s', type => {
@@ -227,7 +225,7 @@ describe.each(TYPES)('symmetry points and lines of %s', type => {
   test('points: as many as the tables have, in the zone, none equivalent to another, none free', () => {
     for (const { group, zone } of cases) {
       const points = symmetryPoints(group, zone)
-      if (COUNTS[type]) expect(points).toHaveLength(COUNTS[type][0])
+      if (COUNTS[type]) expect(points).toHaveLength(COUNTS[type])
       expect(points[0]).toEqual({ fraction: [0, 0, 0], littleCoGroup: group.length, star: 1 })
       for (const [i, p] of points.entries()) {
         expect(placeInZone(zone, combine(p.fraction, zone.reciprocal)).place).not.toBe('outside')
@@ -251,71 +249,6 @@ describe.each(TYPES)('symmetry points and lines of %s', type => {
         expect(points.some(({ fraction }) => areEquivalent(fraction, k, group))).toBe(true)
       }
   })
-
-  test('lines: as many as the tables have, between symmetry points, none equivalent to another', () => {
-    for (const { group, zone } of cases) {
-      const lines = symmetryLines(group, zone)
-      if (COUNTS[type]) expect(lines).toHaveLength(COUNTS[type][1])
-      for (const [i, { from, to, order }] of lines.entries()) {
-        expect([freedom(from, group, dimension), freedom(to, group, dimension)]).toEqual([0, 0])
-        const { group: kept, freedom: free } = segmentSymmetry([from, to], group, dimension)
-        expect(free).toBe(1)
-        expect(kept).toHaveLength(order)
-        for (const at of [1 / 4, 1 / 3, 1 / 2, 2 / 3, 0.7]) {
-          const inside = add(from, scale(subtract(to, from), at))
-          expect(littleCoGroup(inside, group)).toHaveLength(order)
-        }
-        for (const other of lines.slice(0, i))
-          expect(areEquivalentSegments([from, to], [other.from, other.to], group)).toBeUndefined()
-      }
-    }
-  })
-
-  test('lines: every point of a fine grid that is free in one direction is on one of them', () => {
-    const { group, zone } = cases[0]
-    const lines = symmetryLines(group, zone)
-    const n = 20
-    const onLine = (k: Vec3): boolean =>
-      star(k, group).some(arm =>
-        lines.some(({ from, to }) => {
-          const along = subtract(to, from)
-          // A place of the line that is the arm up to a reciprocal vector, by trying all that the grid allows.
-          for (let t = 0; t <= 120; t++) {
-            const d = subtract(add(from, scale(along, t / 120)), arm)
-            if (d.every(x => Math.abs(x - Math.round(x)) < 1e-9)) return true
-          }
-          return false
-        }),
-      )
-    for (let i = 0; i < n ** dimension; i++) {
-      const k: Vec3 = [(i % n) / n, (Math.floor(i / n) % n) / n, Math.floor(i / n ** 2) / n]
-      if (freedom(k, group, dimension) === 1) expect(onLine(k)).toBe(true)
-    }
-  })
-
-  test('lines: where one leaves the zone, the boundary is, and beyond it the outside', () => {
-    for (const { group, zone } of cases)
-      for (const { from, to, leaves } of symmetryLines(group, zone)) {
-        const at = (t: number) =>
-          placeInZone(zone, combine(add(from, scale(subtract(to, from), t)), zone.reciprocal)).place
-        if (!leaves) {
-          for (const t of [0.2, 0.5, 0.8, 1]) expect(at(t)).not.toBe('outside')
-          continue
-        }
-        expect(placeInZone(zone, combine(leaves.fraction, zone.reciprocal)).place).toBe('boundary')
-        expect(at((1 + leaves.at) / 2)).toBe('outside')
-        if (leaves.at > 0.01) expect(at(leaves.at / 2)).not.toBe('outside')
-      }
-  })
-})
-
-test('Σ of cF leaves the zone at K, three quarters of the way to X (common practice)', () => {
-  const sigma = symmetryLines(CF.group, CF.zone).filter(({ leaves }) => leaves)
-  expect(sigma).toHaveLength(1)
-  expect(sigma[0].leaves!.at).toBeCloseTo(3 / 4, 12)
-  const K: Vec3 = [3 / 8, 3 / 8, 3 / 4]
-  expect(areEquivalent(sigma[0].leaves!.fraction, K, CF.group)).toBeDefined()
-  expect(areEquivalent(sigma[0].to, [half, 0, half], CF.group)).toBeDefined()
 })
 
 describe('equivalence', () => {
@@ -400,7 +333,7 @@ test('dimensions that a group leaves alone', () => {
   expect(fixedDimensions([IDENTITY], 1)).toBe(1)
 })
 
-test('a chain: Γ and the end of the zone, and the line between them', () => {
+test('a chain: Γ and the end of the zone', () => {
   const reciprocal: Mat3 = [
     [2, 0, 0],
     [0, 2 * Math.PI, 0],
@@ -410,7 +343,6 @@ test('a chain: Γ and the end of the zone, and the line between them', () => {
   const group = kRotations([IDENTITY], true, 1)
   expect(group).toHaveLength(2)
   expect(symmetryPoints(group, zone).map(({ fraction }) => Math.abs(fraction[0]))).toEqual([0, half])
-  expect(symmetryLines(group, zone)).toHaveLength(1)
 })
 
 test('everything is exact twelfths, in any basis', () => {
