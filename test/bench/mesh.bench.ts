@@ -22,7 +22,7 @@ const found = findSymmetry({
   species: [30, 16],
   tolerance: 1e-3,
 })
-if (!('rotations' in found)) throw new Error('no symmetry')
+if (!('rotations' in found)) throw new Error(found.failed)
 const { rotations } = found
 const group = kRotations(rotations, true, 3)
 

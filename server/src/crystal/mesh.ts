@@ -62,7 +62,7 @@ export const LARGEST_LISTING = 2 ** 26
 
 /**
  * Irreducible points of the mesh with the number of points that each stands for. One byte for each point of the mesh, and
- * no object for any: 200 × 200 × 200 points take the space of 8 million bytes and of the irreducible ones.
+ * no object for any: 200 × 200 × 200 points take 8 million bytes and the space of the irreducible ones.
  * @param group rotations on columns of k-fractions, closed as a group, −1 among them where time reversal holds.
  * @returns undefined where the mesh has more than `LARGEST_LISTING` points.
  */
@@ -70,68 +70,82 @@ export function meshOrbits(mesh: Mesh, group: readonly Mat3[]): MeshOrbits | und
   const total = meshPoints(mesh)
   if (total > LARGEST_LISTING) return undefined
   const [p, q, r] = mesh.divisions
-  const maps = gridMaps(mesh, group).map(map => tables(map, mesh.divisions))
-  const orbits = countOrbits(mesh, group)!
+  const maps = gridMaps(mesh, group)
+  const width = 3 * (p + q + r)
+  const table = tables(maps, mesh.divisions)
   const seen = new Uint8Array(total)
-  const points = new Uint32Array(3 * orbits)
-  const sizes = new Uint32Array(orbits)
-  let orbit = 0
+  let points = new Uint32Array(3 * (Math.ceil(total / maps.length) + SPARE))
+  let sizes = new Uint32Array(points.length / 3)
+  let orbits = 0
   let index = 0
   for (let x = 0; x < p; x++)
     for (let y = 0; y < q; y++)
       for (let z = 0; z < r; z++, index++) {
-        if (seen[index]) continue
+        if (seen[index] !== 0) continue
         let size = 0
-        for (let m = 0; m < maps.length; m++) {
-          const at = imageOf(maps[m], x, y, z, p, q, r)
-          if (seen[at]) continue
-          seen[at] = 1
-          size++
+        let ofX = 3 * x
+        let ofY = 3 * (p + y)
+        let ofZ = 3 * (p + q + z)
+        for (; ofX < table.length; ofX += width, ofY += width, ofZ += width) {
+          // Each sum is under three times the divisions: to take them off twice is cheaper than to divide.
+          let i = table[ofX] + table[ofY] + table[ofZ]
+          let j = table[ofX + 1] + table[ofY + 1] + table[ofZ + 1]
+          let k = table[ofX + 2] + table[ofY + 2] + table[ofZ + 2]
+          if (i >= p) i -= p
+          if (i >= p) i -= p
+          if (j >= q) j -= q
+          if (j >= q) j -= q
+          if (k >= r) k -= r
+          if (k >= r) k -= r
+          const image = (i * q + j) * r + k
+          size += 1 - seen[image]
+          seen[image] = 1
         }
-        points[3 * orbit] = x
-        points[3 * orbit + 1] = y
-        points[3 * orbit + 2] = z
-        sizes[orbit++] = size
+        if (orbits === sizes.length) {
+          points = enlarged(points)
+          sizes = enlarged(sizes)
+        }
+        points[3 * orbits] = x
+        points[3 * orbits + 1] = y
+        points[3 * orbits + 2] = z
+        sizes[orbits++] = size
       }
-  return { points, sizes }
+  return { points: points.slice(0, 3 * orbits), sizes: sizes.slice(0, orbits) }
+}
+
+/** Points on symmetry elements have smaller orbits, so there are more of them than points over rotations. */
+const SPARE = 64
+
+function enlarged(list: Uint32Array<ArrayBuffer>): Uint32Array<ArrayBuffer> {
+  const larger = new Uint32Array(2 * list.length)
+  larger.set(list)
+  return larger
 }
 
 /**
- * What n₁, n₂ and n₃ each add to the three components of the image, modulo the divisions: the three values for n₁ = 0 stand
- * first, then those for 1, and so on; then the same for n₂ and n₃, with the offset.
+ * What n₁, n₂ and n₃ each add to the three components of the image, modulo the divisions, one map after the other: the three
+ * values for n₁ = 0 stand first, then those for 1, and so on; then the same for n₂ and n₃, with the offset.
  */
-function tables({ linear, offset }: GridMap, divisions: Vec3): Int32Array {
-  const table: number[] = []
-  for (let j = 0; j < 3; j++)
-    for (let n = 0; n < divisions[j]; n++)
-      for (let i = 0; i < 3; i++)
-        table.push(modulo(linear[i][j] * n + (j === 2 ? offset[i] : 0), divisions[i]))
-  return Int32Array.from(table)
-}
-
-/** The index of a grid point's image. Each sum is under three times the divisions: taking them off twice is cheaper than %. */
-function imageOf(
-  table: Int32Array,
-  x: number,
-  y: number,
-  z: number,
-  p: number,
-  q: number,
-  r: number,
-): number {
-  const a = 3 * x
-  const b = 3 * (p + y)
-  const c = 3 * (p + q + z)
-  let i = table[a] + table[b] + table[c]
-  let j = table[a + 1] + table[b + 1] + table[c + 1]
-  let k = table[a + 2] + table[b + 2] + table[c + 2]
-  if (i >= p) i -= p
-  if (i >= p) i -= p
-  if (j >= q) j -= q
-  if (j >= q) j -= q
-  if (k >= r) k -= r
-  if (k >= r) k -= r
-  return (i * q + j) * r + k
+function tables(maps: readonly GridMap[], divisions: Vec3): Int32Array {
+  const table = new Int32Array(3 * maps.length * (divisions[0] + divisions[1] + divisions[2]))
+  let at = 0
+  for (const { linear, offset } of maps)
+    for (let j = 0; j < 3; j++) {
+      const start = at
+      for (let i = 0; i < 3; i++) {
+        const size = divisions[i]
+        const step = modulo(linear[i][j], size)
+        let value = j === 2 ? modulo(offset[i], size) : 0
+        at = start + i
+        for (let n = 0; n < divisions[j]; n++, at += 3) {
+          table[at] = value
+          value += step
+          if (value >= size) value -= size
+        }
+      }
+      at = start + 3 * divisions[j]
+    }
+  return table
 }
 
 const modulo = (x: number, n: number): number => ((x % n) + n) % n
