@@ -210,7 +210,7 @@ class Reports {
     const result = await this.tools.server.request<ReportResult | null>(REPORT, params)
     if (!result || result.version < version) return undefined
     report.stale = result.pending
-    return result.text.trim() ? result.text : `${l10n.t('This file holds no crystal yet.')}\n`
+    return result.text.trim() ? result.text : `${l10n.t('This file holds no crystal that could be read.')}\n`
   }
 }
 

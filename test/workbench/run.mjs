@@ -34,7 +34,7 @@ const SESSIONS = [
     workspace: 'desk',
     suites: ['findings', 'files', 'colours', 'commands', 'settings', 'process', 'pictures', 'zone-tab'],
   },
-  { name: 'panels', workspace: 'desk', suites: ['report', 'paste', 'workspace-check'] },
+  { name: 'panels', workspace: 'desk', suites: ['walkthrough', 'report', 'paste', 'workspace-check'] },
   // The demo folder itself: its files are what the view is for.
   { name: 'zone', workspace: '../../../demo', suites: ['zone-view'] },
   { name: 'elsewhere', workspace: 'elsewhere', suites: ['asleep'] },

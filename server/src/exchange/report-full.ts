@@ -2,12 +2,15 @@
 import type { DocumentAnalysis, Snapshot } from '../analysis.ts'
 import type { Scene } from '../protocol.ts'
 import { type FindingJson, findingsJson } from './findings-json.ts'
+import { limitsOf } from './limits.ts'
 import { type Report, reportOf } from './report.ts'
 import { sceneOf } from './scene.ts'
 
 export interface FullReport {
   readonly report: Report
   readonly findings: readonly FindingJson[]
+  /** What could not be looked at, and why. */
+  readonly limits: readonly string[]
   /** Absent where the document has no zone. */
   readonly scene?: Scene
 }
@@ -19,6 +22,7 @@ export function fullReport(file: string, snapshot: Snapshot, analysis: DocumentA
   return {
     report: reportOf(file, analysis, findings),
     findings: findingsJson({ file, snapshot, findings }),
+    limits: limitsOf(snapshot, analysis),
     scene: sceneOf(snapshot, number - 1),
   }
 }

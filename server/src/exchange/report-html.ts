@@ -26,7 +26,7 @@ ${reports.map(article).join('\n')}
 }
 
 function article(full: FullReport): string {
-  const { title, origin, sections, care } = reportInWords(full.report, full.findings)
+  const { title, origin, sections, care } = reportInWords(full.report, full.findings, full.limits)
   return `<article>
 <h1>${text(title)}</h1>
 <p class="origin">${text(origin)}</p>

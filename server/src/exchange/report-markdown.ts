@@ -11,7 +11,7 @@ import { figureCaption, reportInWords, type Section, type Table } from './report
 export function reportMarkdown(reports: readonly FullReport[]): string {
   const figures: string[] = []
   const texts = reports.map(full => {
-    const { title, origin, sections, care } = reportInWords(full.report, full.findings)
+    const { title, origin, sections, care } = reportInWords(full.report, full.findings, full.limits)
     const parts = [`# ${escaped(title)}`, start(escaped(origin))]
     if (full.scene) {
       const name = `zone-${figures.length + 1}`

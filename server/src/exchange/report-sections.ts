@@ -45,8 +45,15 @@ export const CARE =
 /** More digits than a message has: numbers of a report are compared with those of other programs. */
 const DIGITS = 6
 
-/** @param found each finding, for outputs that list them; else they are counted only. */
-export function reportInWords(report: Report, found: readonly FindingJson[] = []): ReportInWords {
+/**
+ * @param found  each finding, for outputs that list them; else they are counted only.
+ * @param limits what could not be looked at, and why.
+ */
+export function reportInWords(
+  report: Report,
+  found: readonly FindingJson[] = [],
+  limits: readonly string[] = [],
+): ReportInWords {
   const { file, document, title } = report
   const origin = `${file}, document ${document}`
   return {
@@ -54,7 +61,7 @@ export function reportInWords(report: Report, found: readonly FindingJson[] = []
     origin,
     sections: [
       ...[lattice, reciprocal, zone, symmetry, points, path, meshes].flatMap(part => part(report) ?? []),
-      findings(report, found),
+      findings(report, found, limits),
     ],
     care: CARE,
   }
@@ -325,9 +332,13 @@ function meshSection(
   return { title, facts, tables: [] }
 }
 
-const findings = ({ findings }: Report, found: readonly FindingJson[]): Section => ({
+const findings = (
+  { findings }: Report,
+  found: readonly FindingJson[],
+  limits: readonly string[],
+): Section => ({
   title: 'Findings',
-  facts: [['findings', tallyInWords(findings) || 'none']],
+  facts: [['findings', tallyInWords(findings) || 'none'], ...limits.map(limit => ['limit', limit] as const)],
   tables:
     found.length === 0
       ? []

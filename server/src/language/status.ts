@@ -1,4 +1,5 @@
 import type { Snapshot } from '../analysis.ts'
+import { limitsOf } from '../exchange/limits.ts'
 import type { Severity } from '../format/model.ts'
 import type { StatusParams } from '../protocol.ts'
 
@@ -19,16 +20,12 @@ export function statusOf(snapshot: Snapshot, uri: string): StatusParams {
     warnings: number('warning'),
     infos: number('info'),
     pending: snapshot.pending,
-    limits: limitsOf(snapshot),
+    limits: everyLimit(snapshot),
   }
 }
 
-/** Why rules that need the symmetry were silent, where no finding of the document says what is wrong with it. */
-const limitsOf = ({ documents, findings }: Snapshot): string[] =>
-  documents.flatMap(({ document: { number }, crystal }) => {
-    const outcome = crystal.lattice && crystal.symmetryOutcome
-    if (outcome?.state !== 'failed') return []
-    if (findings.some(({ document, severity }) => document === number && severity === 'error')) return []
-    const which = documents.length > 1 ? `document ${number}: ` : ''
-    return [`${which}nothing that needs the symmetry was checked: ${outcome.reason}`]
+const everyLimit = (snapshot: Snapshot): string[] =>
+  snapshot.documents.flatMap(analysis => {
+    const which = snapshot.documents.length > 1 ? `document ${analysis.document.number}: ` : ''
+    return limitsOf(snapshot, analysis).map(limit => which + limit)
   })

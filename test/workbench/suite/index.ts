@@ -32,5 +32,6 @@ const suites: Record<string, () => Promise<unknown>> = {
   report: () => import('./report.test.ts'),
   'workspace-check': () => import('./workspace-check.test.ts'),
   paste: () => import('./paste.test.ts'),
+  walkthrough: () => import('./walkthrough.test.ts'),
   asleep: () => import('./asleep.test.ts'),
 }
