@@ -29,6 +29,8 @@ import type { Server } from './server.ts'
 const SCHEME = 'braggline-report'
 /** How the name of every report ends: it is what its tab shows. */
 export const REPORT_NAME = ' report.md'
+/** What a report may be saved as. */
+const SAVED = /\.(html?|md)$/i
 /** Typing is left to come to rest before a report is made anew, in ms. */
 const REST_MS = 300
 /** How long a word stays in the status bar, in ms. */
@@ -46,7 +48,9 @@ export function registerReport(context: ExtensionContext, tools: Tools): void {
     reports,
     workspace.registerTextDocumentContentProvider(SCHEME, reports),
     commands.registerCommand('braggline.openReport', () => reports.open()),
-    commands.registerCommand('braggline.saveReport', () => reports.save()),
+    commands.registerCommand('braggline.saveReport', (target?: unknown) =>
+      reports.save(target instanceof Uri && SAVED.test(target.path) ? target : undefined),
+    ),
   )
 }
 
@@ -116,21 +120,25 @@ class Reports {
     }
   }
 
-  async save(): Promise<void> {
+  /** @param to where it goes; asked for where it is not said. */
+  async save(to?: Uri): Promise<void> {
     const document = this.#latticeFile() ?? (await this.#shownSource())
     if (!document) return
-    const { uri } = document
+    const target = to ?? (await this.#askWhere(document))
+    if (target) await this.#saveTo(document, target)
+  }
+
+  #askWhere({ uri }: TextDocument): Thenable<Uri | undefined> {
     const folder = uri.scheme === 'untitled' ? workspace.workspaceFolders?.[0]?.uri : Uri.joinPath(uri, '..')
-    const target = await window.showSaveDialog({
+    return window.showSaveDialog({
       title: l10n.t('Save Lattice Report'),
       filters: { [l10n.t('HTML page')]: ['html'], [l10n.t('Markdown')]: ['md'] },
       defaultUri: folder && Uri.joinPath(folder, `${stem(uri)}-report.html`),
     })
-    if (target) await this.saveTo(document, target)
   }
 
   /** With all that a search for symmetry brings. */
-  async saveTo(document: TextDocument, target: Uri): Promise<void> {
+  async #saveTo(document: TextDocument, target: Uri): Promise<void> {
     const about = { uri: document.uri.toString(), version: document.version }
     await this.tools.server.request(CHECKED, about satisfies CheckedParams)
     const format = /\.html?$/i.test(target.path) ? 'html' : 'markdown'

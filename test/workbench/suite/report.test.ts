@@ -88,6 +88,25 @@ describe('the lattice report', () => {
     await soon(async () => !(await text(editor.document.uri)).includes('path-label-unknown'))
   })
 
+  it('is saved as Markdown or as a page, in full', async () => {
+    const { document } = await open('lead-telluride.lattice.yaml')
+    const saved = async (name: string) => {
+      await vscode.commands.executeCommand('braggline.saveReport', file(name))
+      return new TextDecoder().decode(await vscode.workspace.fs.readFile(file(name)))
+    }
+    assert.match(await saved('saved-report.md'), /^# Lead telluride[^]*space group: Fm-3m[^]*data:image\/svg/)
+    assert.match(await saved('saved-report.html'), /^<!DOCTYPE html>[^]*<svg [^]*Fm-3m/)
+    // From the preview too, once it is in front.
+    await vscode.commands.executeCommand('braggline.openReport')
+    await soon(() => previews().length === 1)
+    await vscode.commands.executeCommand('workbench.action.focusSecondEditorGroup')
+    await soon(() => vscode.window.activeTextEditor === undefined)
+    assert.match(await saved('saved-again.md'), /^# Lead telluride/)
+    for (const name of ['saved-report.md', 'saved-report.html', 'saved-again.md'])
+      await vscode.workspace.fs.delete(file(name))
+    assert.ok(!document.isDirty)
+  })
+
   it('may not be written to', async () => {
     const { document } = await open('lead-telluride.lattice.yaml')
     await checked(document)

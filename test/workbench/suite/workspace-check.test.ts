@@ -100,6 +100,17 @@ describe('Check All Lattice Files', () => {
     assert.strictEqual(finding.severity, vscode.DiagnosticSeverity.Warning)
   })
 
+  it('ends when its findings are cleared', async () => {
+    const text = (i: number) => `lattice: {bravais: oP, a: ${4 + i / 1000}, b: 4.2, c: 5.5}\npath: Γ – Xx\n`
+    await Promise.all(Array.from({ length: 300 }, (_, i) => write(`all/${i}.lattice.yaml`, text(i))))
+    const all = checkAll()
+    await soon(() => vscode.languages.getDiagnostics(file('all/0.lattice.yaml')).length > 0)
+    await vscode.commands.executeCommand('braggline.clearChecks')
+    const total = await all
+    assert.ok(total.cancelled)
+    assert.strictEqual(found('all/0.lattice.yaml').length, 0)
+  })
+
   it('a thousand files: an edit is answered meanwhile', async () => {
     const text = (i: number) =>
       `lattice: {bravais: oP, a: ${3 + i / 1000}, b: 4.2, c: 5.5}\natoms:\n  - Si: [0, 0, 0]\npath: Γ – Xx\n`
