@@ -6,7 +6,6 @@ import {
   languages,
   type LogOutputChannel,
   Range,
-  SnippetString,
   type TextEditor,
   window,
   WorkspaceEdit,
@@ -18,22 +17,6 @@ import type { Server } from './server.ts'
 
 /** How long a word about a command stays in the status bar, in ms. */
 const WORD_MS = 6_000
-
-/** Silicon: a = 5.431 Å at room temperature (common practice). */
-const NEW_FILE = `title: \${1:Silicon, diamond structure}
-unit: angstrom
-lattice:
-  bravais: \${2:cF}
-  a: \${3:5.431}
-atoms:
-  - \${4:Si}: [0, 0, 0]
-  - \${4:Si}: [1/4, 1/4, 1/4]
-path: \${5:recommended}
-sampling:
-  spacing: \${6:0.02}
-mesh:
-  divisions: [\${7:12, 12, 12}]
-$0`
 
 type TextPosition = RecommendedPathParams['position']
 
@@ -48,7 +31,6 @@ export function registerCommands(context: ExtensionContext, { server, log, selec
     context.subscriptions.push(commands.registerCommand(`braggline.${name}`, run))
   register('restartServer', () => server.restart())
   register('showLog', () => log.show())
-  register('newFile', newFile)
   // A lens says where; else it is where the cursor stands.
   register('insertRecommendedPath', async place => {
     const editor = window.activeTextEditor
@@ -60,12 +42,6 @@ export function registerCommands(context: ExtensionContext, { server, log, selec
 
 const isPosition = (value: unknown): value is TextPosition =>
   typeof value === 'object' && value !== null && 'line' in value && 'character' in value
-
-async function newFile(): Promise<void> {
-  const document = await workspace.openTextDocument({ language: 'braggline' })
-  const editor = await window.showTextDocument(document)
-  await editor.insertSnippet(new SnippetString(NEW_FILE))
-}
 
 async function insertRecommendedPath(
   { document }: TextEditor,

@@ -10,6 +10,7 @@ import {
 } from 'vscode'
 import { CHECKED, type CheckedParams, type CheckedResult } from '../../server/src/protocol.ts'
 import { registerCommands } from './commands.ts'
+import { registerNewFile } from './new-file.ts'
 import { registerPaste } from './paste.ts'
 import { registerReport } from './report.ts'
 import { type CreateClient, Server } from './server.ts'
@@ -43,6 +44,7 @@ export function activate(context: ExtensionContext, createClient: CreateClient):
   })
   running = server
   context.subscriptions.push(log, status, startWithFirstFile(server))
+  registerNewFile(context, server)
   registerCommands(context, { server, log, selector: SELECTOR })
   registerPaste(context, { server, log, selector: SELECTOR })
   registerReport(context, { server, log, selector: SELECTOR })

@@ -27,7 +27,7 @@ describe('commands', () => {
   })
 
   it('New Lattice File: a text without errors or warnings', async () => {
-    await vscode.commands.executeCommand('braggline.newFile')
+    await vscode.commands.executeCommand('braggline.newFile', 'cF')
     const { document } = vscode.window.activeTextEditor!
     assert.strictEqual(document.languageId, 'braggline')
     assert.ok(document.getText().includes('bravais: cF'), document.getText())
