@@ -1,17 +1,22 @@
 /** Hovers: the few numbers one looks up, as a small table. Never over 15 lines. */
 import type { Hover, Position } from 'vscode-languageserver-types'
-import type { DocumentAnalysis, Snapshot } from '../analysis.ts'
+import { covers, type DocumentAnalysis, type Snapshot } from '../analysis.ts'
 import { BRAVAIS } from '../crystal/bravais.ts'
+import { listedPoints, segmentSteps } from '../crystal/path.ts'
+import { namedSpaceGroup } from '../crystal/space-group.ts'
+import { nearestImageOf, supercellOf } from '../crystal/supercell.ts'
 import { INVERSE_SYMBOL, SYMBOL } from '../crystal/units.ts'
 import { angle, dot, norm } from '../crystal/vector.ts'
-import { keyDocumentation } from '../format/keys.ts'
-import type { PathSegment, Span } from '../format/model.ts'
+import { findKey, keyDocumentation, keyName } from '../format/keys.ts'
+import type { MeshBlock, NumberValue, PathSegment, Span } from '../format/model.ts'
 import { displayLabel } from '../format/path.ts'
 import type { Crystal, PlacedPoint } from '../meaning/crystal.ts'
 import { pointFacts, segmentFacts } from '../meaning/facts.ts'
+import { meshOf, stepRule, walkedPath } from '../meaning/sampling.ts'
 import {
   cartesian,
   content,
+  count,
   degrees,
   fractions,
   inverseContent,
@@ -19,23 +24,87 @@ import {
   length,
   plain,
 } from '../meaning/wording.ts'
+import { aboutElement, aboutGroup, aboutRule, aboutWord, table } from './about.ts'
+import { placeAt } from './completion/place.ts'
 import { rangeOf } from './diagnostics.ts'
-import { locate, type Place } from './locate.ts'
+import { locate, numberAt, type Place } from './locate.ts'
+import { meshCounts, product, wholeNumber } from './mesh-words.ts'
 
-export function hover(snapshot: Snapshot, position: Position, _options = { links: false }): Hover | null {
+/** What the editor can do with a hover. */
+export interface HoverOptions {
+  /** It has the command that opens the lattice report. */
+  readonly links: boolean
+}
+
+const REPORT = '\n\n[Lattice report](command:braggline.openReport)'
+
+export function hover(
+  snapshot: Snapshot,
+  position: Position,
+  { links }: HoverOptions = { links: false },
+): Hover | null {
   const offset = snapshot.offsetOf(position)
   const analysis = snapshot.documentAt(offset)
-  const place = analysis && locate(analysis.document, offset)
-  if (!place) return null
-  const value = describe(analysis, place)
-  return value
-    ? { contents: { kind: 'markdown', value }, range: rangeOf(snapshot, rangeOfPlace(place)) }
-    : null
+  if (!analysis) return null
+  const found =
+    allowed(snapshot, offset) ?? keyUnder(snapshot.text, offset) ?? locate(analysis.document, offset)
+  const number = numberAt(analysis.document, offset)
+  const expression = number && wordsOfNumber(number)
+  const facts = found && describe(snapshot, analysis, found)
+  const value = [expression, facts].filter(Boolean).join('  \n')
+  if (value === '') return null
+  const at = found ? rangeOfPlace(found) : number!.at
+  const hasReport = links && found !== undefined && HAS_MORE.has(found.kind) && facts !== undefined
+  return {
+    contents: { kind: 'markdown', value: hasReport ? value + REPORT : value },
+    range: rangeOf(snapshot, at),
+  }
 }
+
+/** Places of which the report says more. */
+const HAS_MORE = new Set<Place['kind']>([
+  'lattice-value',
+  'row',
+  'atom',
+  'point',
+  'label',
+  'segment',
+  'space-group',
+  'mesh',
+  'sampling',
+  'supercell',
+])
 
 const rangeOfPlace = (place: Place): Span => (place.kind === 'segment' ? place.segment.separator : place.at)
 
-function describe({ crystal }: DocumentAnalysis, place: Place): string | undefined {
+/** A rule that a comment allows. */
+function allowed({ decoded }: Snapshot, offset: number): Place | undefined {
+  const rule = decoded.allowances.flatMap(({ rules }) => rules).find(({ at }) => covers(at, offset))
+  return rule && { kind: 'rule', at: rule.at, id: rule.value }
+}
+
+/** A key of the format, as far as the text round it tells. */
+function keyUnder(text: string, offset: number): Place | undefined {
+  const before = /[a-z-]*$/.exec(text.slice(Math.max(0, offset - LONGEST_KEY), offset))![0].length
+  const start = offset - before
+  const word = /^[a-z][a-z-]*(?=["']?[ \t]*:(?:\s|$))/.exec(text.slice(start, start + LONGEST_KEY))?.[0]
+  if (word === undefined) return undefined
+  const place = placeAt(text, start)
+  const path = [...place.names, word]
+  const row = place.kind === 'key' ? findKey(path) : undefined
+  return row && keyName(row) === word ? { kind: 'key', at: [start, start + word.length], path } : undefined
+}
+const LONGEST_KEY = 40
+
+const DIGITS_OF_EXPRESSION = 6
+
+/** What an expression comes to; nothing of a number that stands there in full. */
+function wordsOfNumber({ text, value, decimals }: NumberValue): string | undefined {
+  if (decimals !== undefined || /^[\d.]+\(\d+\)$/.test(text)) return undefined
+  return `\`${text}\` = ${plain(value, DIGITS_OF_EXPRESSION)}`
+}
+
+function describe(snapshot: Snapshot, { crystal }: DocumentAnalysis, place: Place): string | undefined {
   switch (place.kind) {
     case 'key':
       return place.path.join('.') === 'lattice'
@@ -45,6 +114,20 @@ function describe({ crystal }: DocumentAnalysis, place: Place): string | undefin
       return lattice(crystal) ?? keyDocumentation(['lattice', place.name])
     case 'row':
       return row(crystal, place.index)
+    case 'element':
+      return aboutElement(place.symbol)
+    case 'rule':
+      return aboutRule(place.id)
+    case 'word':
+      return word(crystal, place.path, snapshot.text.slice(...place.at))
+    case 'space-group':
+      return spaceGroup(crystal)
+    case 'mesh':
+      return mesh(crystal, place.block)
+    case 'sampling':
+      return sampling(crystal)
+    case 'supercell':
+      return supercell(crystal)
     case 'atom':
       return atom(crystal, place.index)
     case 'point':
@@ -56,10 +139,91 @@ function describe({ crystal }: DocumentAnalysis, place: Place): string | undefin
   }
 }
 
-const table = (head: readonly string[], rows: readonly (readonly string[])[]): string =>
-  [head, head.map((_, i) => (i > 0 && head.length > 2 ? '---:' : '---')), ...rows]
-    .map(cells => `| ${cells.join(' | ')} |`)
-    .join('\n')
+function word(crystal: Crystal, path: readonly string[], written: string): string | undefined {
+  const plainWord = written.replace(/^(['"])(.*)\1$/, '$2')
+  const row = findKey(path)
+  if (!row) return undefined
+  const stated = path.join('.') === 'lattice.bravais' ? crystal.document.lattice?.bravais?.value : undefined
+  return aboutWord(row.path, stated ?? plainWord)
+}
+
+function spaceGroup(crystal: Crystal): string | undefined {
+  const { document, symmetry, symmetryOutcome } = crystal
+  const claim = document.spaceGroup!
+  const about = aboutGroup(claim.value)
+  if (!about) return undefined
+  const found = document.atoms && symmetry?.spaceGroup
+  const number = namedSpaceGroup(claim.value)?.number
+  const verdict = !document.atoms
+    ? 'Without atoms it is taken as claimed.'
+    : found
+      ? found.number === number
+        ? 'Found in lattice and atoms too.'
+        : `Lattice and atoms have ${found.symbol} (${found.number}).`
+      : symmetryOutcome.state === 'pending'
+        ? 'The symmetry of lattice and atoms is still being looked for.'
+        : ''
+  return verdict ? `${about}\n\n${verdict}` : about
+}
+
+function mesh(crystal: Crystal, block: MeshBlock): string | undefined {
+  const made = meshOf(crystal, block)
+  const { lattice, unit } = crystal
+  if (!made || !lattice) return undefined
+  const { divisions, full, irreducible } = meshCounts(crystal, made)
+  const steps = divisions.map((n, i) => plain(norm(lattice.reciprocal[i]) / n))
+  const rows = [
+    ['divisions', product(divisions)],
+    ['points', wholeNumber(full)],
+    ...(irreducible === undefined ? [] : [['irreducible', wholeNumber(irreducible)]]),
+    ['spacing along b', `${steps.join(', ')} ${INVERSE_SYMBOL[unit]}`],
+    ...(made.shift.some(x => x !== 0)
+      ? [['shift', `${fractions(made.shift, lattice.dimension)} steps`]]
+      : [['shift', 'none: Γ is a point of the mesh']]),
+  ]
+  return `**Mesh**${block.name ? ` ${block.name}` : ''}\n\n${table(['', ''], rows)}`
+}
+
+function sampling(crystal: Crystal): string | undefined {
+  const pieces = walkedPath(crystal)
+  const segments = pieces.flatMap(piece => piece.segments)
+  if (segments.length === 0 || segments.some(({ length }) => length === undefined)) return undefined
+  const lengths = segments.map(({ length, steps }) => ({ length: length!, steps }))
+  const steps = segmentSteps(lengths, stepRule(crystal))
+  const total = lengths.reduce((sum, { length }) => sum + length, 0)
+  const widest = Math.max(...lengths.map(({ length }, i) => length / steps[i]))
+  let next = 0
+  const points = listedPoints(pieces.map(piece => steps.slice(next, (next += piece.segments.length))))
+  return `**Sampling**\n\n${table(
+    ['', ''],
+    [
+      ['path', `${count(segments.length, 'segment')}, ${inverseLength(total, crystal.unit)} long`],
+      ['steps', String(steps.reduce((sum, n) => sum + n, 0))],
+      ['points', String(points)],
+      ['widest step', inverseLength(widest, crystal.unit)],
+    ],
+  )}`
+}
+
+function supercell({ lattice, supercell: matrix, unit }: Crystal): string | undefined {
+  const made = lattice && matrix && supercellOf(lattice, matrix)
+  if (!made) return undefined
+  const { dimension, primitive, volume } = made.lattice
+  return `**Supercell** of ${count(made.fold, 'primitive cell')}\n\n${table(
+    ['', ''],
+    [
+      [
+        'vectors',
+        primitive
+          .slice(0, dimension)
+          .map(v => length(norm(v), unit))
+          .join(', '),
+      ],
+      [NAMES[dimension][0], content(volume, dimension, unit)],
+      ['nearest image', length(nearestImageOf(made.lattice).distance, unit)],
+    ],
+  )}`
+}
 
 const SUBSCRIPT = ['₁', '₂', '₃']
 const NAMES = { 1: ['length'], 2: ['area'], 3: ['volume'] } as const
@@ -109,8 +273,6 @@ function row(crystal: Crystal, index: number): string | undefined {
   return [
     `**a${SUBSCRIPT[index]}** (${stated}): length ${length(norm(a), unit)}  `,
     `b${SUBSCRIPT[index]} = ${cartesian(b, unit)}, length ${inverseLength(norm(b), unit)}, a·b = ${plain(dot(a, b) / Math.PI)}π`,
-    '',
-    lattice(crystal) ?? '',
   ].join('\n')
 }
 
