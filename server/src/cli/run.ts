@@ -10,6 +10,7 @@ import { fill } from './fill.ts'
 import { fold } from './fold.ts'
 import { importVerb } from './import.ts'
 import { type Io, Refusal } from './io.ts'
+import { match } from './match.ts'
 import { mesh } from './mesh.ts'
 import { HELP, type OptionSpec, readOptions } from './options.ts'
 import { path } from './path.ts'
@@ -25,6 +26,7 @@ export const VERBS: readonly Verb[] = [
   path,
   mesh,
   probe,
+  match,
   fold,
   bands,
   draw,

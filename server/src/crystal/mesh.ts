@@ -64,9 +64,14 @@ export const LARGEST_LISTING = 2 ** 26
  * Irreducible points of the mesh with the number of points that each stands for. One byte for each point of the mesh, and
  * no object for any: 200 × 200 × 200 points take 8 million bytes and the space of the irreducible ones.
  * @param group rotations on columns of k-fractions, closed as a group, −1 among them where time reversal holds.
+ * @param orbitOf receives, for each mesh point (the last index runs fastest), the ordinal of its orbit.
  * @returns undefined where the mesh has more than `LARGEST_LISTING` points.
  */
-export function meshOrbits(mesh: Mesh, group: readonly Mat3[]): MeshOrbits | undefined {
+export function meshOrbits(
+  mesh: Mesh,
+  group: readonly Mat3[],
+  orbitOf?: Uint32Array,
+): MeshOrbits | undefined {
   const total = meshPoints(mesh)
   if (total > LARGEST_LISTING) return undefined
   const [p, q, r] = mesh.divisions
@@ -98,6 +103,7 @@ export function meshOrbits(mesh: Mesh, group: readonly Mat3[]): MeshOrbits | und
           if (k >= r) k -= r
           if (k >= r) k -= r
           const image = (i * q + j) * r + k
+          if (orbitOf !== undefined && seen[image] === 0) orbitOf[image] = orbits
           size += 1 - seen[image]
           seen[image] = 1
         }

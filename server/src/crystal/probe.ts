@@ -5,6 +5,7 @@
  * 25.3.23 and 25.3.26) along orthogonal axes. A tensor is even, so a rotation and its product with −1 ask the same of it:
  * mirrors count as two-fold axes.
  */
+import { symmetricEigen } from './eigen.ts'
 import { orderOf } from './lattice-type.ts'
 import type { Dimension } from './reduction.ts'
 import { HBAR2_OVER_2M } from './units.ts'
@@ -376,31 +377,15 @@ function relationsOf(tensor: Mat3, group: readonly Mat3[], dimension: Dimension)
   return relations
 }
 
-/** Sweeps over a 3×3 matrix; five are ample, more cost nothing. */
-const SWEEPS = 30
-
-/** Eigenvalues, largest first, of the part within the dimension (C. G. J. Jacobi, 1846: plane rotations). */
+/** Largest first. */
 function principalAxes(tensor: Mat3, dimension: Dimension, rounding: number) {
-  const a = tensor.map(row => [...row])
-  const v = IDENTITY.map(row => [...row])
-  for (let sweep = 0; sweep < SWEEPS; sweep++)
-    for (const [p, q] of AXIS_PAIRS.filter(([, j]) => j < dimension)) {
-      if (a[p][q] === 0) continue
-      const theta = (a[q][q] - a[p][p]) / (2 * a[p][q])
-      const t = (theta < 0 ? -1 : 1) / (Math.abs(theta) + Math.hypot(theta, 1))
-      const c = 1 / Math.hypot(t, 1)
-      const s = t * c
-      for (let k = 0; k < 3; k++) [a[k][p], a[k][q]] = [c * a[k][p] - s * a[k][q], s * a[k][p] + c * a[k][q]]
-      for (let k = 0; k < 3; k++) [a[p][k], a[q][k]] = [c * a[p][k] - s * a[q][k], s * a[p][k] + c * a[q][k]]
-      for (let k = 0; k < 3; k++) [v[p][k], v[q][k]] = [c * v[p][k] - s * v[q][k], s * v[p][k] + c * v[q][k]]
-    }
-  const values = [0, 1, 2].slice(0, dimension).map(i => a[i][i])
-  const near = Math.max(2 * rounding, SAME_MASS * Math.max(...values.map(Math.abs)))
-  return values
-    .map((value, i) => ({
+  const eigen = symmetricEigen(tensor, dimension)
+  const near = Math.max(2 * rounding, SAME_MASS * Math.max(...eigen.map(({ value }) => Math.abs(value))))
+  return eigen
+    .map(({ value, vector }, i) => ({
       value,
-      vector: v[i] as unknown as Vec3,
-      free: values.some((other, j) => j !== i && Math.abs(other - value) <= near),
+      vector,
+      free: eigen.some((other, j) => j !== i && Math.abs(other.value - value) <= near),
     }))
     .sort((x, y) => y.value - x.value)
 }

@@ -1,0 +1,112 @@
+import { IN_ANGSTROM, UNITS, type Unit } from '../crystal/units.ts'
+import { norm, spanned, type Vec3 } from '../crystal/vector.ts'
+import { type KList, type ListColumns, readKList, readVectors } from '../exchange/k-list.ts'
+import { matchList } from '../exchange/match.ts'
+import { matchText } from '../exchange/match-text.ts'
+import type { Crystal } from '../meaning/crystal.ts'
+import { count } from '../meaning/wording.ts'
+import { STANDARD_INPUT } from './files.ts'
+import { type Io, Refusal } from './io.ts'
+import { type Given, ordinal } from './options.ts'
+import { Desk } from './output.ts'
+import { oneCrystal } from './pick.ts'
+import { listText } from './probe.ts'
+import { type Call, CLEAN, DOCUMENT, FOUND, OUTPUT, OVERWRITE, type Verb } from './verb.ts'
+
+export const match: Verb = {
+  name: 'match',
+  operands: 'FILE LIST',
+  summary: "whether a list of k-points is this file's path or mesh, and in which frame and unit",
+  about: [
+    'LIST is what stands in the input or output of a job: three numbers a line, then perhaps a weight, perhaps # and a label; - is standard input. It is tried as fractions of the primitive and of the conventional reciprocal vectors, as Cartesian in inverse Å, bohr and nm, and in 2π/a, with the 2π and without. How far a point may be off follows from the digits of the list.',
+    "With --vectors the cell that the job used is compared with the file's: the whole-numbered matrix, the rotation and the strain between them; the list is then also read along that cell. LIST may be left out.",
+    "Exit status: 0 where it is this file's path or mesh (and cell), 1 where it is not, 2 where the work could not be done.",
+  ],
+  options: [
+    {
+      name: 'columns',
+      value: '"2,3,4"',
+      help: 'The columns of the components, from 1; the first ones by default.',
+    },
+    {
+      name: 'weight-column',
+      value: 'N',
+      help: 'The column of the weight; by default the next after the first ones.',
+    },
+    { name: 'vectors', value: 'LIST', help: "The vectors of the job's cell, three numbers a line." },
+    {
+      name: 'vectors-unit',
+      value: 'UNIT',
+      choices: [...UNITS],
+      help: "Their unit: angstrom, nm or bohr; the file's own by default.",
+    },
+    { name: 'format', value: 'FORMAT', choices: ['text', 'json'], help: 'text (the default) or json.' },
+    DOCUMENT,
+    OUTPUT,
+    OVERWRITE,
+  ],
+  examples: [
+    'braggline match lead-telluride.lattice.yaml k-points.txt',
+    'braggline match lead-telluride.lattice.yaml job.out --columns "2,3,4" --weight-column 5 --vectors cell.txt --vectors-unit bohr',
+  ],
+
+  async run({ given, io, engine }: Call): Promise<number> {
+    const desk = new Desk(io, given.value('output'), given.has('overwrite'))
+    const [file, list, more] = given.operands
+    const vectors = given.value('vectors')
+    if (file === undefined || (list === undefined && vectors === undefined))
+      throw new Refusal('a file and a list are wanted: FILE LIST')
+    if (more !== undefined)
+      throw new Refusal(`one file and one list are taken; these are ${given.operands.length}`)
+    if ([file, list, vectors].filter(name => name === STANDARD_INPUT).length > 1)
+      throw new Refusal('standard input can be one of file, list and vectors only')
+    if (given.has('vectors-unit') && vectors === undefined)
+      throw new Refusal('--vectors-unit says the unit of --vectors, which is not given')
+    const crystal = await oneCrystal({ ...given, operands: [file] }, io, engine)
+    const columns = columnsOf(given, crystal.dimension!)
+    const read = list === undefined ? undefined : await pointsOf(list, columns, crystal, io)
+    const job = vectors === undefined ? undefined : await vectorsOf(vectors, given, crystal, io)
+    const result = matchList(crystal, read, job)
+    const cellFits = result.cell?.related ?? true
+    desk.result(
+      given.value('format') === 'json'
+        ? `${JSON.stringify(result, null, 2)}\n`
+        : matchText(list === STANDARD_INPUT ? 'The list' : (list ?? ''), result),
+    )
+    await desk.close()
+    return result.matches && cellFits ? CLEAN : FOUND
+  },
+}
+
+function columnsOf(given: Given, dimension: number): ListColumns {
+  const weight = ordinal(given, 'weight-column')
+  const text = given.value('columns')
+  if (text === undefined) return { weight }
+  const columns = text.split(/[\s,]+/).filter(word => word !== '')
+  if (columns.length < dimension || columns.length > 3 || !columns.every(word => /^[1-9]\d{0,3}$/.test(word)))
+    throw new Refusal(
+      `--columns "${text}": ${count(dimension, 'column')} from 1 are wanted, parted by commas`,
+    )
+  return { columns: columns.map(Number), weight }
+}
+
+const shownName = (name: string): string => (name === STANDARD_INPUT ? 'standard input' : name)
+
+async function pointsOf(name: string, columns: ListColumns, { dimension }: Crystal, io: Io): Promise<KList> {
+  const list = readKList(await listText(name, io), dimension!, columns)
+  if ('fault' in list) throw new Refusal(`${shownName(name)}: ${list.fault}`)
+  return list
+}
+
+async function vectorsOf(name: string, given: Given, crystal: Crystal, io: Io): Promise<readonly Vec3[]> {
+  const rows = readVectors(await listText(name, io), crystal.dimension!)
+  if ('fault' in rows) throw new Refusal(`${shownName(name)}: ${rows.fault}`)
+  const unit = (given.value('vectors-unit') as Unit | undefined) ?? crystal.unit
+  const size = IN_ANGSTROM[unit] / crystal.angstrom
+  const vectors = rows.slice(0, crystal.dimension).map(row => row.map(x => x * size) as unknown as Vec3)
+  if (!(spanned(vectors) > FLAT * vectors.reduce((product, v) => product * norm(v), 1)))
+    throw new Refusal(`${shownName(name)}: the vectors span no cell`)
+  return vectors
+}
+/** Of the product of the lengths: numbers with a few digits leave more of a flat cell. */
+const FLAT = 1e-9
