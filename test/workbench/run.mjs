@@ -35,6 +35,7 @@ const SESSIONS = [
     suites: ['findings', 'files', 'colours', 'commands', 'settings', 'process', 'pictures', 'zone-tab'],
   },
   { name: 'panels', workspace: 'desk', suites: ['walkthrough', 'report', 'paste', 'workspace-check'] },
+  { name: 'craft', workspace: 'desk', suites: ['craft'] },
   // The demo folder itself: its files are what the view is for.
   { name: 'zone', workspace: '../../../demo', suites: ['zone-view'] },
   { name: 'elsewhere', workspace: 'elsewhere', suites: ['asleep'] },

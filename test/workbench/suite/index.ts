@@ -33,5 +33,6 @@ const suites: Record<string, () => Promise<unknown>> = {
   'workspace-check': () => import('./workspace-check.test.ts'),
   paste: () => import('./paste.test.ts'),
   walkthrough: () => import('./walkthrough.test.ts'),
+  craft: () => import('./craft.test.ts'),
   asleep: () => import('./asleep.test.ts'),
 }
