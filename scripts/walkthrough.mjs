@@ -38,6 +38,7 @@ const WRONG = 'var(--vscode-editorError-foreground)'
 const MONO = 'var(--vscode-editor-font-family, monospace)'
 const TEXT = 'var(--vscode-font-family, sans-serif)'
 
+// In attributes, for the editor allows no style of a picture's own.
 const escaped = text => text.replace(/[&<>"]/g, c => `&#${c.charCodeAt(0)};`)
 const words = (
   x,
@@ -45,10 +46,10 @@ const words = (
   text,
   { fill = INK, size = 15, font = MONO, weight = 'normal', anchor = 'start' } = {},
 ) =>
-  `<text x="${x}" y="${y}" style="fill:${fill};font:${weight} ${size}px ${font};text-anchor:${anchor};white-space:pre">${text}</text>`
-const span = (fill, text) => `<tspan style="fill:${fill}">${escaped(text)}</tspan>`
+  `<text x="${x}" y="${y}" fill="${fill}" font-weight="${weight}" font-size="${size}" font-family="${font}" text-anchor="${anchor}" xml:space="preserve">${text}</text>`
+const span = (fill, text) => `<tspan fill="${fill}">${escaped(text)}</tspan>`
 const sheet = (x, y, w, h) =>
-  `<rect x="${x}" y="${y}" width="${w}" height="${h}" rx="6" style="fill:${PAPER};stroke:${RULE}"/>`
+  `<rect x="${x}" y="${y}" width="${w}" height="${h}" rx="6" fill="${PAPER}" stroke="${RULE}"/>`
 
 /** A line of a lattice file in colours: keys, then numbers, then the rest. */
 function coloured(line) {
@@ -96,7 +97,7 @@ const before = lines[at].indexOf('Ww')
 /** Of the monospaced text, about: the squiggle stands under the word in any such font. */
 const COLUMN = 9
 const wave = (x, y, n) =>
-  `<path d="M${x} ${y}${' q2 -4 4 0 t4 0'.repeat(n)}" style="fill:none;stroke:${WRONG};stroke-width:1.6"/>`
+  `<path d="M${x} ${y}${' q2 -4 4 0 t4 0'.repeat(n)}" fill="none" stroke="${WRONG}" stroke-width="1.6"/>`
 
 const pictures = {
   file: [sheet(20, 20, 600, 360), listing(lines, 44, TOP)],
@@ -114,8 +115,8 @@ const pictures = {
     words(84, 242, span(INK, 'label for this lattice (cF: face-centred cubic). Did you mean W?'), {
       font: TEXT,
     }),
-    `<line x1="64" x2="584" y1="270" y2="270" style="stroke:${RULE}"/>`,
-    `<circle cx="94" cy="300" r="8" style="fill:none;stroke:var(--vscode-charts-yellow);stroke-width:2"/><path d="M90 312h8M91 316h6" style="stroke:var(--vscode-charts-yellow);stroke-width:2"/>`,
+    `<line x1="64" x2="584" y1="270" y2="270" stroke="${RULE}"/>`,
+    `<circle cx="94" cy="300" r="8" fill="none" stroke="var(--vscode-charts-yellow)" stroke-width="2"/><path d="M90 312h8M91 316h6" stroke="var(--vscode-charts-yellow)" stroke-width="2"/>`,
     words(116, 306, span(PATH, 'Replace by W'), { font: TEXT }),
   ],
   zone: [figure(130, 10, 380)],
@@ -141,7 +142,7 @@ const pictures = {
     ...['vectors (Å)', ' 0.000  3.231  3.231', ' 3.231  0.000  3.231', ' 3.231  3.231  0.000'].map(
       (line, i) => words(40, 150 + i * 30, coloured(line), { size: 15 }),
     ),
-    `<path d="M290 195h46m-14 -12l14 12l-14 12" style="fill:none;stroke:${PATH};stroke-width:3"/>`,
+    `<path d="M290 195h46m-14 -12l14 12l-14 12" fill="none" stroke="${PATH}" stroke-width="3"/>`,
     sheet(356, 70, 264, 250),
     words(376, 104, span(QUIET, 'lattice file'), { font: TEXT, size: 13 }),
     listing(

@@ -42,7 +42,7 @@ const SESSIONS = [
   {
     name: 'browser',
     workspace: 'desk',
-    suites: ['findings', 'files', 'commands', 'settings', 'zone-tab'],
+    suites: ['findings', 'files', 'commands', 'settings', 'zone-tab', 'report', 'paste', 'workspace-check'],
     browser: true,
   },
 ]
