@@ -7,6 +7,7 @@ import { draw } from './draw.ts'
 import { Engine, type Symmetries } from './engine.ts'
 import { explain } from './explain.ts'
 import { fill } from './fill.ts'
+import { exportVerb } from './export.ts'
 import { fold } from './fold.ts'
 import { importVerb } from './import.ts'
 import { type Io, Refusal } from './io.ts'
@@ -32,6 +33,7 @@ export const VERBS: readonly Verb[] = [
   draw,
   fill,
   importVerb,
+  exportVerb,
   explain,
   serve,
 ]

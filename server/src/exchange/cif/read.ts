@@ -354,6 +354,12 @@ class BlockReader {
   /** The operations of the stated group in the setting that fits cell and atoms. */
   #fromTables(stated: StatedGroup | undefined, rows: Mat3, sites: readonly CifSite[]): readonly Operation[] {
     if (!stated) {
+      const symbol = this.#value([...HM_SYMBOLS, ...HALL_SYMBOLS])
+      if (symbol)
+        this.#fail(
+          symbol,
+          `${shown(symbol.text)} is no space group that is known here, and no operations are listed`,
+        )
       this.#remark(
         'loss',
         'neither operations nor a space group are stated: P 1 is assumed, every atom stands for itself',
@@ -631,7 +637,11 @@ export function elementIn(
 
 /** `F m -3 m`, `R -3 m :H`, `F d -3 m S`: the settings that a symbol can mean, by the choice that it names. */
 function settingsOfSymbol(text: string): readonly SpaceGroupSetting[] | undefined {
-  const symbol = text.replace(/\s+/g, ' ').trim()
+  // Remarks in braces are found in older files: R 3 c {hexagonal axes}.
+  const symbol = text
+    .replace(/\{.*\}/, '')
+    .replace(/\s+/g, ' ')
+    .trim()
   const named = namedSpaceGroup(symbol)
   if (!named) return undefined
   const mark = /(?::\s*|\s)([12hrsz])\s*(?:\(.*\))?$/i.exec(symbol)?.[1]?.toUpperCase()

@@ -168,6 +168,7 @@ function settle(
   const classes = new Map<number, number[]>()
   for (const i of sites.keys()) classes.set(rootOf(i), [...(classes.get(rootOf(i)) ?? []), i])
   const twice: string[] = []
+  const partial: CifSite[] = []
   for (const members of classes.values()) {
     const [major, ...others] = [...members].sort((p, q) => sites[q].occupancy - sites[p].occupancy || p - q)
     const site = sites[major]
@@ -190,12 +191,7 @@ function settle(
         message: `${site.label} has occupancy ${site.occupancy} and was left out`,
         place: site.place,
       })
-    } else if (isPartial(site))
-      remarks.push({
-        level: 'loss',
-        message: `partly occupied: ${share(site)} was kept, fully occupied`,
-        place: site.place,
-      })
+    } else if (isPartial(site)) partial.push(site)
     const away = split.get(major)
     if (away !== undefined)
       remarks.push({
@@ -204,6 +200,12 @@ function settle(
         place: site.place,
       })
   }
+  if (partial.length > 0)
+    remarks.push({
+      level: 'loss',
+      message: `partly occupied, kept as if fully: ${listed(partial.map(share))}`,
+      place: partial[0].place,
+    })
   if (twice.length > 0)
     remarks.push({
       level: 'note',
