@@ -13,6 +13,7 @@ import { registerCommands } from './commands.ts'
 import { registerNewFile } from './new-file.ts'
 import { registerPaste } from './paste.ts'
 import { registerReport } from './report.ts'
+import { registerRewrite } from './rewrite.ts'
 import { type CreateClient, Server } from './server.ts'
 import { StatusItem } from './status.ts'
 import { registerWalkthrough } from './walkthrough.ts'
@@ -47,6 +48,7 @@ export function activate(context: ExtensionContext, createClient: CreateClient):
   registerNewFile(context, server)
   registerCommands(context, { server, log, selector: SELECTOR })
   registerPaste(context, { server, log, selector: SELECTOR })
+  registerRewrite(context, { server, selector: SELECTOR })
   registerReport(context, { server, log, selector: SELECTOR })
   registerWalkthrough(context, { server })
   registerWorkspaceCheck(context, { server, log })

@@ -39,6 +39,14 @@ export interface RecommendedPathParams {
 /** The edit that writes the label book's own path into the document at the position; null where there is none. */
 export const RECOMMENDED_PATH = 'braggline/recommendedPath'
 
+export interface RewriteParams {
+  readonly uri: string
+  readonly version: number
+  readonly position: { readonly line: number; readonly character: number }
+}
+/** The edits that rewrite the document at the position for the supercell that it states; null where that cannot be done. */
+export const REWRITE_FOR_SUPERCELL = 'braggline/rewriteForSupercell'
+
 export type Triple = readonly [number, number, number]
 export interface TextRange {
   readonly start: { readonly line: number; readonly character: number }

@@ -1,5 +1,7 @@
 /** Wires the protocol to analysis and features. Knows the connection and nothing of disk or process. */
 import {
+  CodeActionTriggerKind,
+  type CodeAction,
   CancellationToken,
   type ClientCapabilities,
   CodeActionKind,
@@ -9,6 +11,7 @@ import {
   DocumentDiagnosticReportKind,
   type InitializeParams,
   type InitializeResult,
+  LSPErrorCodes,
   ResponseError,
   TextDocumentSyncKind,
   TextDocuments,
@@ -22,6 +25,13 @@ import { diagnostics } from './language/diagnostics.ts'
 import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
 import { pastedLattice } from './language/pasted-lattice.ts'
+import {
+  type Abilities,
+  type RefactorData,
+  refactorActions,
+  resolveRefactor,
+  supercellEdit,
+} from './language/refactor/index.ts'
 import { reportAnswer } from './language/report.ts'
 import { recommendedPathEdit } from './language/recommended-path.ts'
 import { DEFAULT_EDITOR_SETTINGS, readEditorSettings } from './language/settings.ts'
@@ -50,6 +60,8 @@ import {
   type PastedLatticeResult,
   RECOMMENDED_PATH,
   type RecommendedPathParams,
+  REWRITE_FOR_SUPERCELL,
+  type RewriteParams,
   REPORT,
   type ReportParams,
   type ReportResult,
@@ -90,6 +102,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   let rulePages = options.rulePages
   let announces = false
   let commands = false
+  let abilities: Abilities = { annotations: false, resolves: false }
   let columns: Columns = 'utf-16'
   let client: ClientCapabilities = {}
 
@@ -201,6 +214,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
     if (typeof pages === 'string') rulePages = pages
     announces = initializationOptions?.status === true
     commands = initializationOptions?.commands === true
+    abilities = abilitiesOf(capabilities)
     columns = columnsFor(capabilities.general?.positionEncodings)
     return {
       serverInfo: { name: 'Braggline', version: options.version },
@@ -213,7 +227,15 @@ export function startServer(connection: Connection, options: ServerOptions): voi
           save: true,
         },
         documentSymbolProvider: { label: 'Braggline' },
-        codeActionProvider: { codeActionKinds: [CodeActionKind.QuickFix, FIX_ALL] },
+        codeActionProvider: {
+          codeActionKinds: [
+            CodeActionKind.QuickFix,
+            FIX_ALL,
+            CodeActionKind.RefactorRewrite,
+            CodeActionKind.RefactorExtract,
+          ],
+          resolveProvider: abilities.resolves,
+        },
         ...NAVIGATION,
         ...EDITING,
         ...WRITING,
@@ -260,16 +282,23 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   // The features of the protocol.
   connection.onDocumentSymbol(about('symbols', [], snapshot => symbols(snapshot)))
   connection.onCodeAction(
-    about('fixes', [], (snapshot, { textDocument: { uri }, range, context }) =>
-      codeActions(snapshot, {
-        uri,
-        version: snapshot.version,
-        range,
-        shown: context.diagnostics,
-        only: context.only,
-      }),
-    ),
+    about('fixes', [], (snapshot, { textDocument: { uri }, range, context }) => {
+      const request = { uri, version: snapshot.version, range, only: context.only }
+      const fixes = codeActions(snapshot, { ...request, shown: context.diagnostics })
+      // The bulb that follows the cursor is for faults; refactorings are for who opens the menu.
+      if (context.triggerKind === CodeActionTriggerKind.Automatic && !context.only) return fixes
+      return [...fixes, ...refactorActions(snapshot, request, abilities)]
+    }),
   )
+  connection.onCodeActionResolve((action: CodeAction): CodeAction => {
+    const data = action.data as RefactorData | undefined
+    if (action.edit || typeof data?.uri !== 'string') return action
+    const edit = about('refactoring', undefined, (snapshot: Snapshot, asked: RefactorData) =>
+      resolveRefactor(snapshot, asked, abilities),
+    )(data)
+    if (edit) return { ...action, edit }
+    throw new ResponseError(LSPErrorCodes.RequestFailed, NOT_REFACTORED)
+  })
 
   serveWriting({ connection, about, capabilities: () => client, hasCommands: () => commands })
   serveNavigation({
@@ -315,6 +344,12 @@ export function startServer(connection: Connection, options: ServerOptions): voi
         if (!snapshot) return null
         return pastedLattice(text, snapshot, position ? snapshot.offsetOf(position) : 0)
       },
+    ),
+  )
+  connection.onRequest(
+    REWRITE_FOR_SUPERCELL,
+    about('rewrite for supercell', null, (snapshot, { version, position }: RewriteParams) =>
+      snapshot.version === version ? (supercellEdit(snapshot, snapshot.offsetOf(position)) ?? null) : null,
     ),
   )
   connection.onRequest(
@@ -378,6 +413,18 @@ function columnsFor(offered: readonly string[] = ['utf-16']): Columns {
   const known: readonly Columns[] = ['utf-16', 'utf-8', 'utf-32']
   return known.find(each => offered.includes(each)) ?? 'utf-16'
 }
+
+const NOT_REFACTORED =
+  'Nothing was changed: something that refers to the cell cannot be read, or stands behind an alias, or the text has changed.'
+
+const abilitiesOf = ({ textDocument, workspace }: ClientCapabilities): Abilities => ({
+  annotations:
+    workspace?.workspaceEdit?.documentChanges === true &&
+    workspace.workspaceEdit.changeAnnotationSupport !== undefined,
+  resolves:
+    textDocument?.codeAction?.dataSupport === true &&
+    textDocument.codeAction.resolveSupport?.properties.includes('edit') === true,
+})
 
 const SEVERITIES = new Set<unknown>(['off', 'info', 'warning', 'error'])
 

@@ -8,6 +8,8 @@ export interface Sum {
   readonly exact?: Fraction
   /** All numbers in it are plain decimals: the sum is written as one where it ends. */
   readonly decimal: boolean
+  /** All numbers in it are whole: a part of them may as well be a fraction. */
+  readonly whole: boolean
   /** The one number that it is, but for its sign. */
   readonly single?: { readonly number: NumberValue; readonly negative: boolean }
 }
@@ -32,6 +34,7 @@ export function sumOf(numbers: readonly NumberValue[], times: readonly Fraction[
     value: sum ? sum.p / sum.q : value,
     exact: sum,
     decimal: used.every(({ number }) => number.decimals !== undefined),
+    whole: used.every(({ number }) => number.decimals === 0),
     single: single ? { number: first.number, negative: first.by.p < 0 } : undefined,
   }
 }
@@ -43,9 +46,12 @@ export const plusWhole = (sum: Sum, whole: number): Sum => plus(sum, { p: whole,
 export function plus(sum: Sum, by: Fraction): Sum {
   if (by.p === 0) return sum
   const moved = sum.exact && exact.add(sum.exact, by)
-  // A whole number is no decimal that another one would have to be written like.
-  const decimal = sum.decimal && (by.q === 1 || sum.exact?.q !== 1)
-  return { value: moved ? moved.p / moved.q : sum.value + by.p / by.q, exact: moved, decimal }
+  return {
+    ...sum,
+    value: moved ? moved.p / moved.q : sum.value + by.p / by.q,
+    exact: moved,
+    single: undefined,
+  }
 }
 
 /** Relaxed structures have slightly negative fractions. */
@@ -69,9 +75,15 @@ const SIMPLE_DENOMINATOR = 24
 /**
  * The text of a sum.
  * @param stays whether the text of an expression that uses these lattice parameters still means the same.
+ * @param kind `fraction` writes parts of whole numbers as fractions, `1/2`; `length` as decimals.
  */
-export function writeSum(sum: Sum, stays: (uses: readonly ParameterName[]) => boolean): string {
-  const { single, value, decimal } = sum
+export function writeSum(
+  sum: Sum,
+  stays: (uses: readonly ParameterName[]) => boolean,
+  kind: 'fraction' | 'length' = 'length',
+): string {
+  const { single, value } = sum
+  const decimal = sum.decimal && !(sum.whole && kind === 'fraction')
   if (single && stays(single.number.uses))
     return single.negative ? negated(single.number) : single.number.text
   if (!sum.exact) return formatNumber(value, DIGITS)

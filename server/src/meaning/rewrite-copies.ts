@@ -60,7 +60,7 @@ function inFractions({ document, lattice }: Crystal, matrix: Mat3): Place | unde
     return itemsOf(position).map((_, j) => {
       const times = itemsOf(position).map((_, i) => toNew[i][j]!)
       const moved = plus(sumOf(itemsOf(position), times), offset[j] ?? NONE)
-      return writeSum(j < lattice!.dimension ? wrapped(moved) : moved, () => true)
+      return writeSum(j < lattice!.dimension ? wrapped(moved) : moved, () => true, 'fraction')
     })
   }
 }

@@ -246,8 +246,21 @@ function statedByType(
     if (stated) edits.push({ at: stated.at, text: written })
     else added.push([name, written])
   }
-  edits.push(...removals(text, block, removed))
-  return added.length > 0 ? [...edits, ...insertKeys(text, block, added)] : edits
+  return [
+    ...edits,
+    ...together(removals(text, block, removed), added.length > 0 ? insertKeys(text, block, added) : []),
+  ]
+}
+
+/** Keys inserted where others are cut off the end of a mapping in braces take their place. */
+function together(removed: readonly TextEdit[], inserted: readonly TextEdit[]): TextEdit[] {
+  const isInside = ({ at: [start, end] }: TextEdit, offset: number) => start < offset && offset < end
+  const apart = inserted.filter(({ at }) => !removed.some(edit => isInside(edit, at[0])))
+  const filled = removed.map(edit => {
+    const keys = inserted.flatMap(({ at, text }) => (isInside(edit, at[0]) ? [text.replace(/, $/, '')] : []))
+    return { at: edit.at, text: keys.map(key => `, ${key}`).join('') }
+  })
+  return [...filled, ...apart]
 }
 
 /** The entries of some keys; at the end of a mapping in braces, the comma before them goes too. */
@@ -279,8 +292,8 @@ function statedByVectors(task: Task): TextEdit[] {
     if (type) edits.push({ at: block.bravais.at, text: type })
   }
   // Beside vectors a parameter is a definition; one that nobody uses would only go stale.
-  if (!block.vectors) edits.push(...removals(text, block, unusedParameters(crystal)))
-  return added.length > 0 ? [...edits, ...insertKeys(text, block, added)] : edits
+  const unused = block.vectors ? [] : removals(text, block, unusedParameters(crystal))
+  return [...edits, ...together(unused, added.length > 0 ? insertKeys(text, block, added) : [])]
 }
 
 /** The stated parameters that no number of the document, and no frame, needs. */
@@ -369,7 +382,7 @@ function fractionEdits({ text, lattice, stays }: Task, position: VectorValue, ma
   const numbers = transpose(matrix).map((column, j) => {
     if (j >= lattice.dimension) return undefined
     const times = column.map((x, i) => (i < lattice.dimension ? rational(x) : NONE))
-    return writeSum(wrapped(sumOf(items, times)), stays)
+    return writeSum(wrapped(sumOf(items, times)), stays, 'fraction')
   })
   return replaceVector(text, position, numbers)
 }
@@ -407,7 +420,7 @@ function kEdits({ text, old, stays }: Task, vector: VectorValue, matrix: Mat3): 
   const numbers = items.map((_, i) => {
     if (i >= old.dimension) return undefined
     const times = items.map((_, j) => (j < old.dimension ? rational(matrix[i][j]) : NONE))
-    return writeSum(sumOf(items, times), stays)
+    return writeSum(sumOf(items, times), stays, 'fraction')
   })
   return replaceVector(text, vector, numbers)
 }
