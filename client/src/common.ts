@@ -10,6 +10,7 @@ import {
 } from 'vscode'
 import { CHECKED, type CheckedParams, type CheckedResult } from '../../server/src/protocol.ts'
 import { registerCommands } from './commands.ts'
+import { registerForms } from './forms.ts'
 import { registerNewFile } from './new-file.ts'
 import { registerPaste } from './paste.ts'
 import { registerReport } from './report.ts'
@@ -47,6 +48,7 @@ export function activate(context: ExtensionContext, createClient: CreateClient):
   context.subscriptions.push(log, status, startWithFirstFile(server))
   registerNewFile(context, server)
   registerCommands(context, { server, log, selector: SELECTOR })
+  registerForms(context, { server, log, selector: SELECTOR })
   registerPaste(context, { server, log, selector: SELECTOR })
   registerRewrite(context, { server, selector: SELECTOR })
   registerReport(context, { server, log, selector: SELECTOR })

@@ -285,3 +285,23 @@ export interface SkeletonsResult {
   readonly skeletons: readonly SkeletonOffer[]
 }
 export const SKELETON_LIST = 'braggline/skeletons'
+
+export interface FillParams extends DocumentParams {
+  /** Where the cursor stands: it says which crystal is meant while `document` is not known. */
+  readonly position?: { readonly line: number; readonly character: number }
+  /** The name is for messages. */
+  readonly form: { readonly name: string; readonly text: string }
+  /** Those gathered so far; null for one that is not there or must not be read. */
+  readonly partials: Readonly<Record<string, string | null>>
+}
+export interface FillResult {
+  readonly version: number
+  readonly document: number
+  readonly text?: string
+  /** Why there is no text, in a line, with the place in the form where it has one. */
+  readonly fault?: string
+  /** Partials that the form names and that are not gathered yet: ask again with them. */
+  readonly needs?: readonly string[]
+}
+/** A form filled with what is known of a crystal. Symmetry counts: ask once the text has been checked. */
+export const FILL = 'braggline/fill'

@@ -2,6 +2,7 @@
 import wasm from '@spglib/moyo-wasm/moyo_wasm_bg.wasm'
 import { BrowserMessageReader, BrowserMessageWriter, createConnection } from 'vscode-languageserver/browser'
 import { loadSymmetryLibrary } from './crystal/symmetry-library.ts'
+import { fillForm } from './exchange/forms/engine.ts'
 import { startServer } from './server.ts'
 import { type StartWorker, searchSymmetry } from './symmetry-service.ts'
 
@@ -31,5 +32,6 @@ loadSymmetryLibrary(wasm)
 const scope = self as unknown as DedicatedWorkerGlobalScope
 startServer(createConnection(new BrowserMessageReader(scope), new BrowserMessageWriter(scope)), {
   startWorker: searchBetween,
+  fillForm: async job => fillForm(job),
   version: BRAGGLINE_VERSION,
 })

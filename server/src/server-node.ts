@@ -2,6 +2,7 @@
 import { join } from 'node:path'
 import { pathToFileURL } from 'node:url'
 import { createConnection, ProposedFeatures } from 'vscode-languageserver/node'
+import { fillFormInThread } from './form-thread.ts'
 import { startServer } from './server.ts'
 import { loadSymmetryFromDisk } from './symmetry-node.ts'
 import { startSymmetryThread } from './symmetry-thread.ts'
@@ -11,6 +12,7 @@ declare const BRAGGLINE_VERSION: string
 function options() {
   return {
     startWorker: startSymmetryThread,
+    fillForm: fillFormInThread,
     version: BRAGGLINE_VERSION,
     rulePages: pathToFileURL(join(__dirname, '..', 'docs', 'rules')).href,
   }

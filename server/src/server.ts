@@ -19,11 +19,13 @@ import {
 import { TextDocument } from 'vscode-languageserver-textdocument'
 import { DEFAULT_SETTINGS, type Settings, Snapshot } from './analysis.ts'
 import type { Severities } from './checks/run.ts'
+import type { FillForm } from './exchange/forms/form.ts'
 import type { Severity } from './format/model.ts'
 import type { Columns } from './format/text.ts'
 import { diagnostics } from './language/diagnostics.ts'
 import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
+import { fillAnswer } from './language/forms.ts'
 import { pastedLattice } from './language/pasted-lattice.ts'
 import {
   type Abilities,
@@ -53,8 +55,10 @@ import {
   type CheckedResult,
   type DocumentParams,
   FIGURE,
+  FILL,
   type FigureParams,
   type FigureResult,
+  type FillParams,
   PASTED_LATTICE,
   type PastedLatticeParams,
   type PastedLatticeResult,
@@ -80,6 +84,8 @@ import { type StartWorker, WorkerSymmetry } from './symmetry-service.ts'
 export interface ServerOptions {
   readonly startWorker: StartWorker
   readonly version: string
+  /** Where it can be, in a thread that ends with it. */
+  readonly fillForm: FillForm
   /** URI of the folder with the pages of the rules; a client may name another in its initialization options. */
   readonly rulePages?: string
 }
@@ -401,6 +407,14 @@ export function startServer(connection: Connection, options: ServerOptions): voi
         return edits && { version, edits }
       },
     ),
+  )
+
+  connection.onRequest(
+    FILL,
+    about('fill a form', null, (snapshot, params: FillParams) => {
+      const date = new Date().toISOString().slice(0, 10)
+      return fillAnswer(snapshot, params, { fillForm: options.fillForm, version: options.version, date })
+    }),
   )
 
   connection.onShutdown(() => symmetry.dispose())

@@ -34,7 +34,11 @@ const SESSIONS = [
     workspace: 'desk',
     suites: ['findings', 'files', 'colours', 'commands', 'settings', 'process', 'pictures', 'zone-tab'],
   },
-  { name: 'panels', workspace: 'desk', suites: ['walkthrough', 'report', 'paste', 'workspace-check'] },
+  {
+    name: 'panels',
+    workspace: 'desk',
+    suites: ['walkthrough', 'report', 'paste', 'workspace-check', 'forms'],
+  },
   { name: 'craft', workspace: 'desk', suites: ['craft'] },
   // The demo folder itself: its files are what the view is for.
   { name: 'zone', workspace: '../../../demo', suites: ['zone-view'] },
@@ -42,7 +46,17 @@ const SESSIONS = [
   {
     name: 'browser',
     workspace: 'desk',
-    suites: ['findings', 'files', 'commands', 'settings', 'zone-tab', 'report', 'paste', 'workspace-check'],
+    suites: [
+      'findings',
+      'files',
+      'commands',
+      'settings',
+      'zone-tab',
+      'report',
+      'paste',
+      'workspace-check',
+      'forms',
+    ],
     browser: true,
   },
 ]

@@ -13,7 +13,7 @@ export function reportAnswer(snapshot: Snapshot, { uri, format }: ReportParams):
 }
 
 /** The last part of a URI as people write it. */
-function fileName(uri: string): string {
+export function fileName(uri: string): string {
   const last = uri.split(/[?#]/)[0].split('/').at(-1) ?? ''
   try {
     return decodeURIComponent(last)

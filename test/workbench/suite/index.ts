@@ -34,5 +34,6 @@ const suites: Record<string, () => Promise<unknown>> = {
   paste: () => import('./paste.test.ts'),
   walkthrough: () => import('./walkthrough.test.ts'),
   craft: () => import('./craft.test.ts'),
+  forms: () => import('./forms.test.ts'),
   asleep: () => import('./asleep.test.ts'),
 }
