@@ -14,6 +14,7 @@ import {
   LiquidError,
   Parser,
   RenderTag,
+  type TagToken,
   type Template,
   type Token,
   TokenKind,
@@ -74,6 +75,12 @@ class Paper implements Emitter {
     this.buffer += sayable(value)
     if (this.buffer.length > this.most)
       throw new FormProblem(`the text would be longer than ${this.most.toLocaleString('en')} characters`)
+  }
+
+  /** Of the text since then. */
+  dropLineBreak(since: number): void {
+    if (this.buffer.length > since && this.buffer.endsWith('\n'))
+      this.buffer = this.buffer.slice(0, this.buffer.endsWith('\r\n') ? -2 : -1)
   }
 }
 
@@ -205,19 +212,21 @@ class StrictFor extends ForTag {
 
 class BoundedRender extends RenderTag {
   override *render(context: Context, emitter: Emitter): Generator<unknown, void, unknown> {
-    yield* within(this, context, super.render(context, emitter))
+    yield* within(this, context, emitter, super.render(context, emitter))
   }
 }
 
 class BoundedInclude extends IncludeTag {
   override *render(context: Context, emitter: Emitter): Generator<unknown, void, unknown> {
-    yield* within(this, context, super.render(context, emitter))
+    yield* within(this, context, emitter, super.render(context, emitter))
   }
 }
 
+/** A partial ends with a line break because files do: the line that names it has one of its own. */
 function* within(
   tag: object,
   context: Context,
+  paper: Emitter,
   steps: Generator<unknown, void, unknown>,
 ): Generator<unknown, void, unknown> {
   const { engine } = context as FormContext
@@ -226,8 +235,10 @@ function* within(
   if (engine.depth >= DEEPEST)
     throw new FormProblem(`partials name each other more than ${DEEPEST} deep: do they run in a circle?`)
   engine.depth++
+  const start = paper.buffer.length
   try {
     yield* steps
+    if (paper instanceof Paper) paper.dropLineBreak(start)
   } finally {
     engine.depth--
   }
@@ -238,16 +249,14 @@ interface Trimmed extends Token {
   trimRight: number
 }
 
-/** A line that holds nothing but tags leaves no line behind. */
+/** A line that holds nothing but tags, none of which writes, leaves no line behind. */
 function takeTagLines(tokens: readonly TopLevelToken[]): void {
   for (let first = 0; first < tokens.length; first++) {
-    if (tokens[first].kind !== TokenKind.Tag) continue
-    let last = first
-    while (
-      tokens[last + 1]?.kind === TokenKind.Tag ||
-      (tokens[last + 2]?.kind === TokenKind.Tag && isBlank(tokens[last + 1]))
-    )
-      last += tokens[last + 1].kind === TokenKind.Tag ? 1 : 2
+    if (!isTag(tokens[first])) continue
+    let last = endOfComment(tokens, first)
+    while (isTag(tokens[last + 1]) || (isTag(tokens[last + 2]) && isBlank(tokens[last + 1])))
+      last = endOfComment(tokens, last + (isTag(tokens[last + 1]) ? 1 : 2))
+    const writes = tokens.slice(first, last + 1).some(token => WRITING.has((token as TagToken).name))
     const before = tokens[first - 1] as Trimmed | undefined
     const after = tokens[last + 1] as Trimmed | undefined
     const indent = before ? /(?:^|\n)([ \t]*)$/.exec(contents(before)) : ['', '']
@@ -255,7 +264,7 @@ function takeTagLines(tokens: readonly TopLevelToken[]): void {
     // Text that goes on to another token ends no line.
     const startsLine = indent && (!before || before.begin === 0 || contents(before).includes('\n'))
     const endsLine = rest && (!after || rest[0].endsWith('\n') || tokens.length === last + 2)
-    if (startsLine && endsLine) {
+    if (startsLine && endsLine && !writes) {
       if (before) before.trimRight = Math.max(before.trimRight, indent[1].length)
       for (const between of tokens.slice(first + 1, last) as unknown as Trimmed[])
         if (between.kind === TokenKind.HTML) between.trimLeft = between.end - between.begin
@@ -265,6 +274,20 @@ function takeTagLines(tokens: readonly TopLevelToken[]): void {
   }
 }
 
+const WRITING: ReadonlySet<string> = new Set([
+  ...['render', 'include', 'echo', 'cycle', 'increment', 'decrement', 'liquid', 'raw', 'endraw'],
+])
+
+/** A comment is one tag with all that is in it. */
+function endOfComment(tokens: readonly TopLevelToken[], start: number): number {
+  if ((tokens[start] as TagToken).name !== 'comment') return start
+  const end = tokens.findIndex(
+    (token, i) => i > start && isTag(token) && (token as TagToken).name === 'endcomment',
+  )
+  return end < 0 ? start : end
+}
+
+const isTag = (token: Token | undefined): boolean => token?.kind === TokenKind.Tag
 const contents = (token: Token): string => (token.kind === TokenKind.HTML ? token.getText() : '{')
 const isBlank = (token: Token): boolean => token.kind === TokenKind.HTML && /^[ \t]*$/.test(token.getText())
 
@@ -349,7 +372,8 @@ const isData = (from: object): boolean =>
 
 function absent(token: Token | undefined, reasons: Readonly<Record<string, string>>): Words {
   const text = token?.getText() ?? ''
-  const [, name] = /^\{\{-?\s*([\w.[\]-]+)/.exec(text) ?? /\bin\s+([\w.[\]-]+)/.exec(text) ?? []
+  const [, name] =
+    /^(?:\{\{-?|\{%-?\s*echo)\s*([\w.[\]-]+)/.exec(text) ?? /\bin\s+([\w.[\]-]+)/.exec(text) ?? []
   const [root] = name?.split(/[.[]/) ?? []
   const reason =
     root !== undefined && Object.hasOwn(reasons, root) ? reasons[root] : 'the lattice file does not give it'

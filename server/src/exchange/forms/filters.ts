@@ -156,7 +156,7 @@ export const OWN_FILTERS: readonly OwnFilter[] = [
     name: 'exponent',
     args: ': DECIMALS',
     help: 'With a power of ten of two digits at least, 6 decimals where none are said.',
-    example: ['{{ 1234.5 | exponent: 3 }}', '1.234e+03'],
+    example: ['{{ 1234 | exponent: 3 }}', '1.234e+03'],
     apply: exponent,
   },
   {
