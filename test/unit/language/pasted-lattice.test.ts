@@ -1,3 +1,4 @@
+import fc from 'fast-check'
 import { describe, expect, test } from 'vitest'
 import { Snapshot } from '../../../server/src/analysis.ts'
 import { determinant, multiply, transpose, type Mat3 } from '../../../server/src/crystal/vector.ts'
@@ -174,3 +175,31 @@ describe('into a file', () => {
 
 test('a text without vectors says why there is nothing', () =>
   expect(pasted('hello')).toEqual({ choices: [], reason: expect.stringMatching(/three rows/) }))
+
+test('any vectors with any digits: each way to write them is theirs within the rounding, and has no error', () => {
+  const part = fc.integer({ min: -2_000_000, max: 2_000_000 }).map(n => n / 1e6)
+  const rows = fc
+    .array(fc.array(part, { minLength: 3, maxLength: 3 }), { minLength: 3, maxLength: 3 })
+    .map(m => m.map((row, i) => row.map((x, j) => (i === j ? x + 4 : x))))
+  fc.assert(
+    fc.property(rows, fc.integer({ min: 0, max: 8 }), (m, digits) => {
+      const text = m.map(row => row.map(x => x.toFixed(digits)).join(' '))
+      const numbers = text.map(row => row.split(' ').map(Number)) as unknown as Mat3
+      fc.pre(Math.abs(determinant(numbers)) > 8)
+      for (const { text: file, detail, title } of pasted(`in Å\n${text.join('\n')}`).choices) {
+        const snapshot = snapshotOf(file)
+        expect(
+          snapshot.findings.filter(({ severity }) => severity === 'error'),
+          `${title}\n${file}`,
+        ).toEqual([])
+        const { lattice } = snapshot.documents[0].crystal
+        // A rounding moves a vector of up to 10.4 Å by under a unit of its last digit: its square by 21 of them.
+        const slack = 21 * 10 ** -digits * Number(digits >= 2) + 1e-6
+        if (detail.includes('by columns') || detail.includes('by type')) continue
+        for (const [i, x] of metric(lattice!.primitive).entries())
+          expect(Math.abs(x - metric(numbers)[i]), `${title}\n${file}`).toBeLessThan(slack)
+      }
+    }),
+    { numRuns: 60 },
+  )
+})
