@@ -156,8 +156,7 @@ class Layout {
   }
 
   private onOneLine(start: number, end: number): boolean {
-    const feed = this.text.indexOf('\n', start)
-    return feed < 0 || feed >= end
+    return !this.text.slice(start, end).includes('\n')
   }
 
   private skipBlanks(offset: number): number {
@@ -424,7 +423,7 @@ class Layout {
       }
       return
     }
-    if (!isList(path, ROWS)) return
+    if (!isList(path, ROWS) || token.items.length > MOST_ROWS) return
     const values = token.items.flatMap(({ value }) => (value ? [value] : []))
     const lines = new Set(values.map(value => lineStart(this.text, this.back(value.offset))))
     if (lines.size === values.length) this.alignRows(values.map(value => this.row(value)))
@@ -556,6 +555,16 @@ class Layout {
   private moveFollowers(): void {
     if (this.followers.length === 0) return
     this.changed = this.changedWithin()
+    /** How far each bracket moves; many lines may stand in one. */
+    const moves = new Map<number, { readonly column: number; readonly by: number }>()
+    const moveOf = (open: number) => {
+      const known = moves.get(open)
+      if (known) return known
+      const column = this.columnOf(open)
+      const move = { column, by: this.newColumn(open) - column }
+      moves.set(open, move)
+      return move
+    }
     this.followers.sort((a, b) => a.first - b.first)
     for (const { first, base, open, shift } of this.followers) {
       const start = lineStart(this.text, first)
@@ -566,8 +575,8 @@ class Layout {
       const old = first - start
       let moved = old + shift
       if (open !== undefined) {
-        const column = this.columnOf(open)
-        if (old >= column) moved = old + this.newColumn(open) - column
+        const { column, by } = moveOf(open)
+        if (old >= column) moved = old + by
       }
       this.indents.set(first, old > base.old ? Math.max(moved, base.new + 1) : Math.max(0, moved))
     }
@@ -600,13 +609,9 @@ class Layout {
       let moved = old === 0 && beside.old > 0 ? 0 : Math.max(0, old + beside.new - beside.old)
       // Straight below a text in a block a comment further in would be part of it.
       const last = ends[ended - 1]
-      if (last && /^\s*$/.test(this.withoutComments(last[0], first))) moved = Math.min(moved, last[1])
+      if (last && !((lines[next - 1] ?? 0) >= last[0])) moved = Math.min(moved, last[1])
       this.gaps.set(first, { start, end: first, text: ' '.repeat(moved), structural: true })
     }
-  }
-
-  private withoutComments(from: number, to: number): string {
-    return this.text.slice(from, to).replace(/^[ \t]*#.*$/gm, '')
   }
 
   /** Comments at the ends of neighbouring lines that stand below each other go on doing so. */
@@ -731,6 +736,8 @@ function startOfLine(text: string, line: number): number {
   return start
 }
 
+/** A matrix in brackets has no more, with what may follow its last comma. */
+const MOST_ROWS = 4
 const ROWS = [['lattice', 'vectors'], ['supercell']]
 const ATOMS = [['atoms']]
 const isList = (path: readonly string[], wanted: readonly (readonly string[])[]): boolean =>
