@@ -28,7 +28,7 @@ export function serveWriting({ connection, about, capabilities, hasCommands }: S
   )
   connection.onCompletion(
     about('completion', [], (snapshot, { position }) =>
-      completion(snapshot, position, abilitiesOf(capabilities())),
+      completion(snapshot, position, abilitiesOf(capabilities(), hasCommands())),
     ),
   )
   connection.onCompletionResolve(resolved)
@@ -50,12 +50,14 @@ export function serveWriting({ connection, about, capabilities, hasCommands }: S
   )
 }
 
-function abilitiesOf({ textDocument }: ClientCapabilities): Abilities {
+/** A client that has the extension's commands is the extension, in an editor whose own commands are known. */
+function abilitiesOf({ textDocument }: ClientCapabilities, hasCommands: boolean): Abilities {
   const item = textDocument?.completion?.completionItem
   return {
     snippets: item?.snippetSupport === true,
     insertReplace: item?.insertReplaceSupport === true,
     labelDetails: item?.labelDetailsSupport === true,
     indents: item?.insertTextModeSupport !== undefined,
+    asksAgain: hasCommands,
   }
 }

@@ -43,6 +43,7 @@ const SESSIONS = [
   // The demo folder itself: its files are what the view is for.
   { name: 'zone', workspace: '../../../demo', suites: ['zone-view'] },
   { name: 'elsewhere', workspace: 'elsewhere', suites: ['asleep'] },
+  { name: 'writing', workspace: 'elsewhere', suites: ['writing'] },
   {
     name: 'browser',
     workspace: 'desk',

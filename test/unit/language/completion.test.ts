@@ -14,7 +14,13 @@ import { filledIn } from '../../../server/src/language/skeletons.ts'
 import { findingsOf, snapshotOf } from '../checks/harness.ts'
 import { atCursor, DEMO_FILES } from './marks.ts'
 
-const MODERN: Abilities = { snippets: true, insertReplace: true, labelDetails: true, indents: true }
+const MODERN: Abilities = {
+  snippets: true,
+  insertReplace: true,
+  labelDetails: true,
+  indents: true,
+  asksAgain: true,
+}
 
 function at(text: string, offset: number, abilities = MODERN): CompletionItem[] {
   const snapshot = snapshotOf(text)
@@ -68,6 +74,12 @@ describe('keys', () => {
   test('the parameters that the type leaves free come first', () =>
     expect(labels('lattice:\n  bravais: mP\n  $0\n').slice(0, 3)).toEqual(['a', 'b', 'c']))
 
+  test('none that has no place in the plane, or in space', () => {
+    expect(labels('lattice: {bravais: hp, a: 2.46}\n$0')).not.toContain('space-group')
+    expect(labels('lattice:\n  bravais: hp\n  $0\n')).toContain('height')
+    expect(labels('lattice:\n  bravais: hP\n  $0\n')).not.toContain('height')
+  })
+
   test('in braces: without a line break, and no skeleton of a block', () =>
     expect(taken('lattice: {bravais: cP, $0}\n', 'a')).toBe('lattice: {bravais: cP, a: }\n'))
 
@@ -84,6 +96,15 @@ describe('keys', () => {
     expect(labels('atoms:\n  - Pb: {$0}\n')).toEqual(['at', 'name'])
     expect(labels('points:\n  Q: {between: [Γ, X], $0}\n')).toEqual(['at'])
     expect(labels('mesh:\n  coarse:\n    $0\n')).toEqual(['divisions', 'spacing', 'shift'])
+  })
+
+  test('a key whose values are listed opens their list', () => {
+    const item = offered('lat$0').find(({ label }) => label === 'lattice')
+    expect(item?.command).toBeDefined()
+    expect(taken('lat$0', 'lattice')).toBe('lattice:\n  bravais: ')
+    expect(taken('lat$0', 'lattice', { ...MODERN, asksAgain: false })).toBe(
+      'lattice:\n  bravais: cF\n  a: 5.43',
+    )
   })
 
   test('the long text comes by resolving', () => {

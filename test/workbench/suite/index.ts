@@ -27,6 +27,7 @@ const suites: Record<string, () => Promise<unknown>> = {
   settings: () => import('./settings.test.ts'),
   process: () => import('./process.test.ts'),
   pictures: () => import('./pictures.test.ts'),
+  writing: () => import('./writing.test.ts'),
   'zone-view': () => import('./zone-view.test.ts'),
   'zone-tab': () => import('./zone-tab.test.ts'),
   report: () => import('./report.test.ts'),

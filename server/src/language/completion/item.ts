@@ -18,12 +18,17 @@ export interface Abilities {
   readonly labelDetails: boolean
   /** It indents further lines of an item as it is told. */
   readonly indents: boolean
+  /** It can be told to open its list again, which it does by the command `AGAIN`. */
+  readonly asksAgain: boolean
 }
+const AGAIN = 'editor.action.triggerSuggest'
+
 export const NO_ABILITIES: Abilities = {
   snippets: false,
   insertReplace: false,
   labelDetails: false,
   indents: false,
+  asksAgain: false,
 }
 
 export interface Asked {
@@ -47,6 +52,8 @@ export interface Offer {
   /** What is typed to find it, where that is not its label. */
   readonly filter?: string
   readonly preselect?: boolean
+  /** What follows is again a word from a list. */
+  readonly again?: boolean
   /** What `resolve` makes the documentation from. */
   readonly about?: string
 }
@@ -78,6 +85,7 @@ export function items(
       ...(offer.filter ? { filterText: offer.filter } : {}),
       ...(offer.preselect ? { preselect: true } : {}),
       ...(offer.about ? { data: offer.about } : {}),
+      ...(offer.again && abilities.asksAgain ? { command: { title: 'Suggest', command: AGAIN } } : {}),
       insertTextFormat: snippet ? InsertTextFormat.Snippet : InsertTextFormat.PlainText,
       ...(abilities.indents && newText.includes('\n')
         ? { insertTextMode: InsertTextMode.adjustIndentation }

@@ -2,7 +2,7 @@
 /** Keys in their mapping, with what they mean and their unit; skeletons of blocks and of whole files. */
 import { type CompletionItem, CompletionItemKind } from 'vscode-languageserver-types'
 import { BRAVAIS, type BravaisType } from '../../crystal/bravais.ts'
-import { describeValue, findKey, keyName, keysBelow } from '../../format/keys.ts'
+import { describeValue, findKey, type KeyRow, keyName, keysBelow, type ValueKind } from '../../format/keys.ts'
 import type { Unit } from '../../crystal/units.ts'
 import { UNITS } from '../../crystal/units.ts'
 import { latticeLines, SETTINGS, SKELETONS, VECTOR_BLOCKS } from '../skeletons.ts'
@@ -52,29 +52,45 @@ const ROW: Offer = {
 }
 
 function keys(asked: Asked, above: string): Offer[] {
-  const { present, hasColon, style } = asked.place
-  const wanted = above === 'lattice' ? wantedParameters(asked) : undefined
+  const { place, abilities } = asked
+  const { present } = place
+  const type = statedType(asked.snapshot.text, asked.offset)
+  const wanted = above === 'lattice' && type ? new Set<string>(BRAVAIS[type].free.flat()) : undefined
+  const elsewhere = type && ELSEWHERE[BRAVAIS[type].dimension]
   return keysBelow(above)
-    .filter(row => keyName(row) !== '*' && !present.has(keyName(row)))
-    .map(row => {
-      const name = keyName(row)
-      const value = style === 'flow' ? undefined : (row.skeleton ?? undefined)
-      return {
-        label: name,
-        kind: CompletionItemKind.Property,
-        detail: describeValue(row),
-        text: hasColon ? name : `${name}: `,
-        ...(hasColon || !value ? {} : { snippet: `${name}:${value}` }),
-        rank: row.required ? 1 : wanted ? (wanted.has(name) ? 2 : 4) : 3,
-        about: `key:${row.path}`,
-      }
-    })
+    .filter(row => keyName(row) !== '*' && !present.has(keyName(row)) && !elsewhere?.has(row.path))
+    .map(row => ({
+      label: keyName(row),
+      kind: CompletionItemKind.Property,
+      detail: describeValue(row),
+      rank: row.required ? 1 : wanted ? (wanted.has(keyName(row)) ? 2 : 4) : 3,
+      about: `key:${row.path}`,
+      ...written(row, place, abilities.asksAgain),
+    }))
 }
 
-/** The parameters that the stated type leaves free, in any of its settings. */
-function wantedParameters({ snapshot: { text }, offset, place: { names } }: Asked): Set<string> | undefined {
-  const type = names.length > 0 ? statedType(text, offset) : undefined
-  return type && new Set<string>(BRAVAIS[type].free.flat())
+/** Kinds of values that completion lists. */
+const LISTED = new Set<ValueKind>(['word', 'path', 'space-group'])
+
+/** What a key's item writes: with the list of its values where that opens by itself, else with a skeleton. */
+function written(
+  row: KeyRow,
+  { hasColon, style }: Asked['place'],
+  asksAgain: boolean,
+): Pick<Offer, 'text' | 'snippet' | 'again'> {
+  const name = keyName(row)
+  if (hasColon) return { text: name }
+  if (asksAgain && row.path === 'lattice' && style === 'block')
+    return { text: 'lattice:\n  bravais: ', again: true }
+  if (asksAgain && LISTED.has(row.kind)) return { text: `${name}: `, again: true }
+  const text = `${name}: `
+  return style === 'flow' || !row.skeleton ? { text } : { text, snippet: `${name}:${row.skeleton}` }
+}
+
+/** Keys that have no place beside a type of so many dimensions. */
+const ELSEWHERE: Record<2 | 3, ReadonlySet<string>> = {
+  2: new Set(['space-group', 'lattice.c', 'lattice.alpha', 'lattice.beta']),
+  3: new Set(['lattice.height']),
 }
 
 /** The type that the document around an offset states, as the text has it. */
