@@ -1,4 +1,4 @@
-import type { DecodedFile, Fix, LatticeDocument, Severity, Span } from '../format/model.ts'
+import type { DecodedFile, Fix, Foundation, LatticeDocument, Severity, Span } from '../format/model.ts'
 import type { Crystal } from '../meaning/crystal.ts'
 
 /** What a rule reads: one document, what it means, and the text for the sake of fixes. */
@@ -38,6 +38,8 @@ export interface Check<F = unknown> {
   readonly summary: string
   /** Why it matters to a job. */
   readonly why: string
+  /** Keys on which its judgement rests: where the value of one cannot be read, the rule says nothing. */
+  readonly needs?: readonly Foundation[]
   /** A file that gives exactly this finding, and one that is clean. */
   readonly wrong: string
   readonly right: string

@@ -41,6 +41,7 @@ const judged = (finding: Reported): Reported =>
   finding.fixes ? { ...finding, fixes: finding.fixes.map(fix => ({ ...fix, safe: false })) } : finding
 
 function findingsOf(check: Check, context: Context): Reported[] {
+  if (check.needs?.some(key => context.document.unread.has(key))) return []
   try {
     return [...check.run(context)].map(finding => ({ severity: check.severity, ...finding, rule: check.id }))
   } catch (error) {

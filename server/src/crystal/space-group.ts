@@ -40,6 +40,11 @@ export const LAST_SPACE_GROUP = 230
  * `Fm3m`. Case does not matter. Undefined where it names none. The symmetry library must have been started.
  */
 export function namedSpaceGroup(name: number | string): NamedSpaceGroup | undefined {
+  const both = typeof name === 'string' ? SYMBOL_AND_NUMBER.exec(name) : null
+  if (both) {
+    const group = namedSpaceGroup(both[1])
+    return group?.number === Number(both[2]) ? group : undefined
+  }
   const numeric = typeof name === 'number' ? name : /^\s*\d+\s*$/.test(name) ? Number(name) : undefined
   if (numeric !== undefined) {
     if (!Number.isInteger(numeric) || numeric < 1 || numeric > LAST_SPACE_GROUP) return undefined
@@ -49,6 +54,9 @@ export function namedSpaceGroup(name: number | string): NamedSpaceGroup | undefi
   const settings = index().get(spelled) ?? index().get(spelled.replace(/[hrsz]$/, ''))
   return settings && describe(settings[0].number, settings)
 }
+
+/** `Fd-3m (227)`, as papers and databases write it. */
+export const SYMBOL_AND_NUMBER = /^\s*(.*\S)\s*\(\s*(?:no\.?\s*)?(\d+)\s*\)\s*$/i
 
 /** Every symbol of the standard settings, for "did you mean". The symmetry library must have been started. */
 export const spaceGroupSymbols = (): string[] =>

@@ -12,6 +12,7 @@ import {
   type DecodedFile,
   type Entry,
   type LatticeBlock,
+  type Foundation,
   type LatticeDocument,
   type MeshBlock,
   type NumberValue,
@@ -128,6 +129,12 @@ class DocumentReader {
       return entry(name, items && { items })
     }
     const frames = get<Block>('frames')
+    const unread = new Set<Foundation>()
+    for (const name of ['unit', 'labels', 'time-reversal'] as const)
+      if (keys.has(name) && values.get(name) === undefined) unread.add(name)
+    for (const name of ['atoms', 'points'] as const)
+      if (keys.has('frames') && (!frames || (frames.keys.has(name) && !partOf(frames, name))))
+        unread.add(`frames.${name}`)
     const frame = <T extends string>(name: string) => frames && partOf<Sourced<T>>(frames, name)?.value
     return {
       number,
@@ -159,6 +166,7 @@ class DocumentReader {
       meshEntry: keys.get('mesh'),
       supercell: entry('supercell', get<MatrixValue>('supercell')),
       checks: get<Severities>('checks') ?? new Map(),
+      unread,
       checksEntry: keys.get('checks'),
       keys,
       problems: this.problems(),

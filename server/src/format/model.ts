@@ -174,6 +174,9 @@ export interface Allowance {
   readonly rules: readonly Sourced<string>[]
 }
 
+/** Keys that say how other values are meant. */
+export type Foundation = 'unit' | 'labels' | 'time-reversal' | 'frames.atoms' | 'frames.points'
+
 export interface LatticeDocument {
   /** Ordinal among the file's documents that hold anything, from 1. */
   readonly number: number
@@ -208,6 +211,8 @@ export interface LatticeDocument {
   /** Severity by rule id from `checks:`, with the span of the id itself. */
   readonly checks: ReadonlyMap<string, Sourced<Severity | 'off'> & { readonly key: Span }>
   readonly checksEntry?: Entry
+  /** Of the keys on which the meaning of other values rests, those whose own value could not be read: the default stands in. */
+  readonly unread: ReadonlySet<Foundation>
   /** Top-level keys that stand in the document. */
   readonly keys: ReadonlyMap<string, Entry>
   /** Problems of form inside this document. */

@@ -20,6 +20,7 @@ interface Facts {
 export const atomNearlySpecial: Check<Facts> = {
   id: 'atom-nearly-special',
   severity: 'warning',
+  needs: ['unit', 'frames.atoms'],
   summary:
     'An atom misses a more symmetric place by the rounding of a fraction, which lowers the symmetry of the crystal.',
   why: 'A program finds fewer symmetry operations: more k-points to compute, split degeneracies, and forces that should vanish.',

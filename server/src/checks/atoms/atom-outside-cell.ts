@@ -18,6 +18,7 @@ const SAME = 1e-9
 export const atomOutsideCell: Check<Facts> = {
   id: 'atom-outside-cell',
   severity: 'info',
+  needs: ['frames.atoms'],
   summary: 'A fractional coordinate of an atom lies outside −1/2 to 3/2.',
   why: 'It is an equivalent of a place inside the cell; far outside, it is often a slip or a length.',
   wrong: 'lattice: {bravais: cP, a: 4.12}\natoms:\n  - Cs: [0, 0, 0]\n  - Cl: [5/2, 1/2, 1/2]\n',

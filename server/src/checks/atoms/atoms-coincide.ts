@@ -16,6 +16,7 @@ interface Facts {
 export const atomsCoincide: Check<Facts> = {
   id: 'atoms-coincide',
   severity: 'error',
+  needs: ['unit', 'frames.atoms'],
   summary: 'Two atoms are at one place, lattice translations counted.',
   why: 'No crystal is like that: a program stops, or computes an atom too many.',
   wrong: 'lattice: {bravais: cP, a: 4.12}\natoms:\n  - Cs: [0, 0, 0]\n  - Cl: [1, 0, 0]\n',

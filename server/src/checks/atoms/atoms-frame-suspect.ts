@@ -2,8 +2,7 @@ import type { AtomFrame, Fix } from '../../format/model.ts'
 import { insertKeys } from '../../format/edits.ts'
 import { length } from '../../meaning/wording.ts'
 import type { Check, Context, Finding } from '../check.ts'
-import { coincidences } from './contacts.ts'
-import { moreSymmetric, suspectedFrame } from './suspicions.ts'
+import { suspectedFrame, suspectedPrimitive } from './suspicions.ts'
 
 interface Facts {
   readonly frame: AtomFrame
@@ -18,6 +17,7 @@ const MEANING: Record<AtomFrame, string> = {
 export const atomsFrameSuspect: Check<Facts> = {
   id: 'atoms-frame-suspect',
   severity: 'warning',
+  needs: ['unit', 'frames.atoms'],
   summary: 'The atoms’ coordinates make sense in another frame than the one in force.',
   why: 'Lengths read as fractions, or fractions as lengths, put the atoms of another crystal into the cell.',
   wrong:
@@ -51,13 +51,7 @@ function* byDistances(context: Context): Iterable<Finding<Facts>> {
 /** Fractions of the primitive cell under a centred lattice: the distances may be those of a solid, the symmetry is lost. */
 function* bySymmetry(context: Context): Iterable<Finding<Facts>> {
   const { crystal, document } = context
-  const { lattice, atoms } = crystal
-  if (!lattice || lattice.centring === 'P' || document.framesEntry?.atoms || atoms.length < 2) return
-  if (!crystal.atomsComplete || coincidences(crystal).length > 0 || suspectedFrame(crystal)) return
-  const other = moreSymmetric(
-    crystal,
-    atoms.map(({ stated }) => stated),
-  )
+  const other = suspectedPrimitive(crystal)
   if (!other) return
   yield {
     at: document.atoms!.key,

@@ -6,7 +6,7 @@ import type { Check, Finding } from '../check.ts'
 import { contradictsVectors } from '../lattice/kinship.ts'
 import { distinctAtoms, nameOf } from './contacts.ts'
 import { few } from './few.ts'
-import { suspectedFrame, suspectedUnit } from './suspicions.ts'
+import { suspectedFrame, suspectedPrimitive, isScaleSuspected } from './suspicions.ts'
 
 interface Facts {
   /** Ordinals in the file, from 0; the same for an atom and its own copy. */
@@ -22,14 +22,17 @@ const CLOSEST = 0.6
 export const atomsTooClose: Check<Facts> = {
   id: 'atoms-too-close',
   severity: 'warning',
+  needs: ['unit', 'frames.atoms'],
   summary: 'Two atoms are nearer to each other than 0.6 times the sum of their covalent radii.',
   why: 'No bond is that short: a coordinate, the cell or the unit is wrong.',
   wrong: 'lattice: {bravais: cP, a: 4.12}\natoms:\n  - Cs: [0, 0, 0]\n  - Cl: [0.3, 0.2, 0.1]\n',
   right: 'lattice: {bravais: cP, a: 4.12}\natoms:\n  - Cs: [0, 0, 0]\n  - Cl: [1/2, 1/2, 1/2]\n',
   *run({ crystal }) {
-    if (contradictsVectors(crystal) || suspectedFrame(crystal) || suspectedUnit(crystal)) return // They say why.
+    if (contradictsVectors(crystal) || suspectedFrame(crystal) || isScaleSuspected(crystal)) return // They say why.
+    const pairs = closePairs(crystal)
+    if (pairs.length === 0 || suspectedPrimitive(crystal)) return
     const worst = new Map<PlacedAtom, Close>()
-    for (const close of closePairs(crystal)) {
+    for (const close of pairs) {
       const known = worst.get(close.second)
       if (!known || close.distance / close.expected < known.distance / known.expected)
         worst.set(close.second, close)

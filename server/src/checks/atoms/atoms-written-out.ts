@@ -14,6 +14,7 @@ interface Facts {
 export const atomsWrittenOut: Check<Facts> = {
   id: 'atoms-written-out',
   severity: 'error',
+  needs: ['unit', 'frames.atoms'],
   summary: 'The atoms are listed with their centring copies, which the lattice already has.',
   why: 'Atoms are the basis of the crystal, one copy at each lattice point: written out, every atom is there several times.',
   wrong: 'lattice: {bravais: cI, a: 2.87}\natoms:\n  - Fe: [0, 0, 0]\n  - Fe: [1/2, 1/2, 1/2]\n',

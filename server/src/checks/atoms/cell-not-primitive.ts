@@ -7,12 +7,14 @@ import {
   completeCell,
 } from '../../crystal/bravais.ts'
 import { determinant, IDENTITY, inverse, type Mat3, mapMatrix, multiply } from '../../crystal/vector.ts'
-import type { Fix } from '../../format/model.ts'
+import type { Fix, Span } from '../../format/model.ts'
 import type { Symmetry } from '../../crystal/symmetry.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import { type Cell, restate } from '../../meaning/rewrite.ts'
 import { count } from '../../meaning/wording.ts'
 import type { Check, Context } from '../check.ts'
+import { diagnose } from '../points/diagnosis.ts'
+import { POINTS_OF_CENTRED_CELL } from '../points/point-frame-suspect.ts'
 import { coincidences } from './contacts.ts'
 
 interface Facts {
@@ -23,6 +25,7 @@ interface Facts {
 export const cellNotPrimitive: Check<Facts> = {
   id: 'cell-not-primitive',
   severity: 'warning',
+  needs: ['frames.atoms'],
   summary: 'The atoms repeat inside the stated cell.',
   why: 'Its k-fractions refer to a smaller zone than that of the crystal: paths and labels are other lines, and bands come folded.',
   wrong: 'lattice: {bravais: cP, a: 2.87}\natoms:\n  - Fe: [0, 0, 0]\n  - Fe: [1/2, 1/2, 1/2]\n',
@@ -38,6 +41,8 @@ export const cellNotPrimitive: Check<Facts> = {
       message: `The atoms repeat: the stated cell holds ${fold} primitive cells of ${count(primitivePositions.length, 'atom')}, and its zone is ${fold} times smaller than the crystal’s. Where like atoms differ (magnetic moments), give them names.`,
       facts: { fold },
       fixes: fixesFor(context, symmetry),
+      // Points of the centred lattice say the same of its cell.
+      hides: [{ rule: 'point-frame-suspect', subject: POINTS_OF_CENTRED_CELL }],
     }
   },
 }
@@ -51,14 +56,24 @@ function fixesFor({ crystal, text }: Context, symmetry: Symmetry): Fix[] {
     : cell.centring === 'P'
       ? ''
       : ` (centring ${cell.centring})`
-  return [
-    {
-      title: `State the primitive cell${stated}, with all that refers to it`,
-      safe: false,
-      edits: restated.edits,
-    },
-  ]
+  const edits = pointsAreThere(crystal, cell)
+    ? restated.edits.filter(({ at }) => !isInPoints(at, crystal))
+    : restated.edits
+  return [{ title: `State the primitive cell${stated}, with all that refers to it`, safe: false, edits }]
 }
+
+/** The labels fit the centred lattice already, as the numbers stand: they are not to be carried over. */
+function pointsAreThere(crystal: Crystal, { centring }: Cell): boolean {
+  const { whole } = diagnose(crystal)
+  return (
+    whole?.kind === 'centring' &&
+    whole.centring === centring &&
+    whole.frame === crystal.document.frames.points
+  )
+}
+
+const isInPoints = ([start, end]: Span, { document: { points } }: Crystal): boolean =>
+  points !== undefined && start >= points.at[0] && end <= points.at[1]
 
 /** The stated cell with a centring, where that is the crystal's lattice; else the lattice's own type, or its own vectors. */
 function primitiveCell(crystal: Crystal, { primitiveFromStated, primitive }: Symmetry): Cell | undefined {

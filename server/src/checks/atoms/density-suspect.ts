@@ -5,7 +5,7 @@ import type { Check } from '../check.ts'
 import { contradictsVectors } from '../lattice/kinship.ts'
 import { isWrittenOut } from './atoms-written-out.ts'
 import { distinctAtoms } from './contacts.ts'
-import { suspectedFrame, suspectedUnit } from './suspicions.ts'
+import { suspectedFrame, isScaleSuspected } from './suspicions.ts'
 import { WIDE_GAP } from './vacuum-undeclared.ts'
 
 interface Facts {
@@ -24,6 +24,7 @@ const LOOSEST_CUBES = 1.3
 export const densitySuspect: Check<Facts> = {
   id: 'density-suspect',
   severity: 'warning',
+  needs: ['unit'],
   summary: 'The volume per atom is one that no solid has: under 4 or over 80 Å³.',
   why: 'Atoms are missing or there are too many of them, or a length of the cell is wrong.',
   wrong:
@@ -37,7 +38,7 @@ export const densitySuspect: Check<Facts> = {
     if (
       contradictsVectors(crystal) ||
       suspectedFrame(crystal) ||
-      suspectedUnit(crystal) ||
+      isScaleSuspected(crystal) ||
       isWrittenOut(crystal)
     )
       return // They say why.

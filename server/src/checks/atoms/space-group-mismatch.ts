@@ -2,9 +2,13 @@ import {
   groupOnLattice,
   type NamedSpaceGroup,
   namedSpaceGroup,
+  SYMBOL_AND_NUMBER,
   spaceGroupSymbols,
 } from '../../crystal/space-group.ts'
+import { insertKeys, removeEntry } from '../../format/edits.ts'
+import type { Fix } from '../../format/model.ts'
 import { nearest } from '../../format/nearest.ts'
+import { formatNumber } from '../../format/numbers.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import { length } from '../../meaning/wording.ts'
 import type { SymmetryOutcome } from '../../meaning/workshop.ts'
@@ -20,6 +24,7 @@ interface Facts {
 export const spaceGroupMismatch: Check<Facts> = {
   id: 'space-group-mismatch',
   severity: 'error',
+  needs: ['frames.atoms'],
   summary: 'The claimed space group is not the one that lattice and atoms have.',
   why: 'Either the claim or a coordinate is wrong; operations and k-point weights follow the atoms, not the claim.',
   wrong:
@@ -38,6 +43,19 @@ export const spaceGroupMismatch: Check<Facts> = {
 }
 
 function unknown(claim: number | string, at: Finding['at']): Finding<Facts> {
+  const both = typeof claim === 'string' ? SYMBOL_AND_NUMBER.exec(claim) : null
+  const [bySymbol, byNumber] = both ? [namedSpaceGroup(both[1]), namedSpaceGroup(Number(both[2]))] : []
+  if (bySymbol && byNumber)
+    return {
+      at,
+      message: `Symbol and number are not of one space group: ${both![1]} is number ${bySymbol.number}, and ${byNumber.number} is ${byNumber.symbol}.`,
+      facts: {},
+      fixes: [bySymbol, byNumber].map(group => ({
+        title: `State ${nameOf(group)}`,
+        safe: false,
+        edits: [{ at, text: nameOf(group) }],
+      })),
+    }
   const near = typeof claim === 'string' ? nearest(claim, spaceGroupSymbols()) : undefined
   const meant = near
     ? `; did you mean ${near}?`
@@ -60,7 +78,8 @@ function* againstLattice({ crystal, document }: Context, group: NamedSpaceGroup)
   }
 }
 
-function* againstAtoms({ crystal, document }: Context, group: NamedSpaceGroup): Iterable<Finding<Facts>> {
+function* againstAtoms(context: Context, group: NamedSpaceGroup): Iterable<Finding<Facts>> {
+  const { crystal, document } = context
   const claim = document.spaceGroup!
   if (coincidences(crystal).length > 0) return // Said there.
   const found = groupIn(crystal.symmetryOutcome)
@@ -71,12 +90,32 @@ function* againstAtoms({ crystal, document }: Context, group: NamedSpaceGroup): 
   }
   const { number, symbol } = found
   const text = typeof claim.value === 'number' ? String(number) : symbol
+  const tolerance = toleranceFor(crystal, group)
+  const within = tolerance
+    ? ` Within ${length(tolerance, crystal.unit)} it would be: state that as \`tolerance\`, or coordinates with more digits.`
+    : ''
   yield {
     at: claim.at,
-    message: `Lattice and atoms have the space group ${symbol} (${number}) within ${length(crystal.tolerance, crystal.unit, 6)}, not ${nameOf(group)}.${within(crystal, group)}`,
+    message: `Lattice and atoms have the space group ${symbol} (${number}) within ${length(crystal.tolerance, crystal.unit, 6)}, not ${nameOf(group)}.${within}`,
     facts: { claimed: group.number, found: number },
-    fixes: [{ title: `State the one found, ${text}`, safe: false, edits: [{ at: claim.at, text }] }],
+    fixes: [
+      ...(tolerance ? [looser(context, tolerance)] : []),
+      { title: `State the one found, ${text}`, safe: false, edits: [{ at: claim.at, text }] },
+      {
+        title: 'Claim none',
+        safe: false,
+        edits: [removeEntry(context.text, document.keys.get('space-group')!)],
+      },
+    ],
   }
+}
+
+function looser({ document, text }: Context, tolerance: number): Fix {
+  const written = formatNumber(tolerance)
+  const edits = document.tolerance
+    ? [{ at: document.tolerance.at, text: written }]
+    : insertKeys(text, document, [['tolerance', written]])
+  return { title: `State \`tolerance: ${written}\``, safe: false, edits }
 }
 
 const nameOf = ({ symbol, number }: NamedSpaceGroup): string => `${symbol} (${number})`
@@ -97,12 +136,10 @@ function withoutNames({ atoms }: Crystal) {
 const LOOSER = [0.005, 0.02, 0.05]
 
 /** The tolerance within which the claim would hold. */
-function within(crystal: Crystal, group: NamedSpaceGroup): string {
-  for (const angstroms of LOOSER) {
-    const tolerance = angstroms / crystal.angstrom
-    if (tolerance <= crystal.tolerance) continue
-    if (groupIn(crystal.searchWith(crystal.atoms, tolerance))?.number === group.number)
-      return ` Within ${length(tolerance, crystal.unit)} it would be: state that as \`tolerance\`, or coordinates with more digits.`
-  }
-  return ''
+function toleranceFor(crystal: Crystal, group: NamedSpaceGroup): number | undefined {
+  return LOOSER.map(angstroms => Number((angstroms / crystal.angstrom).toPrecision(2))).find(
+    tolerance =>
+      tolerance > crystal.tolerance &&
+      groupIn(crystal.searchWith(crystal.atoms, tolerance))?.number === group.number,
+  )
 }

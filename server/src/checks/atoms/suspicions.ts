@@ -1,11 +1,19 @@
 /** Are the atoms' numbers meant in another unit or another frame than the file states? */
 import { IN_ANGSTROM, type Unit, UNITS } from '../../crystal/units.ts'
-import type { Vec3 } from '../../crystal/vector.ts'
-import type { AtomFrame } from '../../format/model.ts'
+import { norm, type Vec3 } from '../../crystal/vector.ts'
+import type { AtomFrame, NumberValue } from '../../format/model.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import type { SymmetryOutcome } from '../../meaning/workshop.ts'
 import { contradictsVectors } from '../lattice/kinship.ts'
-import { distinctAtoms, once, readOn, type Tightest, tightest, tightestAmong } from './contacts.ts'
+import {
+  coincidences,
+  distinctAtoms,
+  once,
+  readOn,
+  type Tightest,
+  tightest,
+  tightestAmong,
+} from './contacts.ts'
 
 /**
  * The tightest contact of a solid, over the sum of covalent radii: metals, salts and covalent crystals lie between 0.85
@@ -31,17 +39,45 @@ export interface UnitSuspicion {
 
 /** The unit in which the distances would be those of a solid, where they are not as stated. */
 export const suspectedUnit = once((crystal): UnitSuspicion | undefined => {
-  if (suspectedFrame(crystal) || contradictsVectors(crystal)) return undefined
+  if (suspectedFrame(crystal) || contradictsVectors(crystal) || suspectedUnitsOfA(crystal)) return undefined
   const contact = tightest(crystal)
   const loose = distinctAtoms(crystal).length === 1 ? TOO_LOOSE_ALONE : TOO_LOOSE
   if (!contact || (contact.ratio >= TOO_TIGHT && contact.ratio <= loose)) return undefined
   if (NOBLE.has(contact.first.element) || NOBLE.has(contact.second.element)) return undefined
   for (const unit of UNITS) {
     const ratio = (contact.ratio * IN_ANGSTROM[unit]) / crystal.angstrom
-    if (unit !== crystal.unit && isOrdinary(ratio)) return { unit, contact, ratio }
+    if (unit !== crystal.unit && isOrdinary(ratio))
+      return suspectedPrimitive(crystal) ? undefined : { unit, contact, ratio }
   }
   return undefined
 })
+
+/**
+ * Rows of `vectors` that are meant in units of the parameter `a`: none of their numbers uses it, they are of the order of
+ * one, and the distances are those of a solid when they are multiplied by it.
+ */
+export const suspectedUnitsOfA = once(
+  (crystal): { readonly a: NumberValue; readonly contact: Tightest } | undefined => {
+    const { document, lattice } = crystal
+    const { vectors, parameters } = document.lattice ?? {}
+    const a = parameters?.a
+    if (!vectors || !a || !lattice || document.frames.atoms === 'cartesian') return undefined
+    const numbers = vectors.rows.flatMap(row => row?.items ?? [])
+    if (numbers.some(number => number?.uses.length !== 0)) return undefined
+    if (lattice.conventional.slice(0, lattice.dimension).some(row => norm(row) > OF_ORDER_ONE))
+      return undefined
+    const contact = tightest(crystal)
+    if (!contact || contact.ratio >= TOO_TIGHT || !isOrdinary(contact.ratio * a.value)) return undefined
+    return { a, contact }
+  },
+)
+
+/** Vectors in units of a are as long as that, but for a stretched c or a long edge of a few. */
+const OF_ORDER_ONE = 4
+
+/** Lengths are meant in another unit than stated: what a distance is in Å is not known. */
+export const isScaleSuspected = (crystal: Crystal): boolean =>
+  suspectedUnit(crystal) !== undefined || suspectedUnitsOfA(crystal) !== undefined
 
 export interface FrameSuspicion {
   readonly frame: AtomFrame
@@ -70,6 +106,21 @@ function sensible(crystal: Crystal, frame: AtomFrame): FrameSuspicion | undefine
   const contact = tightestAmong(crystal, atoms, readOn(crystal, atoms, crystal.atomAxesOf(frame)))
   return contact && isOrdinary(contact.ratio) ? { frame, contact } : undefined
 }
+
+/**
+ * Fractions of the primitive cell under a centred lattice, where no frame is stated: the atoms are far more symmetric when
+ * they are read so.
+ */
+export const suspectedPrimitive = once((crystal): OtherReading | undefined => {
+  const { document, lattice, atoms } = crystal
+  if (!lattice || lattice.centring === 'P' || document.framesEntry?.atoms || atoms.length < 2)
+    return undefined
+  if (!crystal.atomsComplete || coincidences(crystal).length > 0 || suspectedFrame(crystal)) return undefined
+  return moreSymmetric(
+    crystal,
+    atoms.map(({ stated }) => stated),
+  )
+})
 
 /** Each polar group is half of a centrosymmetric one: less gain than that is no sign of another reading. */
 const FAR_MORE = 2

@@ -16,6 +16,7 @@ const FLAT = 1e-6
 export const vacuumThin: Check<Facts> = {
   id: 'vacuum-thin',
   severity: 'warning',
+  needs: ['unit', 'frames.atoms'],
   summary: 'The height of a two-dimensional crystal’s computing cell leaves under 10 Å of vacuum.',
   why: 'The copies along the normal interact: bands and forces are those of a stack, not of a sheet.',
   wrong:

@@ -5,7 +5,7 @@ import { replaceVector } from '../../format/edits.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import { length } from '../../meaning/wording.ts'
 import type { Check, Context } from '../check.ts'
-import { suspectedFrame, suspectedUnit } from './suspicions.ts'
+import { suspectedFrame, isScaleSuspected } from './suspicions.ts'
 
 interface Facts {
   /** Which primitive vector leads through the gap, from 0. */
@@ -20,6 +20,7 @@ export const WIDE_GAP = 8
 export const vacuumUndeclared: Check<Facts> = {
   id: 'vacuum-undeclared',
   severity: 'info',
+  needs: ['unit', 'frames.atoms'],
   summary: 'A three-dimensional cell has a gap of over 8 Å between its atoms: it is meant as a sheet.',
   why: 'Labels, zone and path are those of a crystal in three dimensions, with a direction along which nothing happens.',
   wrong: 'lattice: {bravais: hP, a: 2.46, c: 20}\natoms:\n  - C: [1/3, 2/3, 1/2]\n  - C: [2/3, 1/3, 1/2]\n',
@@ -29,7 +30,7 @@ export const vacuumUndeclared: Check<Facts> = {
     const { crystal, document } = context
     const block = document.lattice
     if (crystal.dimension !== 3 || !block || !crystal.atomsComplete) return
-    if (suspectedFrame(crystal) || suspectedUnit(crystal)) return
+    if (suspectedFrame(crystal) || isScaleSuspected(crystal)) return
     const wide = crystal.emptySlabs.flatMap((gap, axis) =>
       gap !== undefined && gap * crystal.angstrom > WIDE_GAP ? [{ axis, gap }] : [],
     )

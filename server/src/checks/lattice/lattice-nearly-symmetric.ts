@@ -18,6 +18,7 @@ interface Facts {
 export const latticeNearlySymmetric: Check<Facts> = {
   id: 'lattice-nearly-symmetric',
   severity: 'warning',
+  needs: ['unit'],
   summary: 'The vectors miss a higher symmetry by a rounding of the digits written, or by under 0.02 %.',
   why: 'A program that decides more strictly finds the lower symmetry: then many more k-points are computed, and labels and degeneracies are lost.',
   wrong: 'lattice:\n  vectors: [[3.21, 0, 0], [-1.605, 2.78, 0], [0, 0, 5.21]]\n',

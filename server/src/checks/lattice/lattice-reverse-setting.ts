@@ -16,6 +16,7 @@ interface Facts {
 export const latticeReverseSetting: Check<Facts> = {
   id: 'lattice-reverse-setting',
   severity: 'warning',
+  needs: ['frames.atoms'],
   summary:
     'The atoms of a rhombohedral crystal are far more symmetric when its hexagonal axes are read in the reverse setting.',
   why: 'Hexagonal axes here are obverse, with lattice points at (2/3, 1/3, 1/3): coordinates of the other setting give another crystal.',

@@ -12,6 +12,7 @@ interface Facts {
 export const meshAcrossVacuum: Check<Facts> = {
   id: 'mesh-across-vacuum',
   severity: 'warning',
+  needs: ['unit', 'frames.atoms'],
   summary:
     'A mesh has divisions other than 1 along a direction without period, or across a vacuum of over 8 Å.',
   why: 'Nothing moves across a vacuum: bands are flat there, and each further division multiplies the cost and gives nothing.',

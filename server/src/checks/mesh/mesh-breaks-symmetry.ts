@@ -22,6 +22,7 @@ interface Facts {
 export const meshBreaksSymmetry: Check<Facts> = {
   id: 'mesh-breaks-symmetry',
   severity: 'warning',
+  needs: ['time-reversal', 'frames.atoms'],
   summary:
     'A mesh that the crystal’s rotations do not map onto itself, by its shift or by unequal divisions.',
   why: 'Equivalent k-points are sampled differently: sums over the mesh are less symmetric than the crystal, fewer points can be left out, and some programs refuse such a mesh or merge points that it does not treat alike.',

@@ -25,6 +25,7 @@ const FITTING = 1.25
 export const meshCellSuspect: Check<Facts> = {
   id: 'mesh-cell-suspect',
   severity: 'warning',
+  needs: ['unit', 'frames.atoms'],
   summary:
     'Divisions stand in the order of other axes, or fit the conventional cell and not the primitive one.',
   why: 'Divisions belong to the primitive reciprocal vectors: a long cell vector has a short reciprocal one and takes fewer of them. The wrong way round the mesh is far too coarse along one direction and wasteful along another.',

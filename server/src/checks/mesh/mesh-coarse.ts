@@ -29,6 +29,7 @@ const FINE_SHARE = 1 / 10
 export const meshCoarse: Check<Facts> = {
   id: 'mesh-coarse',
   severity: 'info',
+  needs: ['unit'],
   summary: 'A step of a mesh is over 0.7 Å⁻¹.',
   why: 'Sums over so few points are seldom converged: 0.2 to 0.5 Å⁻¹ is usual for insulators, less for metals.',
   wrong: 'lattice: {bravais: cF, a: 5.43}\nmesh: {divisions: [2, 2, 2]}\n',

@@ -22,6 +22,7 @@ const EXTREMA: Partial<Record<BravaisType, string>> = { hP: 'K', hp: 'K', cF: 'L
 export const meshMissesPoint: Check<Facts> = {
   id: 'mesh-misses-point',
   severity: 'info',
+  needs: ['labels', 'frames.atoms'],
   summary:
     'A point where this kind of lattice often has its band edge is not on the mesh: K of a hexagonal lattice, L of a face-centred cubic one, R of a simple cubic one.',
   why: 'A gap or a Fermi level taken from the mesh misses that edge, and converges by jumps, as some divisions hit it and others do not.',

@@ -25,6 +25,7 @@ interface Facts {
 export const meshUneven: Check<Facts> = {
   id: 'mesh-uneven',
   severity: 'info',
+  needs: ['unit', 'frames.atoms'],
   summary: 'The steps of a mesh along the reciprocal vectors differ more than 1.5-fold.',
   why: 'The coarsest direction decides how good the sum is: the points along the others cost time and give nothing.',
   wrong: 'lattice: {bravais: oP, a: 4, b: 6, c: 12}\nmesh: {divisions: [8, 8, 8]}\n',

@@ -9,7 +9,7 @@ import { meshOf } from '../../meaning/sampling.ts'
 import { INVERSE_SYMBOL } from '../../crystal/units.ts'
 import { plain } from '../../meaning/wording.ts'
 import { once } from '../atoms/contacts.ts'
-import { suspectedFrame, suspectedUnit } from '../atoms/suspicions.ts'
+import { isScaleSuspected, suspectedFrame } from '../atoms/suspicions.ts'
 import { WIDE_GAP } from '../atoms/vacuum-undeclared.ts'
 
 export interface CheckedMesh {
@@ -41,7 +41,7 @@ export const stepsOf = (lengths: readonly number[], divisions: Vec3): number[] =
 
 /** Lengths are in doubt: what a step is in Å⁻¹ is not known. */
 export const isScaleInDoubt = (crystal: Crystal): boolean =>
-  suspectedUnit(crystal) !== undefined || suspectedFrame(crystal) !== undefined
+  isScaleSuspected(crystal) || suspectedFrame(crystal) !== undefined
 
 /** The gap without atoms across each periodic direction, in the file's unit, where it is a vacuum. */
 export const vacuums = once((crystal): readonly (number | undefined)[] => {

@@ -15,6 +15,7 @@ interface Facts {
 export const pathJump: Check<Facts> = {
   id: 'path-jump',
   severity: 'warning',
+  needs: ['labels', 'frames.points'],
   summary: 'A segment joins two points between which the book’s path breaks.',
   why: 'The book goes on at another place there; a line drawn between the two is no part of the usual path.',
   wrong: 'lattice: {bravais: cF, a: 6.46}\npath: Γ – X – U – K – Γ – L – W – X\n',

@@ -20,6 +20,7 @@ interface Facts {
 export const pathLabelUnknown: Check<Facts> = {
   id: 'path-label-unknown',
   severity: 'error',
+  needs: ['labels'],
   summary: 'A label is neither defined in the file nor in its label book.',
   why: 'Without a place there is nothing to compute.',
   wrong: 'lattice: {bravais: tI, a: 3.8, c: 9.5}\npath: Γ – Xx\n',

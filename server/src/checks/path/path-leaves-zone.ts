@@ -23,6 +23,7 @@ interface Facts {
 export const pathLeavesZone: Check<Facts> = {
   id: 'path-leaves-zone',
   severity: 'warning',
+  needs: ['frames.points'],
   summary: 'A segment crosses the boundary of the first Brillouin zone.',
   why: 'Beyond it the bands are those of another line inside: the plot goes on under a label that means another point.',
   wrong: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [0.8, 0.1, 0.2]}\npath: Γ – L – Q\n',

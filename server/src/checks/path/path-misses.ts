@@ -19,6 +19,7 @@ interface Facts {
 export const pathMisses: Check<Facts> = {
   id: 'path-misses',
   severity: 'info',
+  needs: ['labels', 'frames.points'],
   summary: 'The path visits most points of the book’s path, but not all.',
   why: 'A gap or an extremum may lie at a point that is left out. A path through two thirds of the points or less is taken as short on purpose.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – M – Γ\n',

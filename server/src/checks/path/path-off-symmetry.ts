@@ -12,6 +12,7 @@ interface Facts {
 export const pathOffSymmetry: Check<Facts> = {
   id: 'path-off-symmetry',
   severity: 'info',
+  needs: ['labels', 'frames.points'],
   summary: 'The inside of a segment lies on no symmetry line or plane of the lattice.',
   why: 'Bands along it have no symmetry labels, and extrema are rarely found there: an end may be another point than meant.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\npoints: {Q: [0.1, 0.2, 0.3]}\npath: Γ – Q\n',

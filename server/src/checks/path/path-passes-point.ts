@@ -19,6 +19,7 @@ interface Facts {
 export const pathPassesPoint: Check<Facts> = {
   id: 'path-passes-point',
   severity: 'info',
+  needs: ['labels', 'frames.points'],
   summary: 'A point of the label book lies inside a segment and is not named by the path.',
   why: 'Unnamed, it may fall between two sampled points, and no plot marks it.',
   wrong: "lattice: {bravais: hP, a: 2.46, c: 6.7}\npoints: {K': [2/3, -1/3, 0]}\npath: K – K'\n",

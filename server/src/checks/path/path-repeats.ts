@@ -13,6 +13,7 @@ interface Facts {
 export const pathRepeats: Check<Facts> = {
   id: 'path-repeats',
   severity: 'warning',
+  needs: ['frames.points'],
   summary: 'A segment of the path has length zero.',
   why: 'The same k-point is computed several times, and plots divide by the length.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – X – M – Γ – R\n',

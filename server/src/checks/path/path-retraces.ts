@@ -14,6 +14,7 @@ interface Facts {
 export const pathRetraces: Check<Facts> = {
   id: 'path-retraces',
   severity: 'info',
+  needs: ['labels', 'frames.points'],
   summary: 'A segment is equivalent to an earlier one.',
   why: 'Both have the same bands: they are paid for twice.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X | X – Γ\n',

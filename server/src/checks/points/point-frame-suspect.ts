@@ -28,9 +28,13 @@ type Framed = Extract<Reading, { kind: 'frame' | 'centring' }>
 const isFramed = (reading: Reading | undefined): reading is Framed =>
   reading?.kind === 'frame' || reading?.kind === 'centring'
 
+/** What a finding about points of a centred lattice is about: a cell that is not primitive has the same cause. */
+export const POINTS_OF_CENTRED_CELL = 'points of a centred cell'
+
 export const pointFrameSuspect: Check<Facts> = {
   id: 'point-frame-suspect',
   severity: 'warning',
+  needs: ['labels', 'frames.points'],
   summary: 'Coordinates do not fit their labels in the stated frame, but do in another one.',
   why: 'The same three numbers are another k-point in another frame: the bands are right, for the wrong points.',
   wrong:
@@ -70,6 +74,7 @@ function ofBlock(context: Context, diagnosis: Diagnosis, reading: Framed): Findi
       message: `${listLabels(labels)} fit the ${bravais ? BRAVAIS[bravais].words : reading.centring} lattice of these vectors, which needs \`centring: ${reading.centring}\`; without it the vectors are a primitive cell, and its zone is smaller.`,
       facts: { ...facts, centring: reading.centring },
       related,
+      subject: POINTS_OF_CENTRED_CELL,
       fixes: stateCentring(context, reading),
     }
   }

@@ -25,6 +25,7 @@ interface Facts {
 export const pointLabelMismatch: Check<Facts> = {
   id: 'point-label-mismatch',
   severity: 'warning',
+  needs: ['labels', 'frames.points'],
   summary: 'A label of the book stands at coordinates that are not those of its point.',
   why: 'The bands are computed at the coordinates and published under the label.',
   wrong: 'lattice: {bravais: cF, a: 6.46}\npoints: {X: [1/2, 1/4, 3/4]}\n',

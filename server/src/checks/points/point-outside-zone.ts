@@ -20,6 +20,7 @@ interface Facts {
 export const pointOutsideZone: Check<Facts> = {
   id: 'point-outside-zone',
   severity: 'warning',
+  needs: ['frames.points'],
   summary: 'A k-point lies outside the first Brillouin zone.',
   why: 'It has the bands of its equivalent inside, but a path drawn to it is another line than the one to the equivalent.',
   wrong: 'lattice: {bravais: cF, a: 6.46}\npoints: {Q: [0.8, 0.1, 0.2]}\n',

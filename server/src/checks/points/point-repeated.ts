@@ -14,6 +14,7 @@ interface Facts {
 export const pointRepeated: Check<Facts> = {
   id: 'point-repeated',
   severity: 'info',
+  needs: ['labels', 'frames.points'],
   summary: 'Two labels stand for one k-point, or for equivalent ones.',
   why: 'Both have the same energies: what is computed at one need not be computed at the other.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\npoints:\n  Q: [0.1, 0.2, 0]\n  V: [0, 0.1, 0.2]\n',

@@ -18,6 +18,7 @@ interface Facts {
 export const pointRounded: Check<Facts> = {
   id: 'point-rounded',
   severity: 'warning',
+  needs: ['unit', 'labels', 'frames.points'],
   summary:
     'A coordinate of a k-point is a rounding of the exact fraction at which a symmetry point, line or plane lies.',
   why: 'A program that looks for symmetry finds a lower one there: degenerate bands split, and the point counts as a general one.',

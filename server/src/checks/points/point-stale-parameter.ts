@@ -20,6 +20,7 @@ interface Facts {
 export const pointStaleParameter: Check<Facts> = {
   id: 'point-stale-parameter',
   severity: 'warning',
+  needs: ['labels', 'frames.points'],
   summary: 'A special point that moves with the shape of the cell does not fit the shape of this one.',
   why: 'Such a point lies where a symmetry line meets the boundary of the zone. Copied from another crystal it stops short of it or lies beyond.',
   wrong: 'lattice: {bravais: tI, a: 3.8, c: 9.5}\npoints: {Σ: [-0.297259, 0.297259, 0.297259]}\n',

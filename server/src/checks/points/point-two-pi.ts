@@ -17,6 +17,7 @@ interface Facts {
 export const pointTwoPi: Check<Facts> = {
   id: 'point-two-pi',
   severity: 'warning',
+  needs: ['labels', 'frames.points'],
   summary: 'A Cartesian k-point is a point of the label book, but for a factor of 2π.',
   why: 'Programs differ in whether the 2π is part of k: this point lies six times too near to Γ, or too far from it.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\nframes: {points: cartesian}\npoints: {X: [0, 0.128205, 0]}\n',

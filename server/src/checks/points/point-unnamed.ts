@@ -13,6 +13,7 @@ interface Facts {
 export const pointUnnamed: Check<Facts> = {
   id: 'point-unnamed',
   severity: 'info',
+  needs: ['labels', 'frames.points'],
   summary: 'A point of the label book has a name of the file’s own.',
   why: 'Readers know the point by its letter, and path and book then speak of the same place.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\npoints: {Q: [0, 1/2, 0]}\n',

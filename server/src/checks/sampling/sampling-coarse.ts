@@ -21,6 +21,7 @@ const FEW_POINTS = 5
 export const samplingCoarse: Check<Facts> = {
   id: 'sampling-coarse',
   severity: 'warning',
+  needs: ['unit', 'labels', 'frames.points'],
   summary: 'Points of the path are over 0.1 Å⁻¹ apart, or over 0.05 Å⁻¹ in a segment of under five points.',
   why: 'Bands drawn through so few points cross and bend where they do not, and an extremum between two points is missed.',
   wrong: 'lattice: {bravais: cP, a: 3.9}\npath: Γ – X – M – Γ – R\nsampling: {spacing: 0.2}\n',

@@ -14,6 +14,7 @@ interface Facts {
 export const samplingUneven: Check<Facts> = {
   id: 'sampling-uneven',
   severity: 'info',
+  needs: ['labels', 'frames.points'],
   summary: 'The densities of points differ more than threefold between segments of the path.',
   why: 'The short segments cost as much as the long ones, and a crossing or an extremum in the long ones is easily missed.',
   wrong:

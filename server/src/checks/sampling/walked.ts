@@ -5,7 +5,7 @@ import { displayLabel } from '../../format/path.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
 import { stepRule, walkedPath } from '../../meaning/sampling.ts'
 import { once } from '../atoms/contacts.ts'
-import { suspectedFrame, suspectedUnit } from '../atoms/suspicions.ts'
+import { isScaleSuspected, suspectedFrame } from '../atoms/suspicions.ts'
 import { diagnose, isInDoubt } from '../points/diagnosis.ts'
 
 export interface Sampled {
@@ -27,7 +27,7 @@ export interface SampledPath {
 
 /** undefined where a length is not known, or is in doubt. */
 export const sampledPath = once((crystal): SampledPath | undefined => {
-  if (!crystal.lattice || suspectedUnit(crystal) || suspectedFrame(crystal)) return undefined
+  if (!crystal.lattice || isScaleSuspected(crystal) || suspectedFrame(crystal)) return undefined
   const walked = walkedPath(crystal)
   const segments = walked.flatMap(piece => piece.segments)
   const diagnosis = diagnose(crystal)

@@ -18,6 +18,7 @@ interface Facts {
 export const supercellMissesPoint: Check<Facts> = {
   id: 'supercell-misses-point',
   severity: 'info',
+  needs: ['labels', 'frames.points'],
   summary: 'A symmetry point of the path that does not fold onto Γ of the supercell.',
   why: 'Phonons from displacements in a supercell are exact at the points that fold onto its Γ; a soft mode at another is interpolated, and may be missed.',
   wrong: 'lattice: {bravais: hp, a: 2.46}\npath: Γ – M – K – Γ\nsupercell: [4, 4]\n',
