@@ -3,6 +3,7 @@ import {
   commands,
   type DocumentSelector,
   type ExtensionContext,
+  l10n,
   languages,
   Range,
   type TextEditor,
@@ -39,7 +40,9 @@ async function rewriteForSupercell({ document, selection }: TextEditor, server: 
   const edits = await server.request<TextEdit[] | null>(REWRITE_FOR_SUPERCELL, params)
   if (!edits) {
     window.setStatusBarMessage(
-      'Braggline: this crystal has no supercell, or something that refers to its cell cannot be rewritten',
+      l10n.t(
+        'Braggline: this crystal has no supercell, or something that refers to its cell cannot be rewritten',
+      ),
       WORD_MS,
     )
     return

@@ -16,6 +16,11 @@ export function deepStrictEqual(actual: unknown, expected: unknown, message = ''
   strictEqual(JSON.stringify(actual), JSON.stringify(expected), message)
 }
 
+export function match(actual: string, expected: RegExp, message = ''): void {
+  if (!expected.test(actual))
+    throw new Error(`${message} ${JSON.stringify(actual.slice(0, 2000))} does not match ${expected}`)
+}
+
 export function fail(message: string): never {
   throw new Error(message)
 }

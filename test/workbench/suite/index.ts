@@ -30,6 +30,7 @@ const suites: Record<string, () => Promise<unknown>> = {
   writing: () => import('./writing.test.ts'),
   'zone-view': () => import('./zone-view.test.ts'),
   'zone-tab': () => import('./zone-tab.test.ts'),
+  'report-picture': () => import('./report-picture.test.ts'),
   report: () => import('./report.test.ts'),
   'workspace-check': () => import('./workspace-check.test.ts'),
   paste: () => import('./paste.test.ts'),

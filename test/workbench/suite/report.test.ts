@@ -1,7 +1,6 @@
 import * as assert from 'node:assert'
 import * as vscode from 'vscode'
 import { checked, closeAll, file, open, replace, soon } from './support.ts'
-import { Window } from './window.ts'
 
 const SCHEME = 'braggline-report'
 const tabs = () => vscode.window.tabGroups.all.flatMap(group => group.tabs)
@@ -16,11 +15,6 @@ const text = async (source: vscode.Uri) =>
   (await vscode.workspace.openTextDocument(reportUri(source))).getText()
 
 describe('the lattice report', () => {
-  let window: Window | undefined
-  before(async () => {
-    window = await Window.connect()
-  })
-  after(async () => window?.close())
   afterEach(async () => {
     await closeAll()
     await vscode.commands.executeCommand('workbench.action.closeAllEditors')
@@ -43,28 +37,6 @@ describe('the lattice report', () => {
     await soon(async () => !(await text(editor.document.uri)).includes('path-label-unknown'))
     await vscode.commands.executeCommand('braggline.openReport')
     assert.strictEqual(previews().length, 1)
-  })
-
-  it('shows its figure and its tables in the preview', async function () {
-    if (!window) return this.skip()
-    const editor = await open('lead-telluride.lattice.yaml')
-    await checked(editor.document)
-    await vscode.commands.executeCommand('braggline.openReport')
-    await soon(() => previews().length === 1)
-    const frame = window.page.frameLocator('iframe.webview.ready').frameLocator('iframe#active-frame')
-    const figure = frame.locator('img[alt^="First Brillouin zone"]')
-    await figure.waitFor()
-    assert.ok(await figure.evaluate(image => (image as HTMLImageElement).naturalWidth > 100))
-    assert.ok((await frame.locator('table').count()) >= 3)
-    await window.picture('report-preview')
-    await vscode.workspace
-      .getConfiguration('workbench')
-      .update('colorTheme', 'Default Dark Modern', vscode.ConfigurationTarget.Workspace)
-    await frame.locator('body.vscode-dark').waitFor()
-    await window.picture('report-preview-dark')
-    await vscode.workspace
-      .getConfiguration('workbench')
-      .update('colorTheme', undefined, vscode.ConfigurationTarget.Workspace)
   })
 
   it('is not made anew while no tab shows it, and is up to date when one does', async () => {
