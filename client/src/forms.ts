@@ -6,6 +6,7 @@ import {
   EventEmitter,
   type ExtensionContext,
   FileType,
+  l10n,
   languages,
   type LogOutputChannel,
   type QuickPickItem,
@@ -133,7 +134,10 @@ class Forms {
     if (!filled) return
     await this.#fill(filled)
     if (filled.faulty) {
-      window.setStatusBarMessage('Braggline: the form is not filled, so there is nothing to save', WORD_MS)
+      window.setStatusBarMessage(
+        l10n.t('Braggline: the form is not filled, so there is nothing to save'),
+        WORD_MS,
+      )
       return
     }
     const { source } = filled
@@ -142,7 +146,7 @@ class Forms {
     const target =
       chosen ??
       (await window.showSaveDialog({
-        title: 'Save Filled Form',
+        title: l10n.t('Save Filled Form'),
         defaultUri: folder && Uri.joinPath(folder, filled.uri.path.slice(1)),
       }))
     if (target) await workspace.fs.writeFile(target, new TextEncoder().encode(filled.text))
@@ -208,7 +212,8 @@ class Forms {
       filled.stale = false
       filled.document = result?.document ?? filled.document
       filled.faulty = result?.text === undefined
-      filled.text = result?.text ?? notFilled(result?.fault ?? 'The lattice file holds no crystal yet.')
+      filled.text =
+        result?.text ?? notFilled(result?.fault ?? l10n.t('The lattice file holds no crystal yet.'))
     } catch (error) {
       filled.faulty = true
       filled.text = notFilled(asError(error).message)
@@ -243,7 +248,7 @@ class Forms {
   }
 }
 
-const notFilled = (why: string): string => `This form cannot be filled.\n\n${why}\n`
+const notFilled = (why: string): string => `${l10n.t('This form cannot be filled.')}\n\n${why}\n`
 
 /** Its path ends like the file that the form is for, so that the editor knows the language. */
 function addressOf(source: Uri, form: Uri): Uri {
@@ -302,21 +307,21 @@ async function pickForm(source: Uri): Promise<Uri | undefined> {
       uri,
     })),
     {
-      label: '$(folder-opened) Browse…',
-      description: found.length > 0 ? undefined : 'no form is near the file',
+      label: l10n.t('$(folder-opened) Browse…'),
+      description: found.length > 0 ? undefined : l10n.t('no form is near the file'),
     },
   ]
   const picked = await window.showQuickPick(items, {
-    title: 'Fill a Form',
-    placeHolder: `Which form is to be filled from ${fileName(source)}?`,
+    title: l10n.t('Fill a Form'),
+    placeHolder: l10n.t('The form to be filled from {0}', fileName(source)),
   })
   if (!picked) return undefined
   if (picked.uri) return picked.uri
   const [browsed] =
     (await window.showOpenDialog({
-      title: 'Choose a Form',
-      openLabel: 'Fill',
-      filters: { Forms: [FORM_ENDING.slice(1)], 'All files': ['*'] },
+      title: l10n.t('Choose a Form'),
+      openLabel: l10n.t('Fill'),
+      filters: { [l10n.t('Forms')]: [FORM_ENDING.slice(1)], [l10n.t('All files')]: ['*'] },
     })) ?? []
   return browsed
 }

@@ -15,7 +15,7 @@ describe('the package', () => {
 
   it('holds nothing but what is needed at run time', () => {
     const expected =
-      /^(package(\.nls(\.[a-z-]+)?)?\.json|LICENSE\.txt|readme\.md|changelog\.md|\.vsixmanifest|(dist|docs\/rules|l10n|media|syntaxes)\/.*)$/i
+      /^(package(\.nls(\.[a-z-]+)?)?\.json|docs\/forms\.md|LICENSE\.txt|readme\.md|changelog\.md|\.vsixmanifest|(dist|docs\/rules|l10n|media|syntaxes)\/.*)$/i
     assert.deepStrictEqual(
       files.filter(file => !expected.test(file) || /node_modules|\.ts$|\.map$/.test(file)),
       [],
@@ -45,6 +45,8 @@ describe('the package', () => {
       'dist/server.js',
       'dist/server-browser.js',
       'dist/symmetry-worker.js',
+      'dist/form-worker.js',
+      'docs/forms.md',
       'dist/moyo_wasm_bg.wasm',
       'dist/THIRD-PARTY-NOTICES.txt',
       'LICENSE.txt',
