@@ -9,6 +9,7 @@ import {
   workspace,
 } from 'vscode'
 import { CHECKED, type CheckedParams, type CheckedResult } from '../../server/src/protocol.ts'
+import { registerCif } from './cif.ts'
 import { registerCommands } from './commands.ts'
 import { registerForms } from './forms.ts'
 import { registerNewFile } from './new-file.ts'
@@ -47,6 +48,7 @@ export function activate(context: ExtensionContext, createClient: CreateClient):
   running = server
   context.subscriptions.push(log, status, startWithFirstFile(server))
   registerNewFile(context, server)
+  registerCif(context, { server, log, selector: SELECTOR })
   registerCommands(context, { server, log, selector: SELECTOR })
   registerForms(context, { server, log, selector: SELECTOR })
   registerPaste(context, { server, log, selector: SELECTOR })

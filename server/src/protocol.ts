@@ -305,3 +305,34 @@ export interface FillResult {
 }
 /** A form filled with what is known of a crystal. Symmetry counts: ask once the text has been checked. */
 export const FILL = 'braggline/fill'
+
+export interface ImportCifParams {
+  readonly text: string
+  /** What the CIF is called in the comments of the lattice file. */
+  readonly source: string
+}
+export interface ImportCifResult {
+  /** The lattice file; null where nothing could be made. */
+  readonly text: string | null
+  /** A name for it, without an ending. */
+  readonly name: string
+  /** What makes the lattice file another crystal than the CIF's, or may, and what kept blocks from being read. */
+  readonly losses: readonly string[]
+  readonly notes: readonly string[]
+}
+export const IMPORT_CIF = 'braggline/importCif'
+
+export interface ExportCifParams extends CheckedParams {
+  /** In the document that is meant. */
+  readonly position: { readonly line: number; readonly character: number }
+  /** What the lattice file is called in the comments of the CIF. */
+  readonly source: string
+}
+export interface ExportCifResult {
+  readonly version: number
+  readonly text: string | null
+  /** Why there is none. */
+  readonly refusal?: string
+  readonly notes: readonly string[]
+}
+export const EXPORT_CIF = 'braggline/exportCif'

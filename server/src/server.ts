@@ -22,6 +22,7 @@ import type { Severities } from './checks/run.ts'
 import type { FillForm } from './exchange/forms/form.ts'
 import type { Severity } from './format/model.ts'
 import type { Columns } from './format/text.ts'
+import { exportCifAnswer, importCifAnswer } from './language/cif.ts'
 import { diagnostics } from './language/diagnostics.ts'
 import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
@@ -54,11 +55,17 @@ import {
   type CheckedParams,
   type CheckedResult,
   type DocumentParams,
+  EXPORT_CIF,
+  type ExportCifParams,
+  type ExportCifResult,
   FIGURE,
   FILL,
   type FigureParams,
   type FigureResult,
   type FillParams,
+  IMPORT_CIF,
+  type ImportCifParams,
+  type ImportCifResult,
   PASTED_LATTICE,
   type PastedLatticeParams,
   type PastedLatticeResult,
@@ -368,6 +375,19 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   connection.onRequest(
     REPORT,
     about('report', null, (snapshot, params: ReportParams): ReportResult => reportAnswer(snapshot, params)),
+  )
+
+  connection.onRequest(
+    IMPORT_CIF,
+    guard('import of a CIF', null, (params: ImportCifParams): ImportCifResult | null =>
+      importCifAnswer(params),
+    ),
+  )
+  connection.onRequest(
+    EXPORT_CIF,
+    about('export as CIF', null, (snapshot, params: ExportCifParams): ExportCifResult | null =>
+      exportCifAnswer(snapshot, params, options.version),
+    ),
   )
 
   // The zone view. What needs a search for symmetry is left out of a picture until the search has ended.

@@ -22,6 +22,7 @@ export async function run(): Promise<void> {
 const suites: Record<string, () => Promise<unknown>> = {
   findings: () => import('./findings.test.ts'),
   files: () => import('./files.test.ts'),
+  cif: () => import('./cif.test.ts'),
   colours: () => import('./colours.test.ts'),
   commands: () => import('./commands.test.ts'),
   settings: () => import('./settings.test.ts'),

@@ -227,7 +227,7 @@ function byType(
 /** As the CIF wrote it, with the uncertainty, where the file's notation knows it. */
 function numberText({ text, value }: CifNumber): string {
   const read = evaluate(text)
-  return 'value' in read && read.value === value && !text.startsWith('+')
+  return 'number' in read && read.number.value === value && !text.startsWith('+')
     ? text
     : formatNumber(value, MOST_DIGITS)
 }
