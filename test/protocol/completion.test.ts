@@ -89,3 +89,9 @@ test('the skeletons of new files', async () => {
     expect.arrayContaining(['cF', 'hR', 'hR-alpha', 'vectors', 'sheet']),
   )
 })
+
+test('space groups are listed from the first request on', async () => {
+  const items = await itemsAt('lattice: {bravais: cF, a: 5.4}\nspace-group: $0\n')
+  // International Tables A: 230 types.
+  expect(items).toHaveLength(230)
+})

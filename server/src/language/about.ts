@@ -7,8 +7,6 @@ import { IN_ANGSTROM, SYMBOL, UNITS } from '../crystal/units.ts'
 import { findKey } from '../format/keys.ts'
 import { plain } from '../meaning/wording.ts'
 
-export const capital = (text: string): string => text[0].toUpperCase() + text.slice(1)
-
 export const table = (head: readonly string[], rows: readonly (readonly string[])[]): string =>
   [head, head.map((_, i) => (i > 0 && head.length > 2 ? '---:' : '---')), ...rows]
     .map(cells => `| ${cells.join(' | ')} |`)
@@ -28,8 +26,7 @@ export function aboutElement(symbol: string): string | undefined {
 }
 
 /** Parameter sets as one says them: `a c, or a alpha`. */
-export const freeSets = (type: BravaisType): string =>
-  BRAVAIS[type].free.map(set => set.join(' ')).join(', or ')
+const freeSets = (type: BravaisType): string => BRAVAIS[type].free.map(set => set.join(' ')).join(', or ')
 
 export function aboutBravais(type: BravaisType): string {
   const { words, system, centring, dimension } = BRAVAIS[type]

@@ -1,5 +1,6 @@
 import { readdirSync, readFileSync } from 'node:fs'
 import { join } from 'node:path'
+import fc from 'fast-check'
 import { describe, expect, test } from 'vitest'
 import { hover } from '../../../server/src/language/hover.ts'
 import { marked } from '../../protocol/client.ts'
@@ -133,3 +134,24 @@ test('the report is linked to for clients that have the command only', () => {
   expect(value(true)).toContain('(command:braggline.openReport)')
   expect(value(false)).not.toContain('command:')
 })
+
+test('nothing that is typed makes it throw or grow long', () =>
+  fc.assert(
+    fc.property(
+      fc.constantFrom(...FILES.map(([, text]) => text)),
+      fc.nat(),
+      fc.nat({ max: 40 }),
+      (text, place, gap) => {
+        const offset = place % (text.length + 1)
+        const cut = text.slice(0, offset) + text.slice(offset + gap)
+        const snapshot = snapshotOf(cut)
+        for (const at of [offset, Math.max(0, offset - 3), Math.min(cut.length, offset + 9)]) {
+          const found = hover(snapshot, snapshot.positionOf(at), { links: true })
+          const value = found ? (found.contents as { value: string }).value : ''
+          expect(value.split('\n').length, value).toBeLessThanOrEqual(15)
+          expect(value).not.toMatch(/NaN|undefined|Infinity|\[object/)
+        }
+      },
+    ),
+    { numRuns: 150 },
+  ))

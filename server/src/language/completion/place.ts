@@ -3,7 +3,6 @@
  * nothing is decoded: the answer takes a walk over the lines of one document.
  */
 import { findKey } from '../../format/keys.ts'
-import type { Span } from '../../format/model.ts'
 
 export interface Place {
   /** `key`: a key is begun in the mapping `names`; `value`: the scalar of `names`; `comment`: behind a `#`. */
@@ -357,9 +356,3 @@ function keysToClose(text: string, offset: number): string[] {
 }
 /** Where an unclosed brace is given up. */
 const LONGEST_FLOW = 2_000
-
-/** The end of what an item replaces where the editor asks to overwrite: the word goes on to the right. */
-export function wordEnd(text: string, offset: number, word: RegExp): Span {
-  word.lastIndex = offset
-  return [offset, offset + (word.exec(text)?.[0].length ?? 0)]
-}
