@@ -60,6 +60,8 @@ interface Report {
   text: string
   /** The text of the file has changed since, or symmetry was still being looked for. */
   stale: boolean
+  /** Counts the questions for it: an answer to an older one is dropped. */
+  turn: number
   /** A tab has shown it. It is kept until the last one is closed. */
   wasShown: boolean
   timer?: ReturnType<typeof setTimeout>
@@ -76,9 +78,9 @@ class Reports {
       workspace.onDidChangeTextDocument(({ document, contentChanges }) => {
         if (contentChanges.length > 0) this.#touch(document.uri.toString())
       }),
-      // What needed a search for symmetry, and the findings after it.
+      // What needed a search for symmetry, and findings under other settings.
       tools.server.onChecked(({ uri, pending }) => {
-        if (!pending) this.#touch(uri, report => report.stale)
+        if (!pending) this.#touch(uri)
       }),
       window.tabGroups.onDidChangeTabs(() => this.#tabsChanged()),
       window.tabGroups.onDidChangeTabGroups(() => this.#tabsChanged()),
@@ -154,7 +156,7 @@ class Reports {
       path: `/${stem(source)}${REPORT_NAME}`,
       query: source.toString(),
     })
-    const report: Report = { uri, source, text: '', stale: true, wasShown: false }
+    const report: Report = { uri, source, text: '', stale: true, turn: 0, wasShown: false }
     this.#reports.set(source.toString(), report)
     return report
   }
@@ -175,9 +177,9 @@ class Reports {
     return window.tabGroups.all.some(({ activeTab }) => activeTab && shows(activeTab, report))
   }
 
-  #touch(source: string, when: (report: Report) => boolean = () => true): void {
+  #touch(source: string): void {
     const report = this.#reports.get(source)
-    if (!report || !when(report)) return
+    if (!report) return
     report.stale = true
     clearTimeout(report.timer)
     report.timer = setTimeout(() => {
@@ -198,9 +200,10 @@ class Reports {
   }
 
   async #refresh(report: Report): Promise<void> {
+    const turn = ++report.turn
     try {
       const text = await this.#ask(report)
-      if (text === undefined || text === report.text) return
+      if (text === undefined || text === report.text || turn !== report.turn) return
       // An editor forgets a text that no tab of its own shows after some minutes; the preview hears of changes to a
       // text that is open only. So it is opened with the words it had, and then changes.
       if (report.text !== '') await workspace.openTextDocument(report.uri)
