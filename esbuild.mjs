@@ -44,6 +44,7 @@ const builds = [
     ...node,
     entryPoints: {
       cli: 'server/src/cli.ts',
+      'cli-worker': 'server/src/cli-worker.ts',
       server: 'server/src/server-entry.ts',
       'symmetry-worker': 'server/src/symmetry-worker.ts',
       'form-worker': 'server/src/form-worker.ts',

@@ -1,7 +1,9 @@
 #!/usr/bin/env node
 /** The command line under Node: the process, its streams, its signals. */
+import { availableParallelism } from 'node:os'
 import type { Io } from './cli/io.ts'
 import { run } from './cli/run.ts'
+import { startFileThread } from './cli-thread.ts'
 import { fillFormInThread } from './form-thread.ts'
 import { loadSymmetryFromDisk } from './symmetry-node.ts'
 import { WorkerSymmetry } from './symmetry-service.ts'
@@ -26,6 +28,8 @@ const io: Io = {
     return Buffer.concat(chunks)
   },
   now: () => performance.now(),
+  startFileWorker: startFileThread,
+  cores: availableParallelism(),
   fillForm: fillFormInThread,
 }
 

@@ -11,12 +11,14 @@ import {
 } from '../exchange/findings-json.ts'
 import { closingLine, findingsText } from '../exchange/findings-text.ts'
 import { harmless } from '../exchange/layout.ts'
-import { type SarifPart, sarifLog, sarifPart } from '../exchange/sarif.ts'
+import { type SarifPart, sarifLog, sarifPart, sarifPartAt } from '../exchange/sarif.ts'
 import { count } from '../meaning/wording.ts'
 import { documentsOf, type Engine, withoutSymmetry } from './engine.ts'
-import { encoded, findFiles, type LatticeText, readText, STANDARD_INPUT } from './files.ts'
+import { encoded, findFiles, type LatticeText, type Place, readText, STANDARD_INPUT } from './files.ts'
 import { type Change, fixAll } from './fixing.ts'
 import { Refusal } from './io.ts'
+import { attempted, inOrder, JOBS, jobsFor, progressOf, type Say, SHARD, sharded, toldOf } from './jobs.ts'
+import type { FileTask, FileWork } from './threads.ts'
 import { ordinal } from './options.ts'
 import { Desk, replaceFile } from './output.ts'
 import { type Call, CLEAN, DOCUMENT, FOUND, NOT_DONE, OUTPUT, OVERWRITE, type Verb } from './verb.ts'
@@ -52,6 +54,8 @@ export const check: Verb = {
       choices: ['text', 'json', 'jsonl', 'sarif'],
       help: 'text (the default), json, jsonl (one finding a line) or sarif (SARIF 2.1.0).',
     },
+    JOBS,
+    SHARD,
     DOCUMENT,
     OUTPUT,
     OVERWRITE,
@@ -65,31 +69,36 @@ export const check: Verb = {
   async run({ given, io, engine: start }: Call): Promise<number> {
     const desk = new Desk(io, given.value('output'), given.has('overwrite'))
     const format = given.value('format') ?? 'text'
-    const how = { picked: ordinal(given, 'document'), fix: given.has('fix'), forPrograms: format !== 'text' }
-    const { names, failures } = await findFiles(given.operands, io)
-    if (how.fix && names.includes(STANDARD_INPUT))
+    const how: How = {
+      picked: ordinal(given, 'document'),
+      fix: given.has('fix'),
+      format,
+      coloured: desk.coloured,
+    }
+    const { names: found, failures } = await findFiles(given.operands, io)
+    if (how.fix && found.includes(STANDARD_INPUT))
       throw new Refusal('--fix needs files: standard input cannot be written back')
+    const names = sharded(found, given)
+    // Files are written back by the thread that an interrupt reaches.
+    const jobs = how.fix ? 1 : jobsFor(given, names.length, io)
     for (const failure of failures) desk.fail(failure)
 
-    const engine = start()
     const writer = WRITERS[format](desk)
     const total = { files: 0, errors: 0, warnings: 0, infos: 0 }
-    for (const [i, name] of names.entries()) {
-      desk.progress(`checking file ${i + 1} of ${names.length}: ${harmless(name)}`)
-      try {
-        const checked = await checkOne(engine, await readText(name, io), how, desk)
-        if (checked.snapshot.documents.length === 0 && checked.findings.length === 0)
-          throw new Refusal(`${name}: there is no crystal in this file`)
-        const { errors, warnings, infos } = tally(checked.findings)
-        total.files++
-        total.errors += errors
-        total.warnings += warnings
-        total.infos += infos
-        writer.file(checked)
-      } catch (error) {
-        if (!(error instanceof Refusal)) throw error
-        desk.fail(error.message)
-      }
+    const task: FileTask = { verb: 'check', how }
+    let engine: FileWork<CheckedPart> | undefined
+    const local: FileWork<CheckedPart> = name => (engine ??= checkWork(start(), io, how))(name)
+    desk.progress(`checking ${count(names.length, 'file')}`)
+    let i = 0
+    for await (const result of inOrder(names, jobs, io, task, local)) {
+      desk.progress(progressOf('checking', i++, names))
+      const part = toldOf(result, desk)
+      if (!part) continue
+      total.files++
+      total.errors += part.tally.errors
+      total.warnings += part.tally.warnings
+      total.infos += part.tally.infos
+      writer.file(part)
     }
     writer.end(total)
     await desk.close()
@@ -98,18 +107,38 @@ export const check: Verb = {
   },
 }
 
-interface How {
+/** Can go from thread to thread, as can `CheckedPart`. */
+export interface How {
   readonly picked: number | undefined
   readonly fix: boolean
-  /** Standard output belongs to programs: what was mended is told on standard error. */
-  readonly forPrograms: boolean
+  readonly format: string
+  readonly coloured: boolean
 }
+
+/** What was found in one file, as its format writes it. */
+export interface CheckedPart {
+  readonly tally: Tally
+  readonly text?: string
+  readonly findings?: readonly FindingJson[]
+  readonly sarif?: SarifPart
+}
+
+/** What `check` does with one file. */
+export const checkWork =
+  (engine: Engine, io: Place, how: How): FileWork<CheckedPart> =>
+  name =>
+    attempted(async say => {
+      const checked = await checkOne(engine, await readText(name, io), how, say)
+      if (checked.snapshot.documents.length === 0 && checked.findings.length === 0)
+        throw new Refusal(`${name}: there is no crystal in this file`)
+      return { tally: tally(checked.findings), ...PARTS[how.format](checked, how.coloured) }
+    })
 
 async function checkOne(
   engine: Engine,
   read: LatticeText,
-  { picked, fix, forPrograms }: How,
-  desk: Desk,
+  { picked, fix, format }: How,
+  say: Say,
 ): Promise<CheckedFile> {
   let snapshot = await engine.check(read.text)
   if (picked !== undefined) documentsOf(snapshot, read.name, picked)
@@ -118,13 +147,13 @@ async function checkOne(
     if (fixed.changes.length > 0) {
       await replaceFile(read.path, encoded(fixed.snapshot.text, read), read.name)
       const mended = changesInWords(read.name, fixed.changes)
-      if (forPrograms) desk.note(mended)
-      else desk.result(mended)
+      // Standard output belongs to programs where they asked for it.
+      say(format === 'text' ? 'result' : 'note', mended)
     }
     snapshot = fixed.snapshot
   }
   for (const reason of withoutSymmetry(snapshot, read.name, picked))
-    desk.note(`braggline: ${harmless(reason)}\n`)
+    say('note', `braggline: ${harmless(reason)}\n`)
   const findings = snapshot.findings.filter(({ document }) => picked === undefined || document === picked)
   return { file: read.name, snapshot, findings }
 }
@@ -136,46 +165,48 @@ const changesInWords = (name: string, changes: readonly Change[]): string => {
   return `${harmless(name)}: ${count(changes.length, 'fix', 'fixes')} applied\n${lines.join('')}\n`
 }
 
+const RULES = CHECKS.map(rule => ({ ...rule, page: page(rule) }))
+
+/** What is kept of a file until it is its turn to be written. */
+const PARTS: Record<string, (checked: CheckedFile, coloured: boolean) => Omit<CheckedPart, 'tally'>> = {
+  text: (checked, coloured) => ({ text: findingsText(checked, pc.createColors(coloured)) }),
+  json: checked => ({ findings: findingsJson(checked) }),
+  jsonl: checked => ({
+    text: findingsJson(checked)
+      .map(finding => `${JSON.stringify(finding)}\n`)
+      .join(''),
+  }),
+  sarif: checked => ({ sarif: sarifPart(checked, 0, RULES) }),
+}
+
 interface Writer {
-  file(checked: CheckedFile): void
+  file(part: CheckedPart): void
   end(total: Tally & { readonly files: number }): void
 }
 
 /** What a format writes of each file at once, so that no file is kept in memory, and what at the end. */
 const WRITERS: Record<string, (desk: Desk) => Writer> = {
-  text(desk) {
-    const paint = pc.createColors(desk.coloured)
-    return {
-      file: checked => desk.result(findingsText(checked, paint)),
-      end: total => {
-        if (total.files > 0) desk.result(`${closingLine(total, total.files, paint)}\n`)
-      },
-    }
-  },
-  json(desk) {
-    const findings: FindingJson[] = []
-    return {
-      file: checked => findings.push(...findingsJson(checked)),
-      end: ({ files }) => desk.result(`${JSON.stringify(checkJson(findings, files), null, 2)}\n`),
-    }
-  },
-  jsonl: desk => ({
-    file: checked =>
-      desk.result(
-        findingsJson(checked)
-          .map(finding => `${JSON.stringify(finding)}\n`)
-          .join(''),
-      ),
-    end: () => {},
+  text: desk => ({
+    file: ({ text }) => desk.result(text!),
+    end: total => {
+      if (total.files > 0) desk.result(`${closingLine(total, total.files, pc.createColors(desk.coloured))}\n`)
+    },
   }),
+  json(desk) {
+    const all: FindingJson[] = []
+    return {
+      file: ({ findings }) => void all.push(...findings!),
+      end: ({ files }) => desk.result(`${JSON.stringify(checkJson(all, files), null, 2)}\n`),
+    }
+  },
+  jsonl: desk => ({ file: ({ text }) => desk.result(text!), end: () => {} }),
   sarif(desk) {
-    const rules = CHECKS.map(rule => ({ ...rule, page: page(rule) }))
     const parts: SarifPart[] = []
     return {
-      file: checked => parts.push(sarifPart(checked, parts.length, rules)),
+      file: ({ sarif }) => void parts.push(sarifPartAt(sarif!, parts.length)),
       end: () =>
         desk.result(
-          `${JSON.stringify(sarifLog(parts, { version: VERSION, rules, failures: desk.failures }), null, 2)}\n`,
+          `${JSON.stringify(sarifLog(parts, { version: VERSION, rules: RULES, failures: desk.failures }), null, 2)}\n`,
         ),
     }
   },

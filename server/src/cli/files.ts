@@ -8,6 +8,9 @@ export const STANDARD_INPUT = '-'
 const LATTICE_FILES = '**/*.lattice.{yaml,yml}'
 const NEVER_SEARCHED = ['**/node_modules/**', '**/.git/**']
 
+/** Where names of files are looked up, and what - stands for. */
+export type Place = Pick<Io, 'cwd' | 'readInput'>
+
 export interface LatticeText {
   /** As it was asked for. */
   readonly name: string
@@ -94,7 +97,7 @@ const REASONS: Record<string, string> = {
 }
 
 /** @throws Refusal saying why the file could not be read as text. */
-export async function readText(name: string, io: Io, what = 'lattice file'): Promise<LatticeText> {
+export async function readText(name: string, io: Place, what = 'lattice file'): Promise<LatticeText> {
   if (name === STANDARD_INPUT) return decoded(name, undefined, await io.readInput(), what)
   const path = resolve(io.cwd, name)
   return decoded(name, path, bytesOf(path, name), what)

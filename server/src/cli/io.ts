@@ -1,4 +1,5 @@
 import type { FillForm } from '../exchange/forms/form.ts'
+import type { StartFileWorker } from './threads.ts'
 
 /** What the command line needs of the world, so that tests can give it another one. */
 export interface Stream {
@@ -15,6 +16,10 @@ export interface Io {
   readonly err: Stream
   /** All of standard input. */
   readInput(): Promise<Uint8Array>
+  /** Starts a thread that works on files; absent where there are none. */
+  readonly startFileWorker?: StartFileWorker
+  /** How many threads the machine runs at once. */
+  readonly cores?: number
   /** Milliseconds from any fixed moment. */
   now(): number
   readonly fillForm: FillForm

@@ -47,7 +47,7 @@ export const match: Verb = {
   ],
   examples: [
     'braggline match lead-telluride.lattice.yaml k-points.txt',
-    'braggline match lead-telluride.lattice.yaml job.out --columns "2,3,4" --weight-column 5 --vectors cell.txt --vectors-unit bohr',
+    'braggline match pbte.lattice.yaml job.out --columns "2,3,4" --vectors cell.txt --vectors-unit bohr',
   ],
 
   async run({ given, io, engine }: Call): Promise<number> {

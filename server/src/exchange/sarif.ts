@@ -75,6 +75,12 @@ export function sarifPart(
   return { file, results }
 }
 
+/** The same part at another place among the parts: each of its locations names that place. */
+export const sarifPartAt = (part: SarifPart, index: number): SarifPart =>
+  JSON.parse(JSON.stringify(part), (_, value) =>
+    value && typeof value === 'object' && 'uri' in value && 'index' in value ? { ...value, index } : value,
+  )
+
 export const sarifLog = (parts: readonly SarifPart[], { version, rules, failures }: SarifRun): Log => ({
   $schema: SCHEMA,
   version: '2.1.0',

@@ -5,6 +5,7 @@ import { dirname, join } from 'node:path'
 import type { Symmetries } from '../../../server/src/cli/engine.ts'
 import type { Io } from '../../../server/src/cli/io.ts'
 import { run } from '../../../server/src/cli/run.ts'
+import type { StartFileWorker } from '../../../server/src/cli/threads.ts'
 import { fillForm } from '../../../server/src/exchange/forms/engine.ts'
 import { loadSymmetryFromDisk } from '../../../server/src/symmetry-node.ts'
 import { directSymmetry } from '../../../server/src/symmetry-service.ts'
@@ -22,6 +23,7 @@ export interface Surroundings {
   /** Milliseconds that pass from one look at the clock to the next. */
   readonly slow?: number
   readonly symmetries?: Symmetries
+  readonly startFileWorker?: StartFileWorker
 }
 
 export class World {
@@ -60,6 +62,7 @@ export class World {
       out: stream('out'),
       err: stream('err'),
       readInput: async () => Buffer.from(around.input ?? ''),
+      startFileWorker: around.startFileWorker,
       now: () => (time += around.slow ?? 0),
       fillForm: async job => fillForm(job),
     }
