@@ -66,12 +66,18 @@ describe('braggline/fill', () => {
     })
   })
 
-  test('a form that eats memory costs its thread, and the server answers on', async () => {
+  test('a form without end costs its thread, and the server answers meanwhile and after', async () => {
     await client.open(TWO)
-    // Lists of lists are counted one by one, so that what holds them all is the limit of the thread.
-    const greedy =
-      '{% assign l = (1..1000000) %}{% for i in l %}{% assign l = l | reverse | reverse %}{% endfor %}'
-    expect(await fill(greedy)).toMatchObject({ fault: expect.stringMatching(/^a.liquid:1:\d+: /) })
+    const loops = ['a', 'b', 'c'].map(name => `{% for ${name} in (1..99999) %}`).join('')
+    let ended = false
+    const endless = fill(`${loops}${'{% endfor %}'.repeat(3)}`).finally(() => {
+      ended = true
+    })
+    expect(await fill('{{ unit }}')).toMatchObject({ text: 'angstrom' })
+    expect(ended).toBe(false)
+    expect(await endless).toMatchObject({
+      fault: expect.stringMatching(/^a.liquid:1:\d+: .*takes longer than 10 s/),
+    })
     expect(await fill('{{ unit }}')).toMatchObject({ text: 'angstrom' })
   })
 })
