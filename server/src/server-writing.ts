@@ -27,8 +27,13 @@ export function serveWriting({ connection, about, capabilities, hasCommands }: S
     about('hover', null, (snapshot, { position }) => hover(snapshot, position, { links: hasCommands() })),
   )
   connection.onCompletion(
-    about('completion', [], (snapshot, { position }) =>
-      completion(snapshot, position, abilitiesOf(capabilities(), hasCommands())),
+    about('completion', [], (snapshot, { position, context }) =>
+      completion(
+        snapshot,
+        position,
+        abilitiesOf(capabilities(), hasCommands()),
+        context?.triggerCharacter !== undefined,
+      ),
     ),
   )
   connection.onCompletionResolve(resolved)

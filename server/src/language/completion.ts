@@ -13,9 +13,10 @@ export function completion(
   snapshot: Snapshot,
   position: Position,
   abilities: Abilities = NO_ABILITIES,
+  unasked = false,
 ): CompletionItem[] {
   const offset = snapshot.offsetOf(position)
-  const asked: Asked = { snapshot, offset, place: placeAt(snapshot.text, offset), abilities }
+  const asked: Asked = { snapshot, offset, place: placeAt(snapshot.text, offset), abilities, unasked }
   switch (asked.place.kind) {
     case 'key':
       return keyItems(asked)

@@ -234,6 +234,13 @@ describe('other words', () => {
   )
 })
 
+test('a list that opens by itself behind `lattice:` does not catch the Enter of a new line', () => {
+  const snapshot = snapshotOf('lattice:')
+  const end = snapshot.positionOf(8)
+  expect(completion(snapshot, end, MODERN, true)).toEqual([])
+  expect(completion(snapshot, end, MODERN).length).toBeGreaterThan(BRAVAIS_TYPES.length)
+})
+
 describe('an empty file', () => {
   test.each(['$0', '# A crystal.\n$0', `${CELL}---\n$0`])('%j is offered whole files', source => {
     const text = taken(source, 'tetragonal: a c')

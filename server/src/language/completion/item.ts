@@ -36,6 +36,8 @@ export interface Asked {
   readonly offset: number
   readonly place: Place
   readonly abilities: Abilities
+  /** The list opened by itself, at a character: Enter is then as likely meant for a new line. */
+  readonly unasked: boolean
 }
 
 export interface Offer {

@@ -2,7 +2,7 @@
 /** What may stand behind a key. */
 import { type CompletionItem, CompletionItemKind } from 'vscode-languageserver-types'
 import { BRAVAIS } from '../../crystal/bravais.ts'
-import { findKey, type KeyRow } from '../../format/keys.ts'
+import { findKey, type KeyRow, type ValueKind } from '../../format/keys.ts'
 import { parameterLines, SETTINGS } from '../skeletons.ts'
 import { groupOffers } from './groups.ts'
 import { type Asked, both, items, type Offer } from './item.ts'
@@ -26,6 +26,9 @@ export function valueItems(asked: Asked): CompletionItem[] {
   return items(asked, offersFor(asked, row), written.length, rest)
 }
 
+/** Values that people begin on a new line. */
+const BLOCKS = new Set<ValueKind>(['mapping', 'meshes', 'points', 'atoms', 'rows', 'severities'])
+
 function offersFor(asked: Asked, row: KeyRow): Offer[] {
   if (row.path === 'lattice.bravais') return bravais(asked)
   if (row.kind === 'space-group') return groupOffers(asked)
@@ -33,6 +36,7 @@ function offersFor(asked: Asked, row: KeyRow): Offer[] {
   // A container: what can stand in it, written out.
   if (asked.place.quoted) return []
   const { style, column } = asked.place
+  if (asked.unasked && style === 'block' && BLOCKS.has(row.kind)) return []
   if (style === 'block' && hasBlockBelow(asked.snapshot.text, asked.offset, column)) return []
   if (row.path === 'lattice') return lattice(asked)
   return forms(asked, row)
