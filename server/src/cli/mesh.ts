@@ -1,7 +1,7 @@
 import { csv } from '../exchange/csv.ts'
 import { inColumns } from '../exchange/layout.ts'
 import { MOST_MESH_POINTS, type MeshJson, meshJson } from '../exchange/mesh-points.ts'
-import { meshesOf, type NamedMesh } from '../exchange/sampling.ts'
+import { meshesOf, type NamedMesh } from '../meaning/sampling.ts'
 import { nearest } from '../format/nearest.ts'
 import { count } from '../meaning/wording.ts'
 import { Refusal } from './io.ts'

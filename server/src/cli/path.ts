@@ -1,6 +1,6 @@
 import { knownSegments } from '../exchange/path-points.ts'
 import { pathCsv, pathJson, pathTable } from '../exchange/path-table.ts'
-import { walkedPath } from '../exchange/sampling.ts'
+import { walkedPath } from '../meaning/sampling.ts'
 import type { Crystal } from '../meaning/crystal.ts'
 import { Refusal } from './io.ts'
 import { Desk } from './output.ts'

@@ -33,7 +33,7 @@ import { count, fractions, plain } from '../meaning/wording.ts'
 import type { KList } from './k-list.ts'
 import { MOST_MESH_POINTS } from './mesh-points.ts'
 import { knownSegments, type PathPoint, pathPoints } from './path-points.ts'
-import { meshesOf } from './sampling.ts'
+import { meshesOf } from '../meaning/sampling.ts'
 
 export type FaultKind = 'off' | 'missing' | 'doubled' | 'order' | 'weight'
 

@@ -2,7 +2,7 @@
 import { segmentSteps } from '../crystal/path.ts'
 import { add, scale, subtract, type Vec3 } from '../crystal/vector.ts'
 import type { Crystal, PlacedPoint } from '../meaning/crystal.ts'
-import { stepRule, walkedPath } from './sampling.ts'
+import { stepRule, walkedPath } from '../meaning/sampling.ts'
 
 export interface KnownSegment {
   /** Ordinal of the piece, from 0; a segment with an unknown end breaks its piece in two. */

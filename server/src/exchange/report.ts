@@ -11,7 +11,7 @@ import type { ParameterName, Severity } from '../format/model.ts'
 import type { Unit } from '../crystal/units.ts'
 import type { Crystal, PlacedPoint } from '../meaning/crystal.ts'
 import { lineHere } from '../meaning/placing.ts'
-import { meshesOf, stepRule, walkedPath } from './sampling.ts'
+import { meshesOf, stepRule, walkedPath } from '../meaning/sampling.ts'
 import { type Tally, tally } from './findings-json.ts'
 
 /** Lengths are in the file's unit, k in its inverse with 2π. Rows of matrices are vectors. */

@@ -21,7 +21,7 @@ import type {
   SceneSolid,
   TextRange,
 } from '../protocol.ts'
-import { meshesOf, walkedPath } from './sampling.ts'
+import { meshesOf, walkedPath } from '../meaning/sampling.ts'
 
 /** More irreducible points than this are no picture any more. */
 const MOST_MESH_POINTS = 20_000

@@ -11,7 +11,7 @@ import { content, count, degrees, fraction as fractionText, length, plain } from
 import { inColumns } from './layout.ts'
 import { knownSegments } from './path-points.ts'
 import { latticeParameters } from './report.ts'
-import { walkedPath } from './sampling.ts'
+import { walkedPath } from '../meaning/sampling.ts'
 
 export interface SupercellMapJson {
   readonly unit: Unit

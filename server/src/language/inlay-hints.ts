@@ -2,7 +2,7 @@
 import { type InlayHint, InlayHintKind, type Range } from 'vscode-languageserver-types'
 import type { DocumentAnalysis, Snapshot } from '../analysis.ts'
 import { placeInZone, zoneNumber } from '../crystal/zone.ts'
-import { meshOf } from '../exchange/sampling.ts'
+import { meshOf } from '../meaning/sampling.ts'
 import { standsHere } from '../format/edits.ts'
 import { displayLabel } from '../format/path.ts'
 import { lineEnd } from '../format/text.ts'

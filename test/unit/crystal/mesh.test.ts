@@ -9,6 +9,7 @@ import {
   meshOrbits,
   meshPoints,
   symmetricDivisions,
+  symmetricShifts,
 } from '../../../server/src/crystal/mesh.ts'
 import {
   apply,
@@ -291,6 +292,36 @@ describe('divisions for a spacing', () => {
           Math.max(...least) ** 3,
         )
       }),
+    )
+  })
+})
+
+describe('shifts near a given one that keep every rotation', () => {
+  test.each([
+    ['fcc', [0.5, 0.5, 0.5], [0, 0, 0]],
+    ['bcc', [0.5, 0.5, 0], [0.5, 0.5, 0.5]],
+    ['bcc', [0.5, 0, 0], [0, 0, 0]],
+    ['hexagonal', [0.5, 0.5, 0.5], [0, 0, 0.5]],
+    ['sc', [1.5, 0.5, 0.5], [1.5, 0.5, 0.5]],
+  ] as [string, Vec3, Vec3][])('%s: %j gives %j', (lattice, shift, nearest) => {
+    expect(symmetricShifts(even(6, shift), GROUPS[lattice])[0]).toEqual(nearest)
+  })
+  test('none where the divisions break the symmetry', () => {
+    expect(symmetricShifts({ divisions: [4, 4, 5], shift: [0, 0, 0] }, GROUPS.sc)).toEqual([])
+  })
+  test('all are symmetric, from the nearest to the farthest', () => {
+    fc.assert(
+      fc.property(lattices, divisions, shifts, (lattice, [n], shift) => {
+        const apart = (other: Vec3) =>
+          other.reduce((sum, s, i) => sum + Math.abs(s - shift[i] - Math.round(s - shift[i])), 0)
+        const found = symmetricShifts(even(n, shift), GROUPS[lattice])
+        found.forEach((other, i) => {
+          expect(isSymmetricMesh(even(n, other), GROUPS[lattice])).toBe(true)
+          if (i > 0) expect(apart(other)).toBeGreaterThanOrEqual(apart(found[i - 1]) - 1e-12)
+        })
+        expect(found.length).toBeGreaterThan(0)
+      }),
+      { numRuns: 40 },
     )
   })
 })

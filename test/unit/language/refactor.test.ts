@@ -16,7 +16,7 @@ import {
   type Vec3,
 } from '../../../server/src/crystal/vector.ts'
 import { applyEdits } from '../../../server/src/format/edits.ts'
-import { meshesOf } from '../../../server/src/exchange/sampling.ts'
+import { meshesOf } from '../../../server/src/meaning/sampling.ts'
 import {
   type Abilities,
   type RefactorData,

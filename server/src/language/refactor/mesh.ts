@@ -6,7 +6,7 @@ import { insertKeys, replaceValue, standsHere } from '../../format/edits.ts'
 import type { MeshBlock, TextEdit } from '../../format/model.ts'
 import { formatNumber } from '../../format/numbers.ts'
 import type { Crystal } from '../../meaning/crystal.ts'
-import { meshOf } from '../../exchange/sampling.ts'
+import { meshOf } from '../../meaning/sampling.ts'
 import type { Offer, Refactor, Spot } from './refactor.ts'
 import { isIn, quietly } from './refactor.ts'
 

@@ -1,1 +1,0 @@
-export * from '../meaning/sampling.ts'
