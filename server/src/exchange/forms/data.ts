@@ -13,7 +13,7 @@ import { meshJson } from '../mesh-points.ts'
 import { type KnownSegment, knownSegments } from '../path-points.ts'
 import { pathJson } from '../path-table.ts'
 import { type MeshReport, type Report, reportOf } from '../report.ts'
-import { meshesOf } from '../sampling.ts'
+import { meshesOf } from '../../meaning/sampling.ts'
 import { complete } from './schema.ts'
 
 export type FormData = Readonly<Record<string, unknown>>
