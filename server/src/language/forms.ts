@@ -1,7 +1,7 @@
 /** Forms of an open text: the client gathers the form and its partials, so that any file system will do. */
 import type { DocumentAnalysis, Snapshot } from '../analysis.ts'
 import { formData } from '../exchange/forms/data.ts'
-import { faultLine, type FillForm } from '../exchange/forms/form.ts'
+import { faultLine, type FillForm, PREVIEW_LIMITS } from '../exchange/forms/form.ts'
 import { missingPartials, MOST_PARTIALS } from '../exchange/forms/partials.ts'
 import { count } from '../meaning/wording.ts'
 import type { FillParams, FillResult } from '../protocol.ts'
@@ -51,7 +51,7 @@ export function fillAnswer(
   })
   if ('refused' in known) return Promise.resolve(answer({ fault: `${form.name}: ${known.refused}` }))
   return tools
-    .fillForm({ ...form, partials, ...known })
+    .fillForm({ ...form, partials, ...known, limits: PREVIEW_LIMITS })
     .then(outcome =>
       answer('fault' in outcome ? { fault: faultLine(outcome.fault) } : { text: outcome.text }),
     )

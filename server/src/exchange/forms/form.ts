@@ -38,8 +38,10 @@ export type FillForm = (job: FormJob) => Promise<FormOutcome>
 /** Longer forms are no forms, and reading one must not take seconds; in UTF-16 units, each partial too. */
 export const LONGEST_FORM = 200_000
 
-/** The longest list of k-points takes a few seconds; the text must still fit in an editor. */
-export const FORM_LIMITS: FormLimits = { milliseconds: 10_000, characters: 32_000_000 }
+/** The longest list of k-points takes some seconds, on a busy machine more; the text must still fit in an editor. */
+export const FORM_LIMITS: FormLimits = { milliseconds: 30_000, characters: 32_000_000 }
+/** Beside a file that is being edited nobody waits longer. */
+export const PREVIEW_LIMITS: FormLimits = { ...FORM_LIMITS, milliseconds: 10_000 }
 
 /** `bands.liquid:12:5: there is no lattice.vectrs; did you mean vectors?` */
 export const faultLine = ({ form, line, column, message }: FormFault): string =>

@@ -1,7 +1,7 @@
 /** The page about forms: how to write one, and every variable, filter and tag that there is. Made from the code. */
 import { TAGS } from './engine.ts'
 import { LIQUID_FILTERS, OWN_FILTERS } from './filters.ts'
-import { FORM_LIMITS, LONGEST_FORM } from './form.ts'
+import { FORM_LIMITS, LONGEST_FORM, PREVIEW_LIMITS } from './form.ts'
 import { MOST_LISTED } from './data.ts'
 import { FORM_DATA, type Schema } from './schema.ts'
 
@@ -48,7 +48,8 @@ ${indented(EXAMPLE_TEXT)}
 - **Partials:** \`{% render "_row.liquid", v: v %}\` fills in a text of the form's folder. It sees the variables below and what it
   is given; \`include\` sees the form's own as well. A name with an underscore in front is not offered as a form.
 - **Safe:** no code runs, nothing outside the form's folder is read. A form has ${LONGEST_FORM.toLocaleString('en')} characters at most, its
-  text ${FORM_LIMITS.characters.toLocaleString('en')}, a list of k-points ${MOST_LISTED.toLocaleString('en')}; it is given ${FORM_LIMITS.milliseconds / 1000} s.
+  text ${FORM_LIMITS.characters.toLocaleString('en')}, a list of k-points ${MOST_LISTED.toLocaleString('en')}; it is given ${FORM_LIMITS.milliseconds / 1000} s,
+  in the editor ${PREVIEW_LIMITS.milliseconds / 1000} s.
 
 Conventions differ between programs: confirm the cell and the frame in your program's own output before you launch.
 
