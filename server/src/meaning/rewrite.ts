@@ -37,6 +37,7 @@ import {
   removeItems,
   replaceValue,
   replaceVector,
+  scalarText,
   standsHere,
 } from '../format/edits.ts'
 import {
@@ -477,7 +478,7 @@ function labelledPoints(
   const edits = points && added.length > 0 ? insertKeys(text, points, added) : []
   const keys: NewKey[] = []
   if (!points && added.length > 0)
-    keys.push(['points', `{${added.map(([label, k]) => `${label}: ${k}`).join(', ')}}`])
+    keys.push(['points', `{${added.map(([label, k]) => `${scalarText(label)}: ${k}`).join(', ')}}`])
   if (book && labelsEntry) edits.push(replaceValue(text, labelsEntry, book))
   else if (book) keys.push(['labels', book])
   return keys.length > 0 ? [...edits, ...insertKeys(text, document, keys)] : edits

@@ -310,6 +310,9 @@ atoms:
   - O: [1/2, 1/2, 0]
   - Ti: [1/2, 1/2, 1/2] # Ti
 `)
+    const products =
+      'lattice: {bravais: cP, a: 4}\nframes: {atoms: cartesian}\natoms:\n  - $0O: [0.5*a, 0, 0]\n  - C: [0, 0, 0]\n'
+    expect(done(products, /^Sort/)).toContain('  - C: [0, 0, 0]\n  - O: [0.5*a, 0, 0]\n')
     expect(titles(done(text, /^Sort/).replace('Ba:', '$0Ba:'))).not.toContainEqual(
       expect.stringMatching(/^Sort/),
     )
@@ -326,6 +329,10 @@ atoms:
     expect(done('lattice: {bravais: cP, a: 4}\npath: Γ – $0M\n', 'Write M into the points')).toBe(
       'lattice: {bravais: cP, a: 4}\npoints: {M: [1/2, 1/2, 0]}\npath: Γ – M\n',
     )
+  })
+  test('a label that some reader would take for a truth value is quoted', () => {
+    const sheet = 'lattice: {bravais: oP, a: 4, b: 5, c: 6}\npath: Γ – $0Y\n'
+    expect(done(sheet, 'Write Y into the points')).toContain('points: {"Y": [0, 1/2, 0]}\n')
   })
   test('a mesh by spacing, by divisions and new', () => {
     const text = 'lattice: {bravais: cP, a: 4}\nmesh: {$0spacing: 0.2}\n'

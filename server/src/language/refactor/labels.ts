@@ -1,6 +1,6 @@
 /** Labels of the book become points of the file, and back. */
 import { combine, distance, inverse, type Vec3 } from '../../crystal/vector.ts'
-import { insertKeys, type NewKey, removeItems } from '../../format/edits.ts'
+import { insertKeys, type NewKey, removeItems, scalarText } from '../../format/edits.ts'
 import type { PointEntry, TextEdit } from '../../format/model.ts'
 import { displayLabel } from '../../format/path.ts'
 import { covers } from '../../analysis.ts'
@@ -48,7 +48,7 @@ function written({ crystal, document, text }: Spot, labels: readonly string[]): 
     return [label, `[${numbers.slice(0, dimension).map(numberText).join(', ')}]`]
   })
   if (document.points) return insertKeys(text, document.points, added)
-  const block = added.map(([label, numbers]) => `${label}: ${numbers}`).join(', ')
+  const block = added.map(([label, numbers]) => `${scalarText(label)}: ${numbers}`).join(', ')
   return insertKeys(text, document, [['points', `{${block}}`]])
 }
 

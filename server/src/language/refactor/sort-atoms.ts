@@ -39,7 +39,7 @@ function sorted({ document, text }: Spot, order: readonly PlacedAtom[]): TextEdi
   const items = document.atoms!.items
   const [from, to] = [items[0].at[0], items.at(-1)!.at[1]]
   // An alias must stay behind its anchor.
-  if (/[&*]/.test(text.slice(from, to))) return undefined
+  if (ANCHOR_OR_ALIAS.test(text.slice(from, to))) return undefined
   if (text[document.atoms!.at[0]] === '[') {
     if (text.slice(from, to).includes('#')) return undefined
     return items.map(({ at }, i) => ({ at, text: text.slice(...order[i].entry.at) }))
@@ -53,5 +53,8 @@ function sorted({ document, text }: Spot, order: readonly PlacedAtom[]): TextEdi
     return { at: [starts[i], ends[i]], text: text.slice(starts[index], ends[index]) }
   })
 }
+
+/** `2*a` is none. */
+const ANCHOR_OR_ALIAS = /[\s[{,][&*][^\s,\]}]/
 
 const feedAt = (text: string, end: number): number => (text[end] === '\r' ? 2 : 1)
