@@ -50,4 +50,20 @@ describe('commands', () => {
     await vscode.commands.executeCommand('undo')
     assert.ok(editor.document.getText().includes('path: Γ – X\n'))
   })
+  it('Rewrite for Supercell: lattice, atoms and path of the larger cell, undone in one step', async () => {
+    const editor = await open('silicon.lattice.yaml')
+    const before = editor.document.getText()
+    await editor.edit(change =>
+      change.insert(new vscode.Position(editor.document.lineCount, 0), 'supercell: [2, 1, 1]\n'),
+    )
+    await settled(editor.document)
+    await vscode.commands.executeCommand('braggline.rewriteForSupercell')
+    const after = editor.document.getText()
+    assert.ok(!after.includes('supercell:'), after)
+    assert.ok(after.includes('vectors:'), after)
+    const atoms = (text: string) => text.split('\n').filter(line => /^ *- Si/.test(line)).length
+    assert.strictEqual(atoms(after), 2 * atoms(before))
+    await vscode.commands.executeCommand('undo')
+    assert.ok(editor.document.getText().includes('supercell: [2, 1, 1]\n'))
+  })
 })

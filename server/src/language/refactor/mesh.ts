@@ -1,5 +1,6 @@
 /** A mesh by its divisions or by the spacing that gives them. */
-import { divisionsForSpacing } from '../../crystal/mesh.ts'
+import { divisionsForSpacing, isSymmetricMesh } from '../../crystal/mesh.ts'
+import { stepsAtSpacing } from '../../crystal/path.ts'
 import { INVERSE_SYMBOL } from '../../crystal/units.ts'
 import { norm, type Vec3 } from '../../crystal/vector.ts'
 import { insertKeys, replaceValue, standsHere } from '../../format/edits.ts'
@@ -73,11 +74,19 @@ const listOf = (divisions: Vec3, { lattice }: Crystal): string =>
 /** The shortest decimal of which the divisions follow; undefined where none gives them. */
 function spacingFor({ lattice, kGroup }: Crystal, divisions: Vec3): string | undefined {
   const { reciprocal, dimension } = lattice!
+  if (!isSymmetricMesh({ divisions, shift: [0, 0, 0] }, kGroup!)) return undefined
+  const lengths = reciprocal.slice(0, dimension).map(norm)
   // A spacing of |bᵢ|/nᵢ gives nᵢ, the largest that does so; the finest direction decides.
-  const steps = reciprocal.slice(0, dimension).map((b, i) => norm(b) / divisions[i])
+  const steps = lengths.map((size, i) => size / divisions[i])
+  // To raise divisions to a symmetric set costs much more than to see that they are not the ones.
+  const isNear = (spacing: number): boolean => {
+    const least = lengths.map(size => stepsAtSpacing(size, spacing))
+    return least.every((n, i) => n <= divisions[i]) && least.some((n, i) => n === divisions[i])
+  }
   for (const coarsest of [Math.max(...steps), Math.min(...steps)])
     for (let digits = 1; digits <= MOST_DIGITS; digits++)
       for (const spacing of roundedNear(coarsest, digits)) {
+        if (!isNear(spacing)) continue
         const found = divisionsForSpacing(reciprocal, dimension, spacing, kGroup!)
         if (found.every((n, i) => n === divisions[i])) return formatNumber(spacing, MOST_DIGITS)
       }
