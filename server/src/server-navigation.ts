@@ -16,6 +16,7 @@ import { definition, highlights, references } from './language/references.ts'
 import { prepareRename, type Refusal, rename } from './language/rename.ts'
 import { selectionRanges } from './language/selection.ts'
 import { LEGEND, semanticTokens, tokenEdits } from './language/semantic-tokens.ts'
+import { workspaceEdit } from './language/workspace-edit.ts'
 import { workspaceSymbols } from './language/workspace-symbols.ts'
 
 /** The answer about the text that a request names; nothing where that text is not open. */
@@ -70,9 +71,9 @@ export function serveNavigation({ connection, about, capabilities, rulePages, op
   connection.onRenameRequest(
     about('rename', null, (snapshot, { textDocument: { uri }, position, newName }) => {
       const edits = orThrow(rename(snapshot, snapshot.offsetOf(position), newName))
-      if (!edits) return null
-      if (!capabilities().workspace?.workspaceEdit?.documentChanges) return { changes: { [uri]: edits } }
-      return { documentChanges: [{ textDocument: { uri, version: snapshot.version }, edits }] }
+      const versions = capabilities().workspace?.workspaceEdit?.documentChanges === true
+      const text = { uri, version: snapshot.version }
+      return edits ? workspaceEdit(text, edits, { versions, annotations: false }) : null
     }),
   )
   connection.onWorkspaceSymbol(({ query }) => {

@@ -115,7 +115,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   let rulePages = options.rulePages
   let announces = false
   let commands = false
-  let abilities: Abilities = { annotations: false, resolves: false }
+  let abilities: Abilities = { versions: false, annotations: false, resolves: false }
   let columns: Columns = 'utf-16'
   let client: ClientCapabilities = {}
 
@@ -297,7 +297,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
   connection.onCodeAction(
     about('fixes', [], (snapshot, { textDocument: { uri }, range, context }) => {
       const request = { uri, version: snapshot.version, range, only: context.only }
-      const fixes = codeActions(snapshot, { ...request, shown: context.diagnostics })
+      const fixes = codeActions(snapshot, { ...request, shown: context.diagnostics, abilities })
       // The bulb that follows the cursor is for faults; refactorings are for who opens the menu.
       if (context.triggerKind === CodeActionTriggerKind.Automatic && !context.only) return fixes
       return [...fixes, ...refactorActions(snapshot, request, abilities)]
@@ -452,9 +452,8 @@ const NOT_REFACTORED =
   'Nothing was changed: something that refers to the cell cannot be read, or stands behind an alias, or the text has changed.'
 
 const abilitiesOf = ({ textDocument, workspace }: ClientCapabilities): Abilities => ({
-  annotations:
-    workspace?.workspaceEdit?.documentChanges === true &&
-    workspace.workspaceEdit.changeAnnotationSupport !== undefined,
+  versions: workspace?.workspaceEdit?.documentChanges === true,
+  annotations: workspace?.workspaceEdit?.changeAnnotationSupport !== undefined,
   resolves:
     textDocument?.codeAction?.dataSupport === true &&
     textDocument.codeAction.resolveSupport?.properties.includes('edit') === true,

@@ -1,6 +1,6 @@
 /** Editors that know little and editors that count otherwise get the same answers as any other. */
 import { afterEach, describe, expect, test } from 'vitest'
-import type { CodeAction, CompletionItem, Hover, TextDocumentEdit } from 'vscode-languageserver-protocol/node'
+import type { CodeAction, CompletionItem, Hover } from 'vscode-languageserver-protocol/node'
 import { Client, MODERN, PLAIN } from './client.ts'
 
 let client: Client | undefined
@@ -85,10 +85,9 @@ describe('an editor of few capabilities', () => {
       range: finding.range,
       context: { diagnostics: [finding] },
     })
-    const edits =
-      Object.values(actions[0].edit?.changes ?? {})[0] ??
-      (actions[0].edit?.documentChanges?.[0] as TextDocumentEdit | undefined)?.edits
-    expect(edits).toEqual([{ range: finding.range, newText: 'path' }])
+    expect(actions[0].edit).toEqual({
+      changes: { [client.uri]: [{ range: finding.range, newText: 'path' }] },
+    })
   })
 })
 

@@ -4,13 +4,14 @@ import {
   CodeActionKind,
   type Diagnostic,
   type Range,
-  type TextEdit as LspEdit,
+  type WorkspaceEdit,
 } from 'vscode-languageserver-types'
 import type { DocumentFinding, Snapshot } from '../analysis.ts'
 import { chooseSafeFixes } from '../exchange/safe-fixes.ts'
 import { insertAllowance } from '../format/edits.ts'
 import type { TextEdit } from '../format/model.ts'
 import { rangeOf } from './diagnostics.ts'
+import { type EditAbilities, workspaceEdit } from './workspace-edit.ts'
 
 export const FIX_ALL = `${CodeActionKind.SourceFixAll}.braggline`
 
@@ -22,6 +23,7 @@ export interface FixRequest {
   readonly shown: readonly Diagnostic[]
   /** Kinds asked for; all where absent. */
   readonly only?: readonly string[]
+  readonly abilities: EditAbilities
 }
 
 export function codeActions(snapshot: Snapshot, request: FixRequest): CodeAction[] {
@@ -82,7 +84,7 @@ function actionsFor(snapshot: Snapshot, request: FixRequest, finding: DocumentFi
 const safeEdits = (findings: readonly DocumentFinding[]): TextEdit[] =>
   chooseSafeFixes(findings).flatMap(({ fix }) => fix.edits)
 
-function toWorkspaceEdit(snapshot: Snapshot, { uri, version }: FixRequest, edits: readonly TextEdit[]) {
-  const changes: LspEdit[] = edits.map(edit => ({ range: rangeOf(snapshot, edit.at), newText: edit.text }))
-  return { documentChanges: [{ textDocument: { uri, version }, edits: changes }] }
+function toWorkspaceEdit(snapshot: Snapshot, request: FixRequest, edits: readonly TextEdit[]): WorkspaceEdit {
+  const changes = edits.map(edit => ({ range: rangeOf(snapshot, edit.at), newText: edit.text }))
+  return workspaceEdit(request, changes, request.abilities)
 }

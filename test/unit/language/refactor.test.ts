@@ -27,7 +27,7 @@ import type { Crystal } from '../../../server/src/meaning/crystal.ts'
 import { snapshotOf } from '../checks/harness.ts'
 
 const URI = 'file:///a.lattice.yaml'
-const EAGER: Abilities = { annotations: true, resolves: false }
+const EAGER: Abilities = { versions: true, annotations: true, resolves: false }
 
 function actionsAt(text: string, offset: number, abilities = EAGER, only?: string[]): CodeAction[] {
   const snapshot = snapshotOf(text)
@@ -375,7 +375,7 @@ describe('what is offered', () => {
   })
   test('edits come when one is chosen, and not for another version of the text', () => {
     const text = 'lattice: {bravais: cF, a: 4}\n'
-    const lazy: Abilities = { annotations: true, resolves: true }
+    const lazy: Abilities = { versions: true, annotations: true, resolves: true }
     const [action] = actionsAt(text, 3, lazy)
     expect(action.edit).toBeUndefined()
     const data = action.data as RefactorData
@@ -390,7 +390,7 @@ describe('what is offered', () => {
       changeAnnotations: { change: { needsConfirmation: true } },
       documentChanges: [{ textDocument: { uri: URI, version: 0 } }],
     })
-    const plain = actionsAt(text, 3, { annotations: false, resolves: false })[0].edit!
+    const plain = actionsAt(text, 3, { versions: true, annotations: false, resolves: false })[0].edit!
     expect(plain.changeAnnotations).toBeUndefined()
     expect(JSON.stringify(plain)).not.toContain('annotationId')
   })

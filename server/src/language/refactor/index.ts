@@ -1,13 +1,8 @@
 /** The list of refactorings, and how they reach an editor: titles at once, edits when one of them is chosen. */
-import type {
-  AnnotatedTextEdit,
-  CodeAction,
-  Range,
-  TextEdit as LspEdit,
-  WorkspaceEdit,
-} from 'vscode-languageserver-types'
+import type { CodeAction, Range, TextEdit as LspEdit, WorkspaceEdit } from 'vscode-languageserver-types'
 import type { Snapshot } from '../../analysis.ts'
 import { rangeOf } from '../diagnostics.ts'
+import { type EditAbilities, type EditedText, workspaceEdit } from '../workspace-edit.ts'
 import { restateCell } from './cell.ts'
 import { restateAtoms, restatePoints } from './frames.ts'
 import { extractPoint, forgetPoint } from './labels.ts'
@@ -28,9 +23,7 @@ export const REFACTORS: readonly Refactor[] = [
 ]
 
 /** What the client can do with an answer. */
-export interface Abilities {
-  /** It shows changes that carry a note, and asks for those that want a look. */
-  readonly annotations: boolean
+export interface Abilities extends EditAbilities {
   /** It asks for the edit of an action when it is chosen. */
   readonly resolves: boolean
 }
@@ -72,7 +65,7 @@ export function refactorActions(
       }
       const change = offer.change()
       return change
-        ? [{ title, kind, edit: toWorkspaceEdit(snapshot, uri, version, title, change, abilities) }]
+        ? [{ title, kind, edit: toWorkspaceEdit(snapshot, { uri, version }, title, change, abilities) }]
         : []
     }),
   )
@@ -92,14 +85,15 @@ export function resolveRefactor(
       ?.offers(spot)
       .find(each => each.key === key)
   const change = offer?.change()
-  return change && toWorkspaceEdit(snapshot, uri, version, offer!.title, change, abilities)
+  return change && toWorkspaceEdit(snapshot, { uri, version }, offer!.title, change, abilities)
 }
 
 /** The edits that rewrite the document at a place for its supercell, wherever in it the place is. */
 export function supercellEdit(snapshot: Snapshot, offset: number): LspEdit[] | undefined {
   const spot = spotAt(snapshot, offset)
   const offer: Offer | undefined = spot && supercellOffers(spot)[0]
-  return offer?.change()?.edits.map(edit => ({ range: rangeOf(snapshot, edit.at), newText: edit.text }))
+  const edits = offer?.change()?.edits
+  return edits && inText(snapshot, edits)
 }
 
 function spotAt(snapshot: Snapshot, offset: number): Spot | undefined {
@@ -107,26 +101,19 @@ function spotAt(snapshot: Snapshot, offset: number): Spot | undefined {
   return analysis && { snapshot, text: snapshot.text, offset, ...analysis }
 }
 
-const NOTE = 'change'
+const inText = (snapshot: Snapshot, edits: Change['edits']): LspEdit[] =>
+  edits.map(({ at, text }) => ({ range: rangeOf(snapshot, at), newText: text }))
 
-function toWorkspaceEdit(
+const toWorkspaceEdit = (
   snapshot: Snapshot,
-  uri: string,
-  version: number | null,
+  text: EditedText,
   title: string,
   { edits, confirm }: Change,
-  { annotations }: Abilities,
-): WorkspaceEdit {
-  const isNoted = annotations && confirm !== undefined
-  const changes = edits.map((edit): LspEdit | AnnotatedTextEdit => ({
-    range: rangeOf(snapshot, edit.at),
-    newText: edit.text,
-    ...(isNoted ? { annotationId: NOTE } : {}),
-  }))
-  return {
-    documentChanges: [{ textDocument: { uri, version }, edits: changes }],
-    ...(isNoted
-      ? { changeAnnotations: { [NOTE]: { label: title, description: confirm, needsConfirmation: true } } }
-      : {}),
-  }
-}
+  abilities: Abilities,
+): WorkspaceEdit =>
+  workspaceEdit(
+    text,
+    inText(snapshot, edits),
+    abilities,
+    confirm === undefined ? undefined : { label: title, description: confirm },
+  )
