@@ -23,7 +23,6 @@ const PRINTABLE_ASCII = /^[ -~]*$/
  */
 export const harmless = (text: string): string =>
   text.replace(CONTROL, character => (character === '\t' ? ' ' : '�'))
-// biome-ignore lint/suspicious/noControlCharactersInRegex: control characters are what is looked for.
 const CONTROL = /[\u0000-\u001f\u007f-\u009f\u2028\u2029\u202a-\u202e\u2066-\u2069]/g
 
 export type Alignment = 'left' | 'right'
