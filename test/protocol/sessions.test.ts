@@ -13,6 +13,24 @@ const FILES = ['demo', 'demo/drafts'].flatMap(folder =>
 )
 const CLIPBOARD = FILES.flatMap(text => text.split(/(?<=\n)(?=\S)/))
 const LONGEST_PASTE = 400
+const METHODS = [
+  'hover',
+  'completion',
+  'signatureHelp',
+  'documentSymbol',
+  'codeAction',
+  'diagnostic',
+  'definition',
+  'references',
+  'documentHighlight',
+  'selectionRange',
+  'foldingRange',
+  'documentLink',
+  'semanticTokens/full',
+  'codeLens',
+  'inlayHint',
+  'formatting',
+]
 
 type Step =
   | { readonly kind: 'insert'; readonly at: number; readonly text: string }
@@ -48,7 +66,7 @@ const step: fc.Arbitrary<Step> = fc.oneof(
     arbitrary: fc.record({
       kind: fc.constant('ask' as const),
       at: place,
-      method: fc.constantFrom('hover', 'completion', 'documentSymbol', 'codeAction', 'diagnostic'),
+      method: fc.constantFrom(...METHODS),
     }),
   },
 )
@@ -121,8 +139,10 @@ class Editor {
       this.client.connection.sendRequest(`textDocument/${method}`, {
         textDocument: { uri: this.uri },
         position,
+        positions: [position],
         range: { start: position, end: position },
-        context: { diagnostics: [] },
+        context: { diagnostics: [], includeDeclaration: true },
+        options: { tabSize: 2, insertSpaces: true },
       }),
     )
   }
