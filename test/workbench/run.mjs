@@ -37,7 +37,7 @@ const SESSIONS = [
   {
     name: 'panels',
     workspace: 'desk',
-    suites: ['walkthrough', 'report-picture', 'report', 'paste', 'workspace-check', 'forms'],
+    suites: ['walkthrough', 'report-picture', 'report', 'paste', 'workspace-check', 'forms', 'cif'],
   },
   { name: 'craft', workspace: 'desk', suites: ['craft'] },
   // The demo folder itself: its files are what the view is for.
@@ -57,6 +57,7 @@ const SESSIONS = [
       'paste',
       'workspace-check',
       'forms',
+      'cif',
     ],
     browser: true,
   },

@@ -458,3 +458,16 @@ atoms:
       findingsOf(`frames: {atoms: primitive}\n${RHOMBOHEDRAL}`).filter(({ severity }) => severity !== 'info'),
     ).toEqual([]))
 })
+
+describe('compounds of the heavy elements', () => {
+  // Fluorite structure: actinide at 000, oxygen at ±(¼¼¼); handbook lattice parameters (from memory).
+  const fluorite = (metal: string, a: number) =>
+    `lattice: {bravais: cF, a: ${a}}\natoms:\n  - ${metal}: [0, 0, 0]\n  - O: [1/4, 1/4, 1/4]\n  - O: [3/4, 3/4, 3/4]\n`
+  test.each([
+    ['U', 5.47],
+    ['Th', 5.6],
+    ['Pu', 5.4],
+    // Without a radius of its own: what stands between the oxygen atoms is not known to be small.
+    ['Cf', 5.31],
+  ])('%sO₂ is in its own unit', (metal, a) => expect(findingsOf(fluorite(metal, a))).toEqual([]))
+})

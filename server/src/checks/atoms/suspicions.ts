@@ -1,4 +1,5 @@
 /** Are the atoms' numbers meant in another unit or another frame than the file states? */
+import { covalentRadius } from '../../crystal/elements.ts'
 import { IN_ANGSTROM, type Unit, UNITS } from '../../crystal/units.ts'
 import { norm, type Vec3 } from '../../crystal/vector.ts'
 import type { AtomFrame, NumberValue } from '../../format/model.ts'
@@ -43,6 +44,9 @@ export const suspectedUnit = once((crystal): UnitSuspicion | undefined => {
   const contact = tightest(crystal)
   const loose = distinctAtoms(crystal).length === 1 ? TOO_LOOSE_ALONE : TOO_LOOSE
   if (!contact || (contact.ratio >= TOO_TIGHT && contact.ratio <= loose)) return undefined
+  // Between atoms that are far apart another one may stand, whose size is not known.
+  if (contact.ratio > loose && crystal.atoms.some(({ element }) => covalentRadius(element) === undefined))
+    return undefined
   if (NOBLE.has(contact.first.element) || NOBLE.has(contact.second.element)) return undefined
   for (const unit of UNITS) {
     const ratio = (contact.ratio * IN_ANGSTROM[unit]) / crystal.angstrom
