@@ -18,7 +18,7 @@ import {
 } from './language/formatting.ts'
 import { type HintData, inlayHints, resolveHint } from './language/inlay-hints.ts'
 import type { EditorSettings } from './language/settings.ts'
-import type { About } from './server-navigation.ts'
+import type { About } from './server-answers.ts'
 
 export interface EditingSurroundings {
   readonly connection: Connection

@@ -18,13 +18,7 @@ import { selectionRanges } from './language/selection.ts'
 import { LEGEND, semanticTokens, tokenEdits } from './language/semantic-tokens.ts'
 import { workspaceEdit } from './language/workspace-edit.ts'
 import { workspaceSymbols } from './language/workspace-symbols.ts'
-
-/** The answer about the text that a request names; nothing where that text is not open. */
-export type About = <P extends { uri: string } | { textDocument: { uri: string } }, R>(
-  name: string,
-  nothing: R,
-  answer: (snapshot: Snapshot, params: P) => R,
-) => (params: P) => R
+import type { About } from './server-answers.ts'
 
 export interface Surroundings {
   readonly connection: Connection

@@ -6,7 +6,7 @@ import { hover } from './language/hover.ts'
 import { signature } from './language/signature.ts'
 import { SKELETONS } from './language/skeletons.ts'
 import { SKELETON_LIST, type SkeletonsResult } from './protocol.ts'
-import type { About } from './server-navigation.ts'
+import type { About } from './server-answers.ts'
 
 export interface Surroundings {
   readonly connection: Connection

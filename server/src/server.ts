@@ -22,69 +22,34 @@ import type { Severities } from './checks/run.ts'
 import type { FillForm } from './exchange/forms/form.ts'
 import type { Severity } from './format/model.ts'
 import type { Columns } from './format/text.ts'
-import { exportCifAnswer, importCifAnswer } from './language/cif.ts'
 import { diagnostics } from './language/diagnostics.ts'
-import { appendToPathEdits } from './language/append-to-path.ts'
 import { codeActions, FIX_ALL } from './language/fixes.ts'
-import { fillAnswer } from './language/forms.ts'
 import { pastedLattice } from './language/pasted-lattice.ts'
 import {
   type Abilities,
   type RefactorData,
   refactorActions,
   resolveRefactor,
-  supercellEdit,
 } from './language/refactor/index.ts'
-import { reportAnswer } from './language/report.ts'
-import { recommendedPathEdit } from './language/recommended-path.ts'
 import { DEFAULT_EDITOR_SETTINGS, readEditorSettings } from './language/settings.ts'
 import { statusOf } from './language/status.ts'
-import { bandsAnswer, documentOf, figureAnswer, sceneAnswer, zoneSolidAnswer } from './language/zone-view.ts'
 import { symbols } from './language/symbols.ts'
 import { Workshop } from './meaning/workshop.ts'
 import {
-  APPEND_TO_PATH,
-  type AppendParams,
-  type AppendResult,
-  BANDS,
-  type BandsResult,
   CHECK_TEXT,
   type CheckTextParams,
   type CheckTextResult,
   CHECKED,
   type CheckedParams,
   type CheckedResult,
-  type DocumentParams,
-  EXPORT_CIF,
-  type ExportCifParams,
-  type ExportCifResult,
-  FIGURE,
-  FILL,
-  type FigureParams,
-  type FigureResult,
-  type FillParams,
-  IMPORT_CIF,
-  type ImportCifParams,
-  type ImportCifResult,
   PASTED_LATTICE,
   type PastedLatticeParams,
   type PastedLatticeResult,
-  RECOMMENDED_PATH,
-  type RecommendedPathParams,
-  REWRITE_FOR_SUPERCELL,
-  type RewriteParams,
-  REPORT,
-  type ReportParams,
-  type ReportResult,
-  SCENE,
-  type SceneResult,
   STATUS,
-  ZONE_SOLID,
-  type ZoneSolidParams,
-  type ZoneSolidResult,
 } from './protocol.ts'
 import { EDITING, refreshShown, serveEditing } from './server-editing.ts'
 import { NAVIGATION, serveNavigation } from './server-navigation.ts'
+import { serveRequests } from './server-requests.ts'
 import { serveWriting, WRITING } from './server-writing.ts'
 import { type StartWorker, WorkerSymmetry } from './symmetry-service.ts'
 
@@ -359,83 +324,7 @@ export function startServer(connection: Connection, options: ServerOptions): voi
       },
     ),
   )
-  connection.onRequest(
-    REWRITE_FOR_SUPERCELL,
-    about('rewrite for supercell', null, (snapshot, { version, position }: RewriteParams) =>
-      snapshot.version === version ? (supercellEdit(snapshot, snapshot.offsetOf(position)) ?? null) : null,
-    ),
-  )
-  connection.onRequest(
-    RECOMMENDED_PATH,
-    about('recommended path', null, (snapshot, { position }: RecommendedPathParams) =>
-      recommendedPathEdit(snapshot, position),
-    ),
-  )
-
-  connection.onRequest(
-    REPORT,
-    about('report', null, (snapshot, params: ReportParams): ReportResult => reportAnswer(snapshot, params)),
-  )
-
-  connection.onRequest(
-    IMPORT_CIF,
-    guard('import of a CIF', null, (params: ImportCifParams): ImportCifResult | null =>
-      importCifAnswer(params),
-    ),
-  )
-  connection.onRequest(
-    EXPORT_CIF,
-    about('export as CIF', null, (snapshot, params: ExportCifParams): ExportCifResult | null =>
-      exportCifAnswer(snapshot, params, options.version),
-    ),
-  )
-
-  // The zone view. What needs a search for symmetry is left out of a picture until the search has ended.
-  connection.onRequest(
-    SCENE,
-    about('scene', null, (snapshot, { document }: DocumentParams): SceneResult | null =>
-      sceneAnswer(snapshot, document),
-    ),
-  )
-  connection.onRequest(
-    BANDS,
-    about('bands', null, (snapshot, { document }: DocumentParams): BandsResult | null =>
-      bandsAnswer(snapshot, document),
-    ),
-  )
-  connection.onRequest(
-    ZONE_SOLID,
-    about('zone solid', null, (snapshot, { document, n }: ZoneSolidParams): ZoneSolidResult | null =>
-      zoneSolidAnswer(snapshot, document, n),
-    ),
-  )
-  connection.onRequest(
-    FIGURE,
-    about('figure', null, (snapshot, params: FigureParams): FigureResult | null =>
-      figureAnswer(snapshot, params),
-    ),
-  )
-  connection.onRequest(
-    APPEND_TO_PATH,
-    about(
-      'append to path',
-      null,
-      (snapshot, { version, document, labels, newPiece }: AppendParams): AppendResult | null => {
-        const analysis = documentOf(snapshot, document)
-        if (!analysis || snapshot.version !== version) return null
-        const edits = appendToPathEdits(snapshot, analysis, labels, newPiece)
-        return edits && { version, edits }
-      },
-    ),
-  )
-
-  connection.onRequest(
-    FILL,
-    about('fill a form', null, (snapshot, params: FillParams) => {
-      const date = new Date().toISOString().slice(0, 10)
-      return fillAnswer(snapshot, params, { fillForm: options.fillForm, version: options.version, date })
-    }),
-  )
+  serveRequests({ connection, about, guard, fillForm: options.fillForm, version: options.version })
 
   connection.onShutdown(() => symmetry.dispose())
   documents.listen(connection)
