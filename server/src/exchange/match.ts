@@ -8,12 +8,13 @@ import {
   meshMiss,
   type MeshSites,
   meshSites,
+  pointAt,
   SiteGrid,
+  transformed,
 } from '../crystal/list-match.ts'
 import { meshPoints } from '../crystal/mesh.ts'
 import { IN_ANGSTROM, type Unit, UNITS } from '../crystal/units.ts'
 import {
-  combine,
   dot,
   IDENTITY,
   inverse,
@@ -32,7 +33,7 @@ import { lazy } from '../meaning/lazy.ts'
 import { count, fractions, plain } from '../meaning/wording.ts'
 import type { KList } from './k-list.ts'
 import { MOST_MESH_POINTS } from './mesh-points.ts'
-import { knownSegments, type PathPoint, pathPoints } from './path-points.ts'
+import { type KnownSegment, knownSegments, pathPlaces } from './path-points.ts'
 import { meshesOf } from '../meaning/sampling.ts'
 
 export type FaultKind = 'off' | 'missing' | 'doubled' | 'order' | 'weight'
@@ -104,8 +105,10 @@ interface Reading {
 type Target =
   | {
       readonly kind: 'path' | 'corners'
-      readonly sequence: readonly Vec3[]
-      readonly labels: readonly (string | undefined)[]
+      /** Fractions, three a point. */
+      readonly sequence: Float64Array
+      /** Of joints and ends, by rising ordinals. */
+      readonly labels: ReadonlyMap<number, string>
       /** Good for the coarsest numbers. */
       readonly grid: SiteGrid
     }
@@ -135,23 +138,20 @@ export function matchList(crystal: Crystal, list: KList | undefined, job?: reado
     : []
   const cell = job && cellJson(relations[0], crystal.dimension!)
   if (!list) return { matches: cell!.related, points: 0, comments: 0, skipped: [], others: [], cell }
-  const head = { points: list.points.length, comments: list.comments, skipped: list.skipped, cell }
-  const numbers = list.points.map(([x, y = 0, z = 0]): Vec3 => [x, y, z])
+  const head = { points: list.count, comments: list.comments, skipped: list.skipped, cell }
   const readings = readingsOf(crystal, job, relations)
   const reach = Math.max(...readings.map(({ axes }) => digitsOf(list, axes)))
   const targets = targetsOf(crystal, Math.min(reach + noiseOf(crystal), COARSEST * crystal.zone!.inradius))
-  const judges = targets.flatMap(target =>
-    readings.map(reading => new Judge(crystal, list, numbers, reading, target)),
-  )
-  const step = Math.max(1, Math.floor(numbers.length / SAMPLE))
-  const sample = numbers.flatMap((_, i) => (i % step === 0 ? [i] : []))
+  const judges = targets.flatMap(target => readings.map(reading => new Judge(crystal, list, reading, target)))
+  const step = Math.max(1, Math.floor(list.count / SAMPLE))
+  const sample = Array.from({ length: Math.ceil(list.count / step) }, (_, n) => n * step)
   const screened = judges
     .map(judge => ({ judge, part: judge.fittingOf(sample) / sample.length }))
     .sort((a, b) => b.part - a.part)
   const best = screened[0]?.part ?? 0
   const explained = screened
     .filter(({ part }) => part > 0 && part >= best - CLEARLY_WORSE)
-    .slice(0, numbers.length > LONG ? FULL_READINGS : undefined)
+    .slice(0, list.count > LONG ? FULL_READINGS : undefined)
     .map(({ judge }) => judge.explain())
     .sort(byQuality)
   const [first, ...more] = explained
@@ -165,19 +165,33 @@ export function matchList(crystal: Crystal, list: KList | undefined, job?: reado
     frames,
     ...(listing && { listing }),
   }))
-  const near = fits ? undefined : nearestInWords(crystal, numbers, judges, best)
+  const near = fits ? undefined : nearestInWords(crystal, list, judges, best)
   return {
     ...head,
     matches: fits,
-    ...(first && { best: first }),
+    ...(first && { best: { ...first, faults: worded(first.faults) } }),
     others,
     ...(near && { nearest: near }),
   }
 }
 
-function byQuality(a: Explanation, b: Explanation): number {
+/** Of many faults few are ever read: only those of the best reading are put into words. */
+type Fault = Omit<MatchFault, 'message'> & { readonly say: () => string }
+type Judgement = Omit<Explanation, 'faults'> & { readonly faults: readonly Fault[] }
+
+const worded = (faults: readonly Fault[]): MatchFault[] =>
+  [...faults]
+    .sort((a, b) => (a.line ?? Number.POSITIVE_INFINITY) - (b.line ?? Number.POSITIVE_INFINITY) || 0)
+    .map(({ kind, line, say, miss }) => ({
+      kind,
+      ...(line !== undefined && { line }),
+      message: say(),
+      ...(miss !== undefined && { miss }),
+    }))
+
+function byQuality(a: Judgement, b: Judgement): number {
   if (a.matches !== b.matches) return a.matches ? -1 : 1
-  const part = ({ fitting, wanted, faults }: Explanation) => faults.length / Math.max(1, fitting, wanted)
+  const part = ({ fitting, wanted, faults }: Judgement) => faults.length / Math.max(1, fitting, wanted)
   return (
     part(a) - part(b) || b.fitting - a.fitting || a.largestMiss / a.tolerance - b.largestMiss / b.tolerance
   )
@@ -268,21 +282,18 @@ const isSame = (m: Mat3, n: Mat3): boolean =>
 function targetsOf(crystal: Crystal, reach: number): Target[] {
   const targets: Target[] = []
   const segments = knownSegments(crystal)
-  const add = (kind: 'path' | 'corners', points: readonly PathPoint[]) => {
-    const sequence = points.map(({ fraction }) => fraction)
+  const add = (kind: 'path' | 'corners', walked: readonly KnownSegment[]) => {
+    const { fractions: sequence, labels } = pathPlaces(walked)
     const { reciprocal, primitive } = crystal.lattice!
-    targets.push({
-      kind,
-      sequence,
-      labels: points.map(({ label }) => label),
-      grid: new SiteGrid(sequence, reciprocal, primitive, reach),
-    })
+    targets.push({ kind, sequence, labels, grid: new SiteGrid(sequence, reciprocal, primitive, reach) })
   }
   if (segments.length > 0 && segments.reduce((sum, { steps }) => sum + steps, 1) <= MOST_MESH_POINTS) {
-    const points = pathPoints(segments)
-    const corners = pathPoints(segments.map(segment => ({ ...segment, steps: 1 })))
-    add('path', points)
-    if (corners.length < points.length) add('corners', corners)
+    add('path', segments)
+    if (segments.some(({ steps }) => steps > 1))
+      add(
+        'corners',
+        segments.map(segment => ({ ...segment, steps: 1 })),
+      )
   }
   const { kGroup } = crystal
   for (const { name, mesh } of kGroup ? meshesOf(crystal) : [])
@@ -300,7 +311,6 @@ class Judge {
   constructor(
     private readonly crystal: Crystal,
     private readonly list: KList,
-    private readonly numbers: readonly Vec3[],
     readonly reading: Reading,
     readonly target: Target,
   ) {
@@ -316,26 +326,29 @@ class Judge {
     this.tolerance = Math.min(digitsOf(list, reading.axes) + noiseOf(crystal), most)
   }
 
-  fraction(i: number): Vec3 {
-    const f = combine(this.numbers[i], this.#toFractions)
+  /** Of all points of the list, or of some; three a point. */
+  #fractions(points: Float64Array): Float64Array {
+    const all = transformed(points, this.#toFractions)
     const { dimension } = this.crystal.lattice!
-    if (dimension === 3) return f
     // Where nothing is periodic nothing may fold: such a component stays under a half.
-    return f.map((x, axis) => (axis < dimension ? x : x / (1 + 2 * Math.abs(x)))) as unknown as Vec3
+    for (let at = 0; at < all.length; at += 3)
+      for (let axis = dimension; axis < 3; axis++) all[at + axis] /= 1 + 2 * Math.abs(all[at + axis])
+    return all
   }
 
   fittingOf(sample: readonly number[]): number {
     const { reciprocal } = this.crystal.lattice!
-    const { target, tolerance } = this
-    return sample.filter(i => {
-      const f = this.fraction(i)
+    const { target, tolerance, list } = this
+    const all = this.#fractions(Float64Array.from(sample.flatMap(i => pointAt(list.points, i))))
+    return sample.filter((_, n) => {
+      const f = pointAt(all, n)
       return target.kind === 'mesh'
         ? meshMiss(target.sites.mesh, f, reciprocal) <= tolerance
-        : target.grid.near(f, tolerance).length > 0
+        : target.grid.isNear(f, tolerance)
     }).length
   }
 
-  explain(): Explanation {
+  explain(): Judgement {
     const { target } = this
     return target.kind === 'mesh' ? this.#explainMesh(target) : this.#explainPath(target)
   }
@@ -349,20 +362,24 @@ class Judge {
     return `${plain(this.#inverse(x), 6)} Å⁻¹`
   }
 
-  #explainPath({ kind, sequence, labels, grid }: Extract<Target, { kind: 'path' | 'corners' }>): Explanation {
+  #explainPath({ kind, sequence, labels, grid }: Extract<Target, { kind: 'path' | 'corners' }>): Judgement {
     const { list } = this
-    const fractionsOfList = this.numbers.map((_, i) => this.fraction(i))
+    const fractionsOfList = this.#fractions(list.points)
     const aligned = alignList(fractionsOfList, sequence, grid, this.tolerance)
     const notes: string[] = []
-    const faults: MatchFault[] = []
+    const faults: Fault[] = []
     const { missing, strays } = this.#strays(aligned, fractionsOfList, sequence, labels, faults)
     let joints = 0
     for (const i of aligned.doubled) {
       const index = aligned.at[i]
       // Programs that run segment by segment say a joint twice.
-      if (aligned.at[i - 1] === index && labels[index] !== undefined) joints++
+      if (aligned.at[i - 1] === index && labels.has(index)) joints++
       else
-        faults.push({ kind: 'doubled', line: list.lines[i], message: `${placeOf(index, labels)} once more` })
+        faults.push({
+          kind: 'doubled',
+          line: list.lines[i],
+          say: () => `${placeOf(index, labels)} once more`,
+        })
     }
     if (joints > 0)
       notes.push(`${count(joints, 'joint')} said twice, at the end of a segment and at the start of the next`)
@@ -370,42 +387,46 @@ class Judge {
       faults.push({
         kind: 'order',
         line: list.lines[i],
-        message: `out of order: ${placeOf(aligned.at[i], labels)} stands here`,
+        say: () => `out of order: ${placeOf(aligned.at[i], labels)} stands here`,
       })
     for (const [from, to] of runsOf(missing)) {
-      const where = `${placeOf(from, labels)} ${fractions(sequence[from], this.crystal.dimension)}`
-      const message =
+      const where = () =>
+        `${placeOf(from, labels)} ${fractions(pointAt(sequence, from), this.crystal.dimension)}`
+      const say = () =>
         from === to
-          ? `missing: ${where}`
-          : `missing: ${to - from + 1} points, from ${where} to ${placeOf(to, labels)}`
-      faults.push({ kind: 'missing', message })
+          ? `missing: ${where()}`
+          : `missing: ${to - from + 1} points, from ${where()} to ${placeOf(to, labels)}`
+      faults.push({ kind: 'missing', say })
     }
-    const off = strays.length / this.numbers.length
-    if (off > RESAMPLED && strays.every(i => this.#isOnSegment(fractionsOfList[i])))
+    const off = strays.length / list.count
+    if (off > RESAMPLED && strays.every(i => this.#isOnSegment(pointAt(fractionsOfList, i))))
       faults.splice(0, faults.length, {
         kind: 'off',
         line: list.lines[strays[0]],
-        message: `every point lies on the path, ${strays.length} of them between its points: it was sampled with other steps`,
+        say: () =>
+          `every point lies on the path, ${strays.length} of them between its points: it was sampled with other steps`,
       })
-    const shifted = aligned.shifted.reduce((sum, x) => sum + x, 0)
-    if (shifted > 0) notes.push(`${count(shifted, 'point')} in another zone: equal up to a reciprocal vector`)
+    if (aligned.shifted > 0)
+      notes.push(`${count(aligned.shifted, 'point')} in another zone: equal up to a reciprocal vector`)
     const lines = new Map<string, number[]>()
     for (const [i, index] of aligned.at.entries()) {
-      const label = index < 0 ? undefined : labels[index]
+      const label = index < 0 ? undefined : labels.get(index)
       if (label === undefined) continue
-      lines.set(label, [...(lines.get(label) ?? []), list.lines[i]])
+      const told = lines.get(label)
+      if (told) told.push(list.lines[i])
+      else lines.set(label, [list.lines[i]])
       const own = list.labels.get(i)
       if (
         own !== undefined &&
         own !== label &&
         !(own === 'G' && label === 'Γ') &&
-        !this.#isPlaced(own, fractionsOfList[i])
+        !this.#isPlaced(own, pointAt(fractionsOfList, i))
       )
         notes.push(`line ${list.lines[i]} is labelled ${displayLabel(own)}; this is ${displayLabel(label)}`)
     }
     return this.#explanation(kind, faults, notes, {
       fitting: aligned.at.reduce((sum, index) => sum + (index >= 0 ? 1 : 0), 0),
-      wanted: sequence.length,
+      wanted: sequence.length / 3,
       largestMiss: aligned.miss.reduce((a, b) => Math.max(a, b), 0),
       labels: [...lines].map(([label, lines]) => ({ label, lines })),
     })
@@ -436,12 +457,13 @@ class Judge {
   /** Points that are none of the sequence: which one was meant, by those before and after it. */
   #strays(
     aligned: Aligned,
-    list: readonly Vec3[],
-    sequence: readonly Vec3[],
-    labels: readonly (string | undefined)[],
-    faults: MatchFault[],
+    list: Float64Array,
+    sequence: Float64Array,
+    labels: ReadonlyMap<number, string>,
+    faults: Fault[],
   ): { missing: readonly number[]; strays: readonly number[] } {
-    const missing = new Set(aligned.missing)
+    const isMissing = new Uint8Array(sequence.length / 3)
+    for (const index of aligned.missing) isMissing[index] = 1
     const strays: number[] = []
     let last = -1
     for (const [i, index] of aligned.at.entries()) {
@@ -450,47 +472,51 @@ class Judge {
         continue
       }
       strays.push(i)
-      const meant = missing.has(last + 1) ? last + 1 : undefined
+      const meant = isMissing[last + 1] === 1 ? last + 1 : undefined
       if (meant !== undefined) {
-        missing.delete(meant)
+        isMissing[meant] = 0
         last = meant
       }
       const miss =
-        meant === undefined ? undefined : apart(list[i], sequence[meant], this.crystal.lattice!.reciprocal)
+        meant === undefined
+          ? undefined
+          : apart(pointAt(list, i), pointAt(sequence, meant), this.crystal.lattice!.reciprocal)
       faults.push({
         kind: 'off',
         line: this.list.lines[i],
-        message:
+        say: () =>
           miss === undefined
             ? 'fits no point of the path'
-            : `${this.#far(miss)} off ${placeOf(meant!, labels)} ${fractions(sequence[meant!], this.crystal.dimension)}`,
+            : `${this.#far(miss)} off ${placeOf(meant!, labels)} ${fractions(pointAt(sequence, meant!), this.crystal.dimension)}`,
         ...(miss !== undefined && { miss: this.#inverse(miss) }),
       })
     }
-    return { missing: [...missing], strays }
+    return { missing: aligned.missing.filter(index => isMissing[index] === 1), strays }
   }
 
-  #explainMesh({ name, sites }: Extract<Target, { kind: 'mesh' }>): Explanation {
+  #explainMesh({ name, sites }: Extract<Target, { kind: 'mesh' }>): Judgement {
     const { list, tolerance } = this
     const { mesh, orbitOf, sizes } = sites
     const { reciprocal } = this.crystal.lattice!
     const total = orbitOf.length
-    const faults: MatchFault[] = []
+    const faults: Fault[] = []
     const notes: string[] = []
-    const seen = new Map<number, number>()
+    const seen = new Int32Array(total).fill(-1)
+    let distinct = 0
     const rows = new Uint32Array(sizes.length)
     const weights = new Float64Array(sizes.length)
     const first = new Int32Array(sizes.length).fill(-1)
     let largestMiss = 0
     let fitting = 0
-    for (const i of this.numbers.keys()) {
-      const f = this.fraction(i)
+    const all = this.#fractions(list.points)
+    for (let i = 0; i < list.count; i++) {
+      const f = pointAt(all, i)
       const miss = meshMiss(mesh, f, reciprocal)
       if (miss > tolerance) {
         faults.push({
           kind: 'off',
           line: list.lines[i],
-          message: `${this.#far(miss)} off the nearest point of the mesh`,
+          say: () => `${this.#far(miss)} off the nearest point of the mesh`,
           miss: this.#inverse(miss),
         })
         continue
@@ -498,14 +524,17 @@ class Judge {
       fitting++
       largestMiss = Math.max(largestMiss, miss)
       const index = meshIndex(mesh, f)
-      const before = seen.get(index)
-      if (before !== undefined)
+      const before = seen[index]
+      if (before >= 0)
         faults.push({
           kind: 'doubled',
           line: list.lines[i],
-          message: `the point of line ${list.lines[before]} once more, up to a reciprocal vector`,
+          say: () => `the point of line ${list.lines[before]} once more, up to a reciprocal vector`,
         })
-      else seen.set(index, i)
+      else {
+        seen[index] = i
+        distinct++
+      }
       const orbit = orbitOf[index]
       rows[orbit]++
       if (first[orbit] < 0) first[orbit] = i
@@ -516,10 +545,11 @@ class Judge {
     for (const orbit of absent)
       faults.push({
         kind: 'missing',
-        message: `missing: ${fractions(places.get(orbit)!, this.crystal.dimension)}${sizes[orbit] > 1 ? ` and all of its ${sizes[orbit]} equivalent points` : ''}`,
+        say: () =>
+          `missing: ${fractions(places.get(orbit)!, this.crystal.dimension)}${sizes[orbit] > 1 ? ` and all of its ${sizes[orbit]} equivalent points` : ''}`,
       })
     const listing =
-      seen.size === total
+      distinct === total
         ? 'full'
         : rows.every(n => n === 1)
           ? 'irreducible'
@@ -553,7 +583,7 @@ class Judge {
       first: Int32Array
       total: number
     },
-    faults: MatchFault[],
+    faults: Fault[],
     notes: string[],
   ): void {
     const { list } = this
@@ -568,33 +598,34 @@ class Judge {
       if (listing === 'partly reduced')
         faults.push({
           kind: 'weight',
-          message: 'neither the full list nor the irreducible one, and without weights',
+          say: () => 'neither the full list nor the irreducible one, and without weights',
         })
       return
     }
     if (!(sum > 0)) {
-      faults.push({ kind: 'weight', message: 'the weights add up to nothing' })
+      faults.push({ kind: 'weight', say: () => 'the weights add up to nothing' })
       return
     }
     for (const [orbit, size] of sizes.entries()) {
       const share = weights[orbit] / sum
       const right = size / total
-      const allowed = (list.weightDigit * (rows[orbit] + right * list.points.length)) / sum + WEIGHT_NOISE
+      const allowed = (list.weightDigit * (rows[orbit] + right * list.count)) / sum + WEIGHT_NOISE
       if (Math.abs(share - right) > allowed)
         faults.push({
           kind: 'weight',
           line: list.lines[first[orbit]],
-          message: `the weight is ${plain(share, 8)} of the whole${rows[orbit] > 1 ? ` (${rows[orbit]} equivalent points)` : ''}; it should be ${plain(right, 8)} (${size} of ${total} points)`,
+          say: () =>
+            `the weight is ${plain(share, 8)} of the whole${rows[orbit] > 1 ? ` (${rows[orbit]} equivalent points)` : ''}; it should be ${plain(right, 8)} (${size} of ${total} points)`,
         })
     }
   }
 
   #explanation(
     target: Explanation['target'],
-    faults: readonly MatchFault[],
+    faults: readonly Fault[],
     notes: readonly string[],
     more: Pick<Explanation, 'fitting' | 'wanted' | 'largestMiss' | 'labels' | 'name' | 'listing'>,
-  ): Explanation {
+  ): Judgement {
     return {
       target,
       frames: this.reading.names,
@@ -602,9 +633,7 @@ class Judge {
       ...more,
       largestMiss: this.#inverse(more.largestMiss),
       tolerance: this.#inverse(this.tolerance),
-      faults: [...faults].sort(
-        (a, b) => (a.line ?? Number.POSITIVE_INFINITY) - (b.line ?? Number.POSITIVE_INFINITY) || 0,
-      ),
+      faults,
       notes,
     }
   }
@@ -641,12 +670,16 @@ function firstPlaces({ mesh, orbitOf }: MeshSites, orbits: readonly number[]): M
 }
 
 /** `X`, or `point 17 of the path, between Γ and X`. */
-function placeOf(index: number, labels: readonly (string | undefined)[]): string {
-  const own = labels[index]
+function placeOf(index: number, labels: ReadonlyMap<number, string>): string {
+  const own = labels.get(index)
   if (own !== undefined) return displayLabel(own)
-  const before = labels.slice(0, index).findLast(label => label !== undefined)
-  const after = labels.slice(index).find(label => label !== undefined)
-  return `point ${index + 1} of the path, between ${displayLabel(before!)} and ${displayLabel(after!)}`
+  let before = ''
+  for (const [at, label] of labels) {
+    if (at > index)
+      return `point ${index + 1} of the path, between ${displayLabel(before)} and ${displayLabel(label)}`
+    before = label
+  }
+  return `point ${index + 1} of the path`
 }
 
 /** A factor that leaves less than this of the points' size is an explanation. */
@@ -657,7 +690,7 @@ const MOSTLY = 0.5
 /** What helps where nothing fits: a common factor, else how far the nearest reading is. */
 function nearestInWords(
   { angstrom }: Crystal,
-  numbers: readonly Vec3[],
+  { points }: KList,
   judges: readonly Judge[],
   best: number,
 ): string | undefined {
@@ -667,23 +700,25 @@ function nearestInWords(
   let nearest: { readonly words: string; readonly away: number } | undefined
   for (const { target, reading } of judges) {
     if (target.kind === 'mesh') continue
-    const wanted = target.sequence.map(fraction => combine(fraction, judges[0].reading.axes))
-    const read = numbers.map(n => combine(n, reading.axes))
+    const ours = judges[0].reading.axes
     const what = target.kind === 'path' ? 'the path' : "the ends of the path's segments"
-    if (wanted.length === read.length) {
-      const product = read.reduce((sum, k, i) => sum + dot(k, wanted[i]), 0)
-      const factor = product / read.reduce((sum, k) => sum + dot(k, k), 0)
-      const size = Math.sqrt(wanted.reduce((sum, k) => sum + dot(k, k), 0))
-      const rest =
-        Math.sqrt(read.reduce((sum, k, i) => sum + norm(subtract(scale(k, factor), wanted[i])) ** 2, 0)) /
-        size
+    if (target.sequence.length === points.length) {
+      const wanted = transformed(target.sequence, ours)
+      const read = transformed(points, reading.axes)
+      const factor = product(read, wanted) / product(read, read)
+      const left = read.map((x, i) => x * factor - wanted[i])
+      const rest = Math.sqrt(product(left, left) / product(wanted, wanted))
       if (rest < SCALED && (!scaled || Math.abs(Math.log(Math.abs(factor))) < scaled.rest))
         scaled = {
           words: `every number times ${plain(factor, 6)} gives ${what} (${reading.names[0]}): a length or a unit differs by that factor`,
           rest: Math.abs(Math.log(Math.abs(factor))),
         }
     }
-    const away = medianDistance(read, wanted) / angstrom
+    const away =
+      medianDistance(
+        transformed(few(points, LOOKED_AT), reading.axes),
+        transformed(few(target.sequence, LOOKED_FOR), ours),
+      ) / angstrom
     if (!nearest || away < nearest.away)
       nearest = {
         words: `${what}, read as ${reading.names[0]}: half of the points are within ${plain(away, 4)} Å⁻¹ of it`,
@@ -693,14 +728,36 @@ function nearestInWords(
   return scaled?.words ?? nearest?.words
 }
 
+function product(p: Float64Array, q: Float64Array): number {
+  let sum = 0
+  for (let i = 0; i < p.length; i++) sum += p[i] * q[i]
+  return sum
+}
+
 /** Distances are taken of so many points to so many. */
 const LOOKED_AT = 60
 const LOOKED_FOR = 600
 
-function medianDistance(list: readonly Vec3[], sequence: readonly Vec3[]): number {
-  const few = (points: readonly Vec3[], most: number) =>
-    points.filter((_, i) => i % Math.ceil(points.length / most) === 0)
-  const targets = few(sequence, LOOKED_FOR)
-  const distances = few(list, LOOKED_AT).map(k => Math.min(...targets.map(p => norm(subtract(k, p)))))
-  return distances.sort((a, b) => a - b)[distances.length >> 1]
+/** At most so many points, evenly spread. */
+function few(points: Float64Array, most: number): Float64Array {
+  const step = 3 * Math.ceil(points.length / 3 / most)
+  return Float64Array.from({ length: 3 * Math.ceil(points.length / step) }, (_, i) => {
+    const axis = i % 3
+    return points[((i - axis) / 3) * step + axis]
+  })
+}
+
+function medianDistance(list: Float64Array, sequence: Float64Array): number {
+  const distances = new Float64Array(list.length / 3)
+  for (let i = 0; i < distances.length; i++) {
+    let least = Number.POSITIVE_INFINITY
+    for (let at = 0; at < sequence.length; at += 3) {
+      const x = list[3 * i] - sequence[at]
+      const y = list[3 * i + 1] - sequence[at + 1]
+      const z = list[3 * i + 2] - sequence[at + 2]
+      least = Math.min(least, x * x + y * y + z * z)
+    }
+    distances[i] = Math.sqrt(least)
+  }
+  return distances.sort()[distances.length >> 1]
 }

@@ -47,25 +47,57 @@ export interface PathPoint {
   readonly label?: string
 }
 
-/** Joints of a piece once, both ends at a break. */
+/** Joints of a piece once, both ends at a break. @param visit gets a segment and a step of it, from 0 to its last one. */
+function walk(segments: readonly KnownSegment[], visit: (segment: KnownSegment, step: number) => void): void {
+  for (const [i, segment] of segments.entries())
+    for (let step = segments[i - 1]?.piece === segment.piece ? 1 : 0; step <= segment.steps; step++)
+      visit(segment, step)
+}
+
 export function pathPoints(segments: readonly KnownSegment[]): PathPoint[] {
   const points: PathPoint[] = []
-  const push = (point: Omit<PathPoint, 'index'>) => points.push({ ...point, index: points.length })
-  for (const [i, { piece, from, to, start, length, steps }] of segments.entries()) {
-    if (segments[i - 1]?.piece !== piece) push({ piece, distance: start, ...placeOf(from) })
-    for (let step = 1; step < steps; step++) {
-      const t = step / steps
-      const between = (u: Vec3, v: Vec3) => add(u, scale(subtract(v, u), t))
-      push({
-        piece,
-        distance: start + t * length,
-        fraction: between(from.fraction, to.fraction),
-        cartesian: between(from.cartesian, to.cartesian),
-      })
-    }
-    push({ piece, distance: start + length, ...placeOf(to) })
-  }
+  walk(segments, ({ piece, from, to, start, length, steps }, step) => {
+    const t = step / steps
+    const between = (u: Vec3, v: Vec3) => add(u, scale(subtract(v, u), t))
+    const place =
+      step === 0
+        ? placeOf(from)
+        : step === steps
+          ? placeOf(to)
+          : {
+              fraction: between(from.fraction, to.fraction),
+              cartesian: between(from.cartesian, to.cartesian),
+            }
+    points.push({ piece, index: points.length, distance: start + t * length, ...place })
+  })
   return points
+}
+
+/** The places of `pathPoints` alone, for paths of many points. */
+export interface PathPlaces {
+  /** Three fractions a point. */
+  readonly fractions: Float64Array
+  /** Of joints and ends, by their ordinals, which rise. */
+  readonly labels: ReadonlyMap<number, string>
+}
+
+export function pathPlaces(segments: readonly KnownSegment[]): PathPlaces {
+  let count = 0
+  walk(segments, () => count++)
+  const fractions = new Float64Array(3 * count)
+  const labels = new Map<number, string>()
+  let index = 0
+  walk(segments, ({ from, to, steps }, step) => {
+    const end = step === 0 ? from : step === steps ? to : undefined
+    if (end?.label !== undefined) labels.set(index, end.label)
+    const t = step / steps
+    for (let axis = 0; axis < 3; axis++) {
+      const x = from.fraction[axis]
+      fractions[3 * index + axis] = end ? end.fraction[axis] : x + (to.fraction[axis] - x) * t
+    }
+    index++
+  })
+  return { fractions, labels }
 }
 
 const placeOf = ({ fraction, cartesian, label }: PlacedPoint) => ({ fraction, cartesian, label })
