@@ -33,6 +33,8 @@ interface Statement {
   readonly remark?: string
 }
 
+/** P 1 in a CIF mostly means that every atom is listed, whatever their symmetry: it is no claim to be checked. */
+const NO_SYMMETRY = 1
 const WIDTH = 100
 const TITLE_LENGTH = 120
 
@@ -60,7 +62,7 @@ export function latticeFileText(
     ...statement.lines.map(line => `  ${line}`),
     ...(statement.atomsFrame ? ['frames:', `  atoms: ${statement.atomsFrame}`] : []),
     ...(basis.atoms.length > 0 ? ['atoms:', ...atomLines(basis, statement)] : []),
-    ...(group
+    ...(group && group !== NO_SYMMETRY
       ? [`space-group: ${group} # ${symbol ? plain(symbol) : compactSymbol(spaceGroupType(group).symbol)}`]
       : []),
     'labels: setyawan-curtarolo-2010',

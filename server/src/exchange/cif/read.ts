@@ -647,8 +647,15 @@ function settingsOfSymbol(text: string): readonly SpaceGroupSetting[] | undefine
   const mark = /(?::\s*|\s)([12hrsz])\s*(?:\(.*\))?$/i.exec(symbol)?.[1]?.toUpperCase()
   const choice = mark === 'S' ? '1' : mark === 'Z' ? '2' : mark
   const chosen = named.settings.filter(setting => setting.choice.toUpperCase() === choice)
-  return chosen.length > 0 && choice ? chosen : named.settings
+  if (chosen.length > 0 && choice) return chosen
+  // P 21/c is the usual name of its type in any setting, and first of all the name of one setting.
+  const spelled = spelling(symbol)
+  const own = named.settings.filter(({ fullSymbol }) =>
+    [fullSymbol, fullSymbol.replace(/ 1(?= |$)/g, '')].some(full => spelling(full) === spelled),
+  )
+  return own.length > 0 ? own : named.settings
 }
+const spelling = (symbol: string): string => symbol.replace(/[\s_]|:.*$/g, '').toLowerCase()
 
 /** Closer images than this, in Å, of one atom are one: it is on a special position. */
 const SPECIAL = 0.05

@@ -116,8 +116,10 @@ interface Token {
   readonly text: string
   readonly kind: CifKind
   /** They count where the token does: a token is scanned before the header in front of it is acted on. */
-  readonly faults: readonly (readonly [at: number, message: string])[]
+  readonly faults: readonly ScanFault[]
 }
+type ScanFault = readonly [at: number, message: string]
+const NO_FAULTS: readonly ScanFault[] = []
 
 class BlockBuilder {
   readonly items = new Map<string, CifItem>()
@@ -135,7 +137,7 @@ class CifReader {
   readonly #blocks: BlockBuilder[] = []
   readonly #loose: CifFault[] = []
   #at = 0
-  #scanned: (readonly [at: number, message: string])[] = []
+  #scanned: ScanFault[] = []
   /** Save frames belong to dictionaries: their content is read and left. */
   #frame: BlockBuilder | undefined
   #token: Token
@@ -177,9 +179,12 @@ class CifReader {
   }
 
   #scan(): Token {
+    // A file may hold millions of them: no array for each, and no copying of objects.
+    const { type, at, text, kind } = this.#scanToken()
+    if (this.#scanned.length === 0) return { type, at, text, kind, faults: NO_FAULTS }
+    const faults = this.#scanned
     this.#scanned = []
-    const found = this.#scanToken()
-    return { ...found, faults: this.#scanned }
+    return { type, at, text, kind, faults }
   }
 
   #complain(at: number, message: string): void {
@@ -267,7 +272,8 @@ class CifReader {
 
   #value(): CifValue {
     const { at, text, kind } = this.#next()
-    return { kind, text, ...this.#lines.place(at) }
+    const { line, column } = this.#lines.place(at)
+    return { kind, text, line, column }
   }
 
   #scanToken(): Omit<Token, 'faults'> {
