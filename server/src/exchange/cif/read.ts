@@ -392,11 +392,19 @@ class BlockReader {
     return this.block.items.get(name)?.values
   }
 
+  /** Three columns, or one of lists (CIF 2.0). */
+  #coordinates(name: string): readonly (readonly CifValue[] | undefined)[] {
+    const lists = this.#column(`${name}_xyz`)?.map(itemsOf)
+    return ['x', 'y', 'z'].map(
+      (axis, i) => this.#column(`${name}_${axis}`) ?? lists?.flatMap(list => list[i] ?? []),
+    )
+  }
+
   #sites(rows: Mat3): readonly CifSite[] {
     const labels = this.#column('_atom_site_label') ?? this.#column('_atom_site_id')
     const types = this.#column('_atom_site_type_symbol')
-    const fractional = ['x', 'y', 'z'].map(axis => this.#column(`_atom_site_fract_${axis}`))
-    const cartesian = ['x', 'y', 'z'].map(axis => this.#column(`_atom_site_cartn_${axis}`))
+    const fractional = this.#coordinates('_atom_site_fract')
+    const cartesian = this.#coordinates('_atom_site_cartn')
     const isFractional = fractional.every(column => column !== undefined)
     const columns = (isFractional ? fractional : cartesian) as readonly (readonly CifValue[])[]
     const names = labels ?? types
@@ -451,6 +459,12 @@ class BlockReader {
       const stated = numbers.map(number => number!.value) as unknown as Vec3
       if (!stated.every(x => Math.abs(x) < LARGEST_COORDINATE))
         this.#fail(columns[0][i], `${shown(label)} lies beyond all measure`)
+      if (occupancy && occupancy.value > MOST_OCCUPANCY)
+        this.#remark(
+          'loss',
+          `${shown(label)} has occupancy ${occupancy.text}, more than one atom on a site; it was kept as one`,
+          place,
+        )
       hydrogens += Number(attached?.[i]?.text) || 0
       sites.push({
         label,
@@ -586,12 +600,20 @@ class BlockReader {
 }
 
 const LARGEST_COORDINATE = 1e6
+/** Occupancies are refined to some hundredths: 1.01 is a full site. */
+const MOST_OCCUPANCY = 1.05
 
 const add = (u: Vec3, v: Vec3): Vec3 => [u[0] + v[0], u[1] + v[1], u[2] + v[2]]
 
 const isSaid = ({ kind, text }: CifValue): boolean =>
   kind !== 'unknown' && kind !== 'inapplicable' && text.trim() !== ''
 const said = (value: CifValue | undefined): string => (value && isSaid(value) ? value.text.trim() : '')
+
+/** Three places of a list without lists in it; of anything else, three times the whole, which is no number. */
+function itemsOf(value: CifValue): readonly CifValue[] {
+  const items = value.kind === 'compound' ? value.text.trim().split(/\s+/) : []
+  return items.length === 3 ? items.map(text => ({ ...value, kind: 'bare', text })) : [value, value, value]
+}
 
 const MOST_LISTED = 8
 /** `O1, O2, O3 and 5 more` */
