@@ -35,7 +35,11 @@ async function pick(skeletons: readonly SkeletonOffer[]): Promise<SkeletonOffer 
     const { id, name, system, asks, group } = skeleton
     const items = groups.get(group) ?? []
     groups.set(group, items)
-    items.push({ label: name, description: `${id} · ${system} · ${asks}`, skeleton })
+    items.push({
+      label: name,
+      description: name.toLowerCase().includes(system) ? `${id} · ${asks}` : `${id} · ${system} · ${asks}`,
+      skeleton,
+    })
   }
   const items = [...groups].flatMap(([label, each]): SkeletonItem[] => [
     { label, kind: QuickPickItemKind.Separator },

@@ -75,7 +75,6 @@ async function chosen(choices: readonly PastedChoice[]): Promise<PastedChoice | 
     (choice): Item => ({
       choice,
       label: choice.title,
-      description: choice.replaces ? l10n.t('replaces the lattice of the file') : undefined,
       detail: choice.detail,
     }),
   )

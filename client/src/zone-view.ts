@@ -56,6 +56,7 @@ export function registerZoneView(context: ExtensionContext, tools: Tools): void 
   const adopt = (panel: WebviewPanel, uri: Uri): void => {
     const view = new ZoneView(panel, uri, context.extensionUri, tools)
     views.set(uri.toString(), view)
+    panel.iconPath = ICON(context.extensionUri)
     panel.onDidDispose(() => views.delete(uri.toString()))
   }
   const latticeFile = (): TextDocument | undefined => {
@@ -96,6 +97,11 @@ export function registerZoneView(context: ExtensionContext, tools: Tools): void 
     }),
   )
 }
+
+const ICON = (extensionUri: Uri) => ({
+  light: Uri.joinPath(extensionUri, 'media', 'zone-light.svg'),
+  dark: Uri.joinPath(extensionUri, 'media', 'zone-dark.svg'),
+})
 
 const OPTIONS = (extensionUri: Uri) => ({
   enableScripts: true,

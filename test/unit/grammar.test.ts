@@ -175,10 +175,10 @@ frames: {points: cartesian}
     colours(`
 checks:
   point-outside-zone: off
-# ^^^^^^^^^^^^^^^^^^ entity.other.attribute-name.rule
+# ^^^^^^^^^^^^^^^^^^ entity.name.tag.rule
 #                     ^^^ support.constant.severity
   mesh-coarse: warn
-# ^^^^^^^^^^^ entity.other.attribute-name.rule
+# ^^^^^^^^^^^ entity.name.tag.rule
 #              ^^^^ string.unquoted
 `))
 
@@ -324,11 +324,11 @@ points:
   Q: [3/4, 0, 0] # braggline: allow point-outside-zone, point-unnamed
 #                  ^^^^^^^^^ keyword.other.directive
 #                             ^^^^^ keyword.other.directive
-#                                   ^^^^^^^^^^^^^^^^^^ entity.other.attribute-name.rule
-#                                                       ^^^^^^^^^^^^^ entity.other.attribute-name.rule
+#                                   ^^^^^^^^^^^^^^^^^^ entity.name.tag.rule
+#                                                       ^^^^^^^^^^^^^ entity.name.tag.rule
 # braggline: allow path-misses
 # ^^^^^^^^^ keyword.other.directive
-#                  ^^^^^^^^^^^ entity.other.attribute-name.rule
+#                  ^^^^^^^^^^^ entity.name.tag.rule
   # braggline: all
 #  ^^^^^^^^^^^^^^^ comment.line
 `))

@@ -1,4 +1,4 @@
-import { readFileSync } from 'node:fs'
+import { readdirSync, readFileSync } from 'node:fs'
 import { describe, expect, test } from 'vitest'
 import { CHECKS } from '../../server/src/checks/index.ts'
 
@@ -21,6 +21,7 @@ const { contributes, activationEvents } = JSON.parse(read('package.json'), (_, v
   activationEvents: string[]
   contributes: {
     commands: { command: string; category?: string; title: string }[]
+    menus: Record<string, { command: string }[]>
     configuration: { properties: Record<string, Setting> }
   }
 }
@@ -55,6 +56,17 @@ test('commands are found under the name of the program', () => {
     expect(command).toMatch(/^braggline\./)
     expect(category).toBe('Braggline')
   }
+})
+
+test('what the client registers is known to the palette, and what a menu offers too', () => {
+  const known = contributes.commands.map(({ command }) => command).sort()
+  const folder = new URL('../../client/src/', import.meta.url)
+  const registered = readdirSync(folder)
+    .map(name => readFileSync(new URL(name, folder), 'utf8'))
+    .flatMap(text => [...text.matchAll(/\b(?:registerCommand\('braggline\.|register\(')(\w+)'/g)])
+    .map(([, name]) => `braggline.${name}`)
+  expect(registered.sort()).toEqual(known)
+  for (const { command } of Object.values(contributes.menus).flat()) expect(known).toContain(command)
 })
 
 test('nothing wakes the extension but lattice files, and a zone view that was left open', () => {

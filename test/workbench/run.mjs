@@ -58,6 +58,7 @@ const SESSIONS = [
       'workspace-check',
       'forms',
       'cif',
+      'craft',
     ],
     browser: true,
   },

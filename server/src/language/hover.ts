@@ -12,6 +12,7 @@ import type { MeshBlock, NumberValue, PathSegment, Span } from '../format/model.
 import { displayLabel } from '../format/path.ts'
 import type { Crystal, PlacedPoint } from '../meaning/crystal.ts'
 import { pointFacts, segmentFacts } from '../meaning/facts.ts'
+import { recommendedPath } from '../meaning/recommended.ts'
 import { meshOf, stepRule, walkedPath } from '../meaning/sampling.ts'
 import {
   cartesian,
@@ -71,6 +72,7 @@ const HAS_MORE = new Set<Place['kind']>([
   'segment',
   'space-group',
   'mesh',
+  'recommended',
   'sampling',
   'supercell',
 ])
@@ -124,6 +126,8 @@ function describe(snapshot: Snapshot, { crystal }: DocumentAnalysis, place: Plac
       return spaceGroup(crystal)
     case 'mesh':
       return mesh(crystal, place.block)
+    case 'recommended':
+      return recommended(crystal)
     case 'sampling':
       return sampling(crystal)
     case 'supercell':
@@ -182,6 +186,11 @@ function mesh(crystal: Crystal, block: MeshBlock): string | undefined {
       : [['shift', 'none: Γ is a point of the mesh']]),
   ]
   return `**Mesh**${block.name ? ` ${block.name}` : ''}\n\n${table(['', ''], rows)}`
+}
+
+function recommended(crystal: Crystal): string | undefined {
+  const path = recommendedPath(crystal)
+  return path && `**${path.text}**\n\nThe path of ${crystal.book!.source}.`
 }
 
 function sampling(crystal: Crystal): string | undefined {

@@ -28,6 +28,7 @@ export type Place =
   | { readonly kind: 'word'; readonly at: Span; readonly path: readonly string[] }
   | { readonly kind: 'space-group'; readonly at: Span }
   | { readonly kind: 'mesh'; readonly at: Span; readonly block: MeshBlock }
+  | { readonly kind: 'recommended'; readonly at: Span }
   | { readonly kind: 'sampling'; readonly at: Span }
   | { readonly kind: 'supercell'; readonly at: Span }
 
@@ -80,6 +81,7 @@ function inPoints({ points }: LatticeDocument, offset: number): Place | undefine
 
 function inPath({ path }: LatticeDocument, offset: number): Place | undefined {
   if (!path || !covers(path.at, offset)) return undefined
+  if (path.recommended) return { kind: 'recommended', at: path.at }
   for (const piece of path.pieces) {
     const label = piece.labels.find(({ at }) => covers(at, offset))
     if (label) return { kind: 'label', at: label.at, label, piece }

@@ -147,7 +147,7 @@ function statements(read: Vectors, unit: Unit, target: Target, isFirst: boolean)
     .join(', ')
   const byType: Statement = {
     title: `${words}: ${sizes}`,
-    detail: `${told}; by type, with the primitive vectors of the format in place of these`,
+    detail: `${told}; by type, with the vectors of the format`,
     keys: [['bravais', bravais], ...given],
     unit: stated,
   }

@@ -12,9 +12,9 @@ export function reportAnswer(snapshot: Snapshot, { uri, format }: ReportParams):
   return { version: snapshot.version, text, pending: snapshot.pending }
 }
 
-/** The last part of a URI as people write it. */
+/** The last part of a URI as people write it; of a text that is not saved its name alone, without its scheme. */
 export function fileName(uri: string): string {
-  const last = uri.split(/[?#]/)[0].split('/').at(-1) ?? ''
+  const last = uri.split(/[?#]/)[0].split(/[/:]/).at(-1) ?? ''
   try {
     return decodeURIComponent(last)
   } catch {

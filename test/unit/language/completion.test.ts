@@ -55,7 +55,7 @@ function take(text: string, offset: number, item: CompletionItem): string {
 function taken(source: string, label: string, abilities = MODERN): string {
   const { text, offset } = atCursor(source)
   const items = at(text, offset, abilities)
-  const item = items.find(each => each.label === label || each.detail === label)
+  const item = items.find(each => [each.label, each.labelDetails?.description, each.detail].includes(label))
   if (!item) throw new Error(`${label} is not among ${items.map(each => each.label).join(', ')}`)
   return take(text, offset, item)
 }
@@ -69,6 +69,15 @@ describe('keys', () => {
     expect(found).not.toContain('bravais')
     expect(found).not.toContain('c')
     expect(found).not.toContain('path')
+  })
+
+  test('beside each stands what it takes, in words without Markdown, and once', () => {
+    const beside = (label: string, abilities?: Abilities) =>
+      offered('lattice: {bravais: cP, a: 4}\n$0', abilities).find(item => item.label === label)!
+    expect(beside('unit').labelDetails?.description).toBe('angstrom, nm, bohr')
+    expect(beside('points').labelDetails?.description).toBe('mapping LABEL: [k1, k2, k3]')
+    expect(beside('unit').detail).toBeUndefined()
+    expect(beside('unit', { ...MODERN, labelDetails: false }).detail).toBe('angstrom, nm, bohr')
   })
 
   test('the parameters that the type leaves free come first', () =>
@@ -116,13 +125,13 @@ describe('keys', () => {
 
 describe('the Bravais type', () => {
   test('asks for exactly the parameters that are missing', () => {
-    expect(taken('lattice:\n  bravais: $0\n', 'hexagonal: a c')).toBe(
+    expect(taken('lattice:\n  bravais: $0\n', 'hexagonal: a, c')).toBe(
       'lattice:\n  bravais: hP\n  a: 3.2\n  c: 4.6\n',
     )
     expect(taken('lattice:\n  bravais: h$0\n  a: 3.25\n', 'hexagonal: c')).toBe(
       'lattice:\n  bravais: hP\n  c: 4.6\n  a: 3.25\n',
     )
-    expect(taken('lattice: {bravais: $0}\n', 'rhombohedral, rhombohedral axes: a alpha')).toBe(
+    expect(taken('lattice: {bravais: $0}\n', 'rhombohedral, rhombohedral axes: a, alpha')).toBe(
       'lattice: {bravais: hR, a: 4.1, alpha: 55}\n',
     )
   })
@@ -140,7 +149,7 @@ describe('the Bravais type', () => {
     expect(new Set(labels('lattice:\n  bravais: $0\n'))).toEqual(new Set(BRAVAIS_TYPES)))
 
   test('an editor without snippets gets the word alone', () =>
-    expect(taken('lattice:\n  bravais: $0\n', 'hexagonal: a c', { ...MODERN, snippets: false })).toBe(
+    expect(taken('lattice:\n  bravais: $0\n', 'hexagonal: a, c', { ...MODERN, snippets: false })).toBe(
       'lattice:\n  bravais: hP\n',
     ))
 
@@ -243,7 +252,7 @@ test('a list that opens by itself behind `lattice:` does not catch the Enter of 
 
 describe('an empty file', () => {
   test.each(['$0', '# A crystal.\n$0', `${CELL}---\n$0`])('%j is offered whole files', source => {
-    const text = taken(source, 'tetragonal: a c')
+    const text = taken(source, 'tetragonal: a, c')
     expect(findingsOf(text).map(({ rule }) => rule)).toEqual([])
   })
 })

@@ -104,6 +104,13 @@ describe('on blocks', () => {
     expect(text).toContain('0.3927, 0.3927, 0.3927 Å⁻¹')
   })
 
+  test('the word that stands for the path of the book', () => {
+    // Γ–X–M–Γ–R–X|M–R for the simple cubic lattice (Setyawan and Curtarolo 2010, CUB).
+    const text = hoverAt('lattice: {bravais: cP, a: 4}\npath: recom$0mended\n')
+    expect(text).toContain('Γ – X – M – Γ – R – X | M – R')
+    expect(text).toContain('Setyawan')
+  })
+
   test('sampling: steps and points of the whole path', () => {
     // Two pieces of two and one segments with 10 steps each: 30 steps, 30 + 2 points.
     const text = hoverAt('lattice: {bravais: cP, a: 4}\npath: Γ – X – M | R – M\nsampling:\n  steps: 1$00\n')

@@ -78,10 +78,12 @@ export function items(
     const written = snippet ? offer.snippet! : offer.text
     const newText = /^\s/.test(written) ? written : lead + written
     const { detail, description = detail } = offer
+    // The documentation begins with the same words; where they stand beside the label too, twice is enough.
+    const isTold = offer.about !== undefined && abilities.labelDetails
     return {
       label: offer.label,
       kind: offer.kind,
-      ...(detail ? { detail } : {}),
+      ...(detail && !isTold ? { detail } : {}),
       ...(description && abilities.labelDetails ? { labelDetails: { description } } : {}),
       sortText: `${offer.rank ?? 5}${String(i).padStart(3, '0')}`,
       ...(offer.filter ? { filterText: offer.filter } : {}),

@@ -62,12 +62,18 @@ function keys(asked: Asked, above: string): Offer[] {
     .map(row => ({
       label: keyName(row),
       kind: CompletionItemKind.Property,
-      detail: describeValue(row),
+      detail: valueInShort(row),
       rank: row.required ? 1 : wanted ? (wanted.has(keyName(row)) ? 2 : 4) : 3,
       about: `key:${row.path}`,
       ...written(row, place, abilities.asksAgain),
     }))
 }
+
+/** What a key takes, for one line without Markdown. */
+const valueInShort = (row: KeyRow): string =>
+  row.kind === 'word' && row.words
+    ? row.words.map(({ word }) => word).join(', ')
+    : describeValue(row).replaceAll('`', '')
 
 /** Kinds of values that completion lists. */
 const LISTED = new Set<ValueKind>(['word', 'path', 'space-group'])

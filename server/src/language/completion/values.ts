@@ -64,7 +64,7 @@ function bravais({ place, snapshot: { text }, offset }: Asked): Offer[] {
     if (seen.has(key) || (missing.length === 0 && seen.has(type))) return []
     seen.add(key).add(type)
     const lines = [type, ...parameterLines(setting, missing, { unit })]
-    const needs = missing.length > 0 ? `: ${missing.join(' ')}` : ''
+    const needs = missing.length > 0 ? `: ${missing.join(', ')}` : ''
     return [
       {
         label: type,
