@@ -3,7 +3,7 @@ import { parentPort, workerData } from 'node:worker_threads'
 import { checkWork, type How } from './cli/check.ts'
 import { Engine } from './cli/engine.ts'
 import type { Place } from './cli/files.ts'
-import type { FileTask } from './cli/threads.ts'
+import { type FileTask, inTurn } from './cli/threads.ts'
 import { type ReportHow, reportWork } from './cli/report.ts'
 import { loadSymmetryFromDisk } from './symmetry-node.ts'
 import { WorkerSymmetry } from './symmetry-service.ts'
@@ -17,4 +17,7 @@ loadSymmetryFromDisk()
 const engine = new Engine(new WorkerSymmetry(startSymmetryThread))
 const work =
   verb === 'check' ? checkWork(engine, place, how as How) : reportWork(engine, place, how as ReportHow)
-parentPort!.on('message', async (name: string) => parentPort!.postMessage(await work(name)))
+parentPort!.on(
+  'message',
+  inTurn(async name => parentPort!.postMessage(await work(name))),
+)

@@ -48,10 +48,13 @@ export function jobsFor(given: Given, files: number, { cores = 1 }: Io): number 
 /** How far the threads may be ahead of what is written, in files: what is kept in memory. */
 const AHEAD = 64
 
+/** A thread has its next files before it is done, so that it never waits for the one that writes. */
+const AT_HAND = 4
+
 interface Hand {
   worker: FileWorker
-  /** The ordinal of the file that it works on; −1 where it has nothing to do. */
-  at: number
+  /** The ordinals of the files that it has, in order: it works on the first. */
+  files: number[]
 }
 
 /**
@@ -75,30 +78,30 @@ export async function* inOrder<T>(
   let told = 0
   let wake = () => {}
   const give = (hand: Hand) => {
-    while (names[next] === STANDARD_INPUT) next++
-    if (next >= names.length || next >= told + AHEAD) return
-    hand.at = next++
-    hand.worker.post(names[hand.at])
-  }
-  const end = (hand: Hand, result: FileResult<T>) => {
-    done.set(hand.at, result)
-    hand.at = -1
+    while (hand.files.length < AT_HAND) {
+      while (names[next] === STANDARD_INPUT) next++
+      if (next >= names.length || next >= told + AHEAD) return
+      hand.files.push(next)
+      hand.worker.post(names[next++])
+    }
   }
   const started = (hand: Hand): FileWorker =>
     startFileWorker(
       task,
       result => {
-        end(hand, result as FileResult<T>)
+        done.set(hand.files.shift()!, result as FileResult<T>)
         give(hand)
         wake()
       },
       reason => {
-        if (hand.at >= 0)
-          end(hand, {
-            said: [{ to: 'fail', text: `${names[hand.at]}: the thread that worked on it ended: ${reason}` }],
+        const at = hand.files.shift()
+        if (at !== undefined)
+          done.set(at, {
+            said: [{ to: 'fail', text: `${names[at]}: the thread that worked on it ended: ${reason}` }],
           })
-        if (next < names.length) {
+        if (hand.files.length > 0 || next < names.length) {
           hand.worker = started(hand)
+          for (const file of hand.files) hand.worker.post(names[file])
           give(hand)
         }
         wake()
@@ -106,7 +109,7 @@ export async function* inOrder<T>(
     )
   try {
     for (let i = 0; i < jobs; i++) {
-      const hand = { at: -1 } as Hand
+      const hand = { files: [] as number[] } as Hand
       hand.worker = started(hand)
       hands.push(hand)
       give(hand)
@@ -123,7 +126,7 @@ export async function* inOrder<T>(
         yield result
       }
       told = i + 1
-      for (const hand of hands) if (hand.at < 0) give(hand)
+      for (const hand of hands) give(hand)
     }
   } finally {
     for (const { worker } of hands) worker.terminate()

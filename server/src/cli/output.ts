@@ -1,7 +1,6 @@
 /** Files that are written whole or not at all. */
 import { chmodSync, existsSync, realpathSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs'
 import { basename, dirname, join, resolve } from 'node:path'
-import { randomBytes } from 'node:crypto'
 import { harmless } from '../exchange/layout.ts'
 import { coloured } from './colour.ts'
 import { reason } from './files.ts'
@@ -26,7 +25,7 @@ export async function replaceFile(path: string, content: string, shown: string):
     const target = exists ? realpathSync(path) : path
     if (exists && !statSync(target).isFile())
       throw new Refusal(`${shown}: is no file that could be written over`)
-    temporary = join(dirname(target), `.${basename(target)}.${randomBytes(6).toString('hex')}.tmp`)
+    temporary = join(dirname(target), `.${basename(target)}.${crypto.randomUUID()}.tmp`)
     writeFileSync(temporary, content, { flag: 'wx' })
     if (exists) chmodSync(temporary, statSync(target).mode & 0o7777)
     renameSync(temporary, target)

@@ -9,13 +9,21 @@ export interface FileResult<T> {
 }
 export type FileWork<T> = (name: string) => Promise<FileResult<T>>
 
+/** What a thread does with the names that it is given: one after another, however long each takes. */
+export function inTurn(work: (name: string) => Promise<void>): (name: string) => void {
+  let last = Promise.resolve()
+  return name => {
+    last = last.then(() => work(name))
+  }
+}
+
 /** Which verb a thread works for, and how. */
 export interface FileTask {
   readonly verb: 'check' | 'report'
   readonly how: unknown
 }
 
-/** A thread that works on one file after another. */
+/** A thread that works on one file after another, and answers in the order in which it was given them. */
 export interface FileWorker {
   post(name: string): void
   terminate(): void

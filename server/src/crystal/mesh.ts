@@ -31,23 +31,36 @@ export const meshPoints = ({ divisions: [p, q, r] }: Mesh): number => p * q * r
 
 /** The rotations of a group that map the mesh onto itself, as matrices on columns of k-fractions. */
 export const keptRotations = (mesh: Mesh, group: readonly Mat3[]): Mat3[] =>
-  group.filter(rotation => gridMap(mesh, rotation))
+  group.filter(rotation => keepsMesh(mesh, rotation))
 
-/** True where every rotation of the group maps the mesh onto itself. */
+/** True where every rotation of the group maps the mesh onto itself. Asked of many meshes while somebody types. */
 export const isSymmetricMesh = (mesh: Mesh, group: readonly Mat3[]): boolean =>
-  group.every(rotation => gridMap(mesh, rotation))
+  group.every(rotation => keepsMesh(mesh, rotation))
+
+function keepsMesh({ divisions, shift }: Mesh, rotation: Mat3): boolean {
+  for (let i = 0; i < 3; i++) {
+    let offset = -shift[i]
+    for (let j = 0; j < 3; j++) {
+      const x = (rotation[i][j] * divisions[i]) / divisions[j]
+      if (!isWhole(x)) return false
+      offset += x * shift[j]
+    }
+    if (!isWhole(offset)) return false
+  }
+  return true
+}
 
 const gridMaps = (mesh: Mesh, group: readonly Mat3[]): GridMap[] =>
   group.flatMap(rotation => gridMap(mesh, rotation) ?? [])
 
-function gridMap({ divisions, shift }: Mesh, rotation: Mat3): GridMap | undefined {
-  const linear = rotation.map((row, i) => row.map((x, j) => (x * divisions[i]) / divisions[j]))
-  const offset = linear.map((row, i) => row[0] * shift[0] + row[1] * shift[1] + row[2] * shift[2] - shift[i])
-  if (!linear.flat().every(isWhole) || !offset.every(isWhole)) return undefined
-  return {
-    linear: linear.map(row => row.map(Math.round)) as unknown as Mat3,
-    offset: offset.map(Math.round) as unknown as Vec3,
-  }
+function gridMap(mesh: Mesh, rotation: Mat3): GridMap | undefined {
+  if (!keepsMesh(mesh, rotation)) return undefined
+  const { divisions, shift } = mesh
+  const linear = rotation.map((row, i) => row.map((x, j) => Math.round((x * divisions[i]) / divisions[j])))
+  const offset = linear.map((row, i) =>
+    Math.round(row[0] * shift[0] + row[1] * shift[1] + row[2] * shift[2] - shift[i]),
+  )
+  return { linear: linear as unknown as Mat3, offset: offset as unknown as Vec3 }
 }
 
 export interface MeshOrbits {

@@ -3,7 +3,7 @@ import { afterEach, beforeEach, describe, expect, test } from 'vitest'
 import { checkWork, type How } from '../../../server/src/cli/check.ts'
 import { Engine } from '../../../server/src/cli/engine.ts'
 import { type ReportHow, reportWork } from '../../../server/src/cli/report.ts'
-import type { StartFileWorker } from '../../../server/src/cli/threads.ts'
+import { inTurn, type StartFileWorker } from '../../../server/src/cli/threads.ts'
 import { directSymmetry } from '../../../server/src/symmetry-service.ts'
 import { seeded } from '../crystal/zone-lattices.ts'
 import { World } from './world.ts'
@@ -31,12 +31,15 @@ const threads =
     const work =
       verb === 'check' ? checkWork(engine, place, how as How) : reportWork(engine, place, how as ReportHow)
     const random = seeded(7)
+    let isDead = false
     return {
-      post: name =>
-        void setTimeout(
-          async () => (dies.test(name) ? failed('out of memory') : answer(structuredClone(await work(name)))),
-          20 * random(),
-        ),
+      post: inTurn(async name => {
+        await new Promise(resolve => setTimeout(resolve, 20 * random()))
+        if (isDead) return
+        isDead = dies.test(name)
+        if (isDead) failed('out of memory')
+        else answer(structuredClone(await work(name)))
+      }),
       terminate: () => {},
     }
   }
