@@ -30,7 +30,8 @@ export function readTheme(): Theme {
     paper: pick('editor-background'),
     face: pick('charts-blue', 'foreground'),
     path: pick('charts-purple', 'foreground'),
-    cursor: pick('charts-orange', 'focusBorder'),
+    // The orange of the charts lets the ground shine through in newer editors: no colour for a label.
+    cursor: pick('symbolIcon-classForeground', 'focusBorder'),
     wedge: pick('charts-green', 'foreground'),
     mesh: pick('charts-green', 'foreground'),
     error: pick('editorError-foreground', 'charts-red'),

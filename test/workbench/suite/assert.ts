@@ -21,6 +21,14 @@ export function match(actual: string, expected: RegExp, message = ''): void {
     throw new Error(`${message} ${JSON.stringify(actual.slice(0, 2000))} does not match ${expected}`)
 }
 
+export async function rejects(run: () => Promise<unknown>, expected: RegExp): Promise<void> {
+  const reason = await run().then(
+    () => fail(`nothing is refused, not even ${expected}`),
+    (error: unknown) => String(error),
+  )
+  match(reason, expected)
+}
+
 export function fail(message: string): never {
   throw new Error(message)
 }

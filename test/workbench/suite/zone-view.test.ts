@@ -186,6 +186,11 @@ describe('zone view', function () {
     }
     go(4)
     await has('[data-mark="X"]')
+    const colour = await view()
+      .locator('.name.marked')
+      .first()
+      .evaluate(label => getComputedStyle(label).color)
+    assert.match(colour, /^rgb\(/, 'a label must not be translucent')
     assert.match((await dot('X').getAttribute('class')) ?? '', /marked/)
     go(6)
     await has('[data-mark="X – W"]')
