@@ -1,10 +1,10 @@
 /** From a crystal of a CIF to the text of a lattice file. */
 import { BRAVAIS, type BravaisType, type Centring, completeCell } from '../../crystal/bravais.ts'
 import { PARAMETER_NAMES, type ParameterName } from '../../crystal/cell.ts'
-import { orderOf } from '../../crystal/lattice-type.ts'
+import { latticeType, orderOf } from '../../crystal/lattice-type.ts'
 import { reduce } from '../../crystal/reduction.ts'
 import { spaceGroupType } from '../../crystal/symmetry-library.ts'
-import { compactSymbol } from '../../crystal/space-group.ts'
+import { bravaisOf, compactSymbol } from '../../crystal/space-group.ts'
 import {
   combine,
   determinant,
@@ -117,6 +117,8 @@ function stateLattice(crystal: CifCrystal): Statement {
     if (centring !== 'reverse') return byVectors(crystal.rows, centring, remark)
     return byPrimitiveVectors(crystal.rows, translations, remark)
   }
+  const other = inUsualAxes(crystal, translations)
+  if (other) return other
   if (centring && centring !== 'reverse')
     return byVectors(
       crystal.rows,
@@ -233,6 +235,41 @@ function numberText({ text, value }: CifNumber): string {
     ? text
     : formatNumber(value, MOST_DIGITS)
 }
+
+/** Å: the cell that is changed has its symmetry by the letter, so that nothing but arithmetic parts equal lengths. */
+const SAME_LENGTH = 1e-7
+
+/** In the conventional cell of the lattice, where that is of the type that the space group asks for. */
+function inUsualAxes({ group, rows }: CifCrystal, translations: readonly Vec3[]): Statement | undefined {
+  const fractions = primitiveFractions(translations)
+  const right = determinant(fractions) > 0 ? fractions : mapMatrix(fractions, x => -x + 0)
+  const type = latticeType(multiply(right, rows), 3, SAME_LENGTH)
+  if (!group || !type?.bravais || type.bravais !== bravaisOf(spaceGroupType(group).lattice)) return undefined
+  const axes = multiply(type.conventionalFromPrimitive, right)
+  return {
+    lines: [
+      `bravais: ${type.bravais}`,
+      ...BRAVAIS[type.bravais].free[0].map(
+        name => `${name}: ${formatNumber(type.cell[name], VECTOR_DIGITS)}`,
+      ),
+    ],
+    axes,
+    remark: `the CIF's setting has no Bravais type of its own here; the usual cell was taken, whose vectors are ${axes.map(combinationText).join('; ')} of the CIF's cell`,
+  }
+}
+
+/** `1/2 a − b` */
+const combinationText = (row: Vec3): string =>
+  row
+    .flatMap((x, i) => {
+      const factor = recogniseFraction(Math.abs(x), SAME)
+      if (Math.abs(x) < SAME || !factor) return []
+      const size = factor.p === factor.q ? '' : `${formatFraction(factor)} `
+      return [`${x < 0 ? '−' : '+'} ${size}${'abc'[i]}`]
+    })
+    .join(' ')
+    .replace(/^\+ /, '')
+    .replace(/^− /, '−')
 
 const VECTOR_DIGITS = 8
 const vectorLines = (rows: readonly Vec3[]): string[] => [

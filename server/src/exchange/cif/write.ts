@@ -6,6 +6,7 @@ import {
   spaceGroupSettings,
   spaceGroupType,
 } from '../../crystal/symmetry-library.ts'
+import { namedSpaceGroup } from '../../crystal/space-group.ts'
 import {
   add,
   apply,
@@ -23,7 +24,16 @@ import {
 import { formatNumber } from '../../format/numbers.ts'
 import type { Crystal, PlacedAtom } from '../../meaning/crystal.ts'
 import { harmless, wrap as wrapWords } from '../layout.ts'
-import { closed, groupNumber, IDENTITY_OPERATION, operationKey, wrap, writeTriplet } from './operations.ts'
+import {
+  closed,
+  groupNumber,
+  IDENTITY_OPERATION,
+  isUnit,
+  metricMiss,
+  operationKey,
+  wrap,
+  writeTriplet,
+} from './operations.ts'
 
 export type CifExport =
   | { readonly text: string; readonly notes: readonly string[] }
@@ -69,7 +79,7 @@ export function exportCif(crystal: Crystal, { source, version }: ExportOptions):
     ...item('_audit_creation_method', `'Braggline ${version}'`),
     ...cellLines(rows, angstrom),
     ...formulaLines(crystal, rows),
-    ...groupLines(symmetry.operations, crystal),
+    ...groupLines(symmetry.operations),
     ...loop(
       ['_space_group_symop_id', '_space_group_symop_operation_xyz'],
       symmetry.operations.map((operation, i) => [String(i + 1), writeTriplet(operation)]),
@@ -106,23 +116,26 @@ function symmetryIn(
 ): WrittenSymmetry {
   const alone: WrittenSymmetry = { operations: [IDENTITY_OPERATION], isWhole: false }
   const { symmetry, lattice } = crystal
-  if (!symmetry || crystal.atoms.length === 0) {
-    if (crystal.atoms.length > 0) notes.push('The symmetry could not be found: every atom stands for itself.')
-    return {
-      ...alone,
-      operations:
-        lattice!.dimension === 3
-          ? (translationsIn(inverseRows(lattice!.primitive, rows)) ?? alone.operations)
-          : alone.operations,
-    }
+  const isBare = crystal.atoms.length === 0
+  const named = isBare ? namedOperations(crystal, rows) : undefined
+  if (named) {
+    notes.push('No atoms are stated: the operations are those of the space group that the file names.')
+    return { operations: named, isWhole: true }
   }
+  if (!symmetry || (isBare && lattice!.dimension !== 3)) {
+    if (!isBare) notes.push('The symmetry could not be found: every atom stands for itself.')
+    const points =
+      lattice!.dimension === 3 ? translationsIn(inverseRows(lattice!.primitive, rows)) : undefined
+    return { ...alone, operations: points ?? alone.operations }
+  }
+  if (isBare) notes.push('No atoms are stated: the operations are those of the lattice.')
   // Rows: the primitive vectors in fractions of the written cell; of a sheet the normal is a unit one.
   const primitive: Mat3 = [symmetry.primitive[0], symmetry.primitive[1], symmetry.primitive[2]]
   const axes = inverseRows(primitive, rows)
   const there = transpose(axes)
   const back = inverse(there)
   // Across a sheet nothing repeats: what turns it over maps its two surfaces onto each other.
-  const heights = crystal.atoms.map(({ fraction }) => fraction[2])
+  const heights = isBare ? [0] : crystal.atoms.map(({ fraction }) => fraction[2])
   const turnedOver = extreme(heights, Math.min) + extreme(heights, Math.max)
   const stated = symmetry.operations.map(({ rotation, translation: [x, y, z] }) => ({
     rotation: multiply(multiply(there, rotation), back),
@@ -160,6 +173,24 @@ function symmetryIn(
   return { operations, isWhole: true, origin }
 }
 const WHOLE = 1e-6
+
+/** The operations of the named space group in a setting that has the cell's lattice points and fits its metric. */
+function namedOperations({ document, lattice, tolerance }: Crystal, rows: Mat3): Operation[] | undefined {
+  const name = document.spaceGroup?.value
+  const group = name === undefined ? undefined : namedSpaceGroup(name)
+  const points = lattice!.dimension === 3 && translationsIn(inverseRows(lattice!.primitive, rows))
+  if (!group || !points) return undefined
+  const keys = points.map(operationKey).sort().join()
+  // What the name means in this cell, else the type in any setting.
+  for (const setting of [...group.settings, ...spaceGroupSettings(group.number)]) {
+    const operations = closed(settingOperations(setting)) ?? []
+    const shifts = operations.filter(({ rotation }) => isUnit(rotation))
+    const turns = operations.map(({ rotation }) => rotation)
+    if (shifts.map(operationKey).sort().join() === keys && metricMiss(turns, rows).by <= tolerance)
+      return operations
+  }
+  return undefined
+}
 
 /** Vectors in fractions of rows. */
 const inverseRows = (vectors: Mat3, rows: Mat3): Mat3 => multiply(vectors, inverse(rows))
@@ -201,7 +232,7 @@ function independentAtoms(crystal: Crystal, rows: Mat3, { isWhole, origin }: Wri
     multiplicity,
     wyckoff: isWhole ? symmetry?.wyckoffLetters?.[atom.index] : undefined,
   })
-  if (isWhole) {
+  if (isWhole && atoms.length > 0) {
     const counts = new Map<number, number>()
     for (const i of symmetry!.equivalentAtoms) counts.set(i, (counts.get(i) ?? 0) + 1)
     return [...counts].map(([i, count]) => {
@@ -305,8 +336,7 @@ function formulaLines({ atoms, lattice }: Crystal, rows: Mat3): string[] {
 }
 const gcd = (p: number, q: number): number => (q === 0 ? p : gcd(q, p % q))
 
-function groupLines(operations: readonly Operation[], crystal: Crystal): string[] {
-  if (crystal.atoms.length === 0) return []
+function groupLines(operations: readonly Operation[]): string[] {
   const number = groupNumber(operations)
   if (number === undefined) return []
   const keys = new Set(operations.map(operationKey))
