@@ -93,7 +93,7 @@ describe.each(Object.entries(CASES))('%s', (_, [hall, cell, sites, usual, bravai
     expect(crystal.symmetry!.spaceGroup!.number).toBe(crystal.document.spaceGroup!.value)
     // The file may name the axes otherwise; the crystal is the same.
     const other = read(cif(...usual)).crystal
-    expect(crystal.lattice!.volume).toBeCloseTo(other.lattice!.volume, 6)
+    expect(crystal.lattice!.volume).toBeCloseTo(other.lattice!.volume, 5)
     expectAlike(surroundings(placedOf(crystal)), surroundings(placedOf(other)))
   })
 })
