@@ -1,7 +1,7 @@
 import { IN_ANGSTROM, UNITS, type Unit } from '../crystal/units.ts'
 import { norm, spanned, type Vec3 } from '../crystal/vector.ts'
 import { type KList, type ListColumns, readKList, readVectors } from '../exchange/k-list.ts'
-import { matchList } from '../exchange/match.ts'
+import { matchList, type MatchJson, unitThatFits } from '../exchange/match.ts'
 import { matchText } from '../exchange/match-text.ts'
 import type { Crystal } from '../meaning/crystal.ts'
 import { count } from '../meaning/wording.ts'
@@ -66,7 +66,19 @@ export const match: Verb = {
     const columns = columnsOf(given, crystal.dimension!)
     const read = list === undefined ? undefined : await pointsOf(list, columns, crystal, io)
     const job = vectors === undefined ? undefined : await vectorsOf(vectors, given, crystal, io)
-    const result = matchList(crystal, read, job)
+    const found = matchList(crystal, read?.list, job)
+    const better =
+      read && !found.matches && !given.has('columns')
+        ? otherColumns(read, crystal).find(one => matchList(crystal, one.list, job).matches)
+        : undefined
+    const fitsIn = job && unitThatFits(crystal, job, unitOf(given, crystal), given.has('vectors-unit'))
+    const result: MatchJson = {
+      ...found,
+      ...(better && {
+        nearest: `read from its columns ${better.columns.join(', ')} the list matches: ${optionOf(better)}`,
+      }),
+      ...(fitsIn && { cell: { related: false, fitsIn } }),
+    }
     const cellFits = result.cell?.related ?? true
     desk.result(
       given.value('format') === 'json'
@@ -74,7 +86,7 @@ export const match: Verb = {
         : matchText(list === STANDARD_INPUT ? 'The list' : (list ?? ''), result),
     )
     await desk.close()
-    return result.matches && cellFits ? CLEAN : FOUND
+    return (result.matches || list === undefined) && cellFits ? CLEAN : FOUND
   },
 }
 
@@ -90,19 +102,50 @@ function columnsOf(given: Given, dimension: number): ListColumns {
   return { columns: columns.map(Number), weight }
 }
 
+const unitOf = (given: Given, { unit }: Crystal): Unit =>
+  (given.value('vectors-unit') as Unit | undefined) ?? unit
+
 const shownName = (name: string): string => (name === STANDARD_INPUT ? 'standard input' : name)
 
-async function pointsOf(name: string, columns: ListColumns, { dimension }: Crystal, io: Io): Promise<KList> {
-  const list = readKList(await listText(name, io), dimension!, columns)
-  if ('fault' in list) throw new Refusal(`${shownName(name)}: ${list.fault}`)
-  return list
+interface Read {
+  readonly text: string
+  readonly list: KList
 }
+interface ReadFrom {
+  readonly columns: readonly number[]
+  readonly list: KList
+}
+
+async function pointsOf(name: string, columns: ListColumns, crystal: Crystal, io: Io): Promise<Read> {
+  const text = await listText(name, io)
+  const list = readKList(text, crystal.dimension!, columns)
+  if (!('fault' in list)) return { text, list }
+  const [other] = columns.columns ? [] : otherColumns({ text }, crystal)
+  const hint = other ? `; its columns ${other.columns.join(', ')} have them: ${optionOf(other)}` : ''
+  throw new Refusal(`${shownName(name)}: ${list.fault}${hint}`)
+}
+
+/** Where the components may stand behind an ordinal, a label or words of a job's output. */
+const FIRST_COLUMNS = [2, 3, 4, 5, 6, 7]
+/** A longer list is read as it was asked for only. */
+const LONG = 5000
+
+/** The list read from later columns, where these hold numbers on at least as many lines as the first ones. */
+function otherColumns({ text, list }: Partial<Read> & { text: string }, { dimension }: Crystal): ReadFrom[] {
+  if (list && list.count > LONG) return []
+  return FIRST_COLUMNS.flatMap(first => {
+    const columns = [first, first + 1, first + 2].slice(0, dimension)
+    const other = readKList(text, dimension!, { columns })
+    return 'fault' in other || other.count < (list?.count ?? 1) ? [] : [{ columns, list: other }]
+  })
+}
+
+const optionOf = ({ columns }: ReadFrom): string => `--columns "${columns.join(',')}"`
 
 async function vectorsOf(name: string, given: Given, crystal: Crystal, io: Io): Promise<readonly Vec3[]> {
   const rows = readVectors(await listText(name, io), crystal.dimension!)
   if ('fault' in rows) throw new Refusal(`${shownName(name)}: ${rows.fault}`)
-  const unit = (given.value('vectors-unit') as Unit | undefined) ?? crystal.unit
-  const size = IN_ANGSTROM[unit] / crystal.angstrom
+  const size = IN_ANGSTROM[unitOf(given, crystal)] / crystal.angstrom
   const vectors = rows.slice(0, crystal.dimension).map(row => row.map(x => x * size) as unknown as Vec3)
   if (!(spanned(vectors) > FLAT * vectors.reduce((product, v) => product * norm(v), 1)))
     throw new Refusal(`${shownName(name)}: the vectors span no cell`)

@@ -274,3 +274,37 @@ export const meshMiss = ({ divisions, shift }: Mesh, fraction: Vec3, reciprocal:
   )
 
 const modulo = (x: number, n: number): number => ((x % n) + n) % n
+
+/** Divisions of a mesh that is guessed; finer ones are told apart by no usual number of digits. */
+const MOST_DIVISIONS = 100
+/** A coordinate is a whole multiple of 1/D where rounding could not make any number one: this part of a step. */
+const PART_OF_DIVISION = 0.1
+
+/**
+ * The coarsest mesh, with shifts of 0 or ½, on which all points lie.
+ * @param points   fractions, three a point.
+ * @param rounding how far each fraction may be off.
+ * @returns undefined where there is none of a few divisions. The points need not be all of the mesh.
+ */
+export function guessMesh(points: Float64Array, rounding: Vec3, dimension: number): Mesh | undefined {
+  const divisions = [1, 1, 1]
+  const shift = [0, 0, 0]
+  for (let axis = 0; axis < dimension; axis++) {
+    const numbers = points.filter((_, at) => at % 3 === axis)
+    const parts = partsOf(numbers, rounding[axis])
+    if (parts === undefined) return undefined
+    const halfway = parts % 2 === 0 && numbers.every(x => Math.round(x * parts) % 2 !== 0)
+    divisions[axis] = halfway ? parts / 2 : parts
+    shift[axis] = halfway ? 0.5 : 0
+  }
+  return { divisions, shift } as unknown as Mesh
+}
+
+/** The least D that makes all numbers whole multiples of 1/D. */
+function partsOf(numbers: Float64Array, rounding: number): number | undefined {
+  for (let parts = 1; parts <= 2 * MOST_DIVISIONS; parts++) {
+    if (parts * rounding > PART_OF_DIVISION) return undefined
+    if (numbers.every(x => Math.abs(rest(x * parts)) <= parts * rounding)) return parts
+  }
+  return undefined
+}

@@ -6,6 +6,8 @@ import type { CellJson, Explanation, MatchJson } from './match.ts'
 
 /** Faults shown; the rest are counted. JSON has them all. */
 const SHOWN = 20
+/** And where most points do not fit: what they are told to be off by is by chance. */
+const SHOWN_OF_MANY = 3
 
 const nameOf = ({ target, name, listing }: Pick<Explanation, 'target' | 'name' | 'listing'>): string => {
   const mesh = `${name === undefined ? 'mesh' : `mesh ${name}`}${listing ? `, ${listing}` : ''}`
@@ -19,7 +21,7 @@ export function matchText(shown: string, result: MatchJson): string {
   if (cell) lines.push(...cellWords(cell), '')
   if (result.points > 0) {
     lines.push(...headline(harmless(shown), result))
-    if (best) lines.push(...body(best))
+    if (best) lines.push(...body(best, 2 * best.fitting < result.points ? SHOWN_OF_MANY : SHOWN))
     if (others.length > 0 && !result.matches)
       lines.push(
         '',
@@ -44,7 +46,7 @@ function headline(shown: string, { matches, best }: MatchJson): string[] {
   ]
 }
 
-function body(best: Explanation): string[] {
+function body(best: Explanation, shown: number): string[] {
   const lines = [
     `  read as ${best.frames.join('; ')}`,
     `  largest miss ${plain(best.largestMiss, 8)} Å⁻¹; the digits of the list allow ${plain(best.tolerance, 8)} Å⁻¹`,
@@ -54,9 +56,9 @@ function body(best: Explanation): string[] {
       `  ${best.labels.map(({ label, lines }) => `${displayLabel(label)} (line ${few(lines)})`).join(', ')}`,
     )
   for (const note of best.notes) lines.push(`  ${harmless(note)}`)
-  for (const { line, message } of best.faults.slice(0, SHOWN))
+  for (const { line, message } of best.faults.slice(0, shown))
     lines.push(`  ${line === undefined ? '' : `line ${line}: `}${harmless(message)}`)
-  if (best.faults.length > SHOWN) lines.push(`  … and ${best.faults.length - SHOWN} more`)
+  if (best.faults.length > shown) lines.push(`  … and ${best.faults.length - shown} more`)
   return lines
 }
 
@@ -76,7 +78,11 @@ function read({ points, comments, skipped }: MatchJson): string {
   return parts.join(', ')
 }
 
-function cellWords({ related, matrix, of, determinant, rotation, strain }: CellJson): string[] {
+function cellWords({ related, matrix, of, determinant, rotation, strain, fitsIn }: CellJson): string[] {
+  if (!related && fitsIn)
+    return [
+      `The job's cell is a cell of this file's lattice only when its vectors are read in ${fitsIn}: --vectors-unit ${fitsIn}`,
+    ]
   if (!related)
     return [
       "The job's cell is no cell of this file's lattice: no whole-numbered matrix fits, with up to 5 % of strain",

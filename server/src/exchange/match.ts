@@ -4,6 +4,7 @@ import {
   type Aligned,
   alignList,
   apart,
+  guessMesh,
   meshIndex,
   meshMiss,
   type MeshSites,
@@ -12,7 +13,7 @@ import {
   SiteGrid,
   transformed,
 } from '../crystal/list-match.ts'
-import { meshPoints } from '../crystal/mesh.ts'
+import { type Mesh, meshPoints } from '../crystal/mesh.ts'
 import { IN_ANGSTROM, type Unit, UNITS } from '../crystal/units.ts'
 import {
   dot,
@@ -80,6 +81,8 @@ export interface CellJson {
   }
   /** Per cent; negative where the job's cell is the smaller. */
   readonly strain?: number
+  /** The unit in which it would be a cell of the lattice. */
+  readonly fitsIn?: Unit
 }
 
 export interface MatchJson {
@@ -91,7 +94,7 @@ export interface MatchJson {
   readonly best?: Explanation
   /** Others that fit as well. */
   readonly others: readonly Pick<Explanation, 'target' | 'name' | 'frames' | 'listing'>[]
-  /** Where nothing fits: what comes nearest, in words. */
+  /** Where it does not match: what comes nearest, in words. */
   readonly nearest?: string
   readonly cell?: CellJson
 }
@@ -165,7 +168,9 @@ export function matchList(crystal: Crystal, list: KList | undefined, job?: reado
     frames,
     ...(listing && { listing }),
   }))
-  const near = fits ? undefined : nearestInWords(crystal, list, judges, best)
+  const near = fits
+    ? undefined
+    : (otherMeshInWords(crystal, list, readings) ?? nearestInWords(crystal, list, judges, best))
   return {
     ...head,
     matches: fits,
@@ -218,6 +223,39 @@ function cellJson(relation: CellRelation | undefined, dimension: number): CellJs
     rotation: { matrix: turn, angle, ...(axis && { axis }), proper },
     strain: 100 * strain,
   }
+}
+
+/** A cell read in another unit is a better answer where it is no larger a supercell than this, and no more strained. */
+const FOLD_OF_ANOTHER_UNIT = 16
+const STRAIN_OF_ANOTHER_UNIT = 0.01
+/** nm read as Å always look like a whole part of the lattice, 10 (a chain) to 1,000 times smaller: where it spares such a factor, the other unit is believed. */
+const FOLD_SPARED = 10
+
+/**
+ * The unit that the job's vectors seem to be in, where it is not the one that they were read in.
+ * @param job    in the file's unit, read in `unit`.
+ * @param stated whether somebody said so: then it is doubted only where nothing fits.
+ */
+export function unitThatFits(
+  crystal: Crystal,
+  job: readonly Vec3[],
+  unit: Unit,
+  stated: boolean,
+): Unit | undefined {
+  const relate = (rows: readonly Vec3[]) =>
+    relateCells(crystal.lattice!.primitive, filled(rows, crystal), crystal.dimension!)[0]
+  const asRead = relate(job)
+  if (asRead && (stated || Math.abs(asRead.determinant) < FOLD_SPARED)) return undefined
+  return UNITS.find(other => {
+    if (other === unit) return false
+    const found = relate(job.map(row => scale(row, IN_ANGSTROM[other] / IN_ANGSTROM[unit])))
+    return (
+      found !== undefined &&
+      Math.abs(found.determinant) <= FOLD_OF_ANOTHER_UNIT &&
+      Math.abs(found.strain) <= STRAIN_OF_ANOTHER_UNIT &&
+      (!asRead || Math.abs(asRead.determinant) >= FOLD_SPARED * Math.abs(found.determinant))
+    )
+  })
 }
 
 const times = (m: Mat3, s: number): Mat3 => mapMatrix(m, x => x * s)
@@ -334,6 +372,17 @@ class Judge {
     for (let at = 0; at < all.length; at += 3)
       for (let axis = dimension; axis < 3; axis++) all[at + axis] /= 1 + 2 * Math.abs(all[at + axis])
     return all
+  }
+
+  /** The mesh that the list may be: whether it is shows when it is judged by it. */
+  guess(): Mesh | undefined {
+    const { dimension } = this.crystal.lattice!
+    const rounding = [0, 1, 2].map(
+      axis =>
+        NOISE +
+        this.#toFractions.reduce((sum, row, i) => sum + (this.list.digits[i] ?? 0) * Math.abs(row[axis]), 0),
+    ) as unknown as Vec3
+    return guessMesh(this.#fractions(this.list.points), rounding, dimension)
   }
 
   fittingOf(sample: readonly number[]): number {
@@ -680,6 +729,36 @@ function placeOf(index: number, labels: ReadonlyMap<number, string>): string {
     before = label
   }
   return `point ${index + 1} of the path`
+}
+
+/** Fewer points than these are a mesh by chance. */
+const FEWEST_OF_MESH = 4
+
+/** A list that is a mesh, but none of the file's: another shift, other divisions. */
+function otherMeshInWords(crystal: Crystal, list: KList, readings: readonly Reading[]): string | undefined {
+  const { kGroup, dimension } = crystal
+  if (!kGroup || list.count < FEWEST_OF_MESH) return undefined
+  const own = meshesOf(crystal)
+  const inWords = ({ divisions, shift }: Mesh) =>
+    `${divisions.slice(0, dimension).join(' × ')} ${shift.some(s => s !== 0) ? `with the shift ${fractions(shift, dimension)}` : 'without a shift'}`
+  for (const reading of readings) {
+    const mesh = new Judge(crystal, list, reading, PLAIN_MESH).guess()
+    // No symmetry reduces a mesh by more than its own order.
+    const most = Math.min(MOST_MESH_POINTS, list.count * kGroup.length)
+    if (!mesh || meshPoints(mesh) > most || own.some(one => inWords(one.mesh) === inWords(mesh))) continue
+    const target: Target = { kind: 'mesh', sites: meshSites(mesh, kGroup) }
+    const { listing, faults } = new Judge(crystal, list, reading, target).explain()
+    if (!listing || faults.some(({ kind }) => kind !== 'weight')) continue
+    const ours =
+      own.length === 0 ? '' : `; the file has ${own.map(({ mesh }) => inWords(mesh)).join(' and ')}`
+    return `the ${listing} mesh of ${inWords(mesh)}, read as ${reading.names[0]}${ours}`
+  }
+  return undefined
+}
+/** Γ alone: what a list is read for before its mesh is known. */
+const PLAIN_MESH: Target = {
+  kind: 'mesh',
+  sites: meshSites({ divisions: [1, 1, 1], shift: [0, 0, 0] }, [IDENTITY]),
 }
 
 /** A factor that leaves less than this of the points' size is an explanation. */

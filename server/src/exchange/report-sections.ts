@@ -77,9 +77,12 @@ export function figureCaption({ zone, path, lattice }: Report): string {
 const SUBSCRIPTS = ['₁', '₂', '₃']
 const NAME_OF_VOLUME = ['', 'length', 'area', 'volume']
 
+/** Below this a number is the noise of a double and stands as 0, with as many digits as the others of its column. */
+const ROUNDING = 1e-12
+
 const decimal = (x: number): string => {
   const size = Math.abs(x)
-  if (size !== 0 && (size >= 1e6 || size < 10 ** -DIGITS / 2)) return plain(x, DIGITS)
+  if (size >= 1e6 || (size >= ROUNDING && size < 10 ** -DIGITS / 2)) return plain(x, DIGITS)
   const text = x.toFixed(DIGITS)
   return (Number(text) === 0 ? text.replace('-', '') : text).replace('-', '−')
 }
@@ -191,14 +194,17 @@ function zone({ zone, lattice, unit }: Report): Section | undefined {
   }
 }
 
-function symmetry({ symmetry }: Report): Section | undefined {
+function symmetry({ symmetry, lattice }: Report): Section | undefined {
   if (!symmetry) return undefined
   const { spaceGroup, pointGroup, rotations, timeReversal, kRotations } = symmetry
   return {
     title: 'Symmetry',
     facts: [
       ...(spaceGroup ? [['space group', `${spaceGroup.symbol} (${spaceGroup.number})`] as const] : []),
-      ['point group', [pointGroup, count(rotations, 'rotation')].filter(Boolean).join(', ')],
+      // The rotations about a chain that are found are those of the cell it is computed in.
+      ...(lattice?.dimension === 1
+        ? []
+        : [['point group', [pointGroup, count(rotations, 'rotation')].filter(Boolean).join(', ')] as const]),
       [
         'on k',
         `${count(kRotations, 'rotation')}; time reversal ${timeReversal ? 'holds: k and −k are equivalent' : 'does not hold'}`,

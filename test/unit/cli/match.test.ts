@@ -324,6 +324,85 @@ describe('the cell of a job', () => {
   })
 })
 
+describe('what helps where a list does not match', () => {
+  test('an ordinal in the first column: the columns that do match are named', async () => {
+    const points = await path(PBTE)
+    const rows = points.map((p, i) => `${i + 1} ${written([p.fraction])}`).join('\n')
+    const { status, out } = await match(PBTE, rows)
+    expect(status).toBe(1)
+    expect(out).toContain('--columns "2,3,4"')
+    expect((await match(PBTE, rows, '--columns', '2,3,4')).status).toBe(0)
+    // Columns that were asked for are taken at the word.
+    expect((await match(PBTE, rows, '--columns', '1,2,3')).out).not.toContain('--columns')
+  })
+  test('words in the first columns', async () => {
+    const points = await path(PBTE)
+    const rows = points.map((p, i) => `k( ${i + 1}) = (${written([p.fraction])}), w = 1`).join('\n')
+    const { status, err } = await match(PBTE, rows)
+    expect(status).toBe(2)
+    expect(err).toContain('--columns "4,5,6"')
+    expect((await match(PBTE, rows, '--columns', '4,5,6')).status).toBe(0)
+  })
+  const grid = (n: Row, shift: Row): Row[] =>
+    Array.from({ length: n[0] * n[1] * n[2] }, (_, i) => [
+      (Math.floor(i / (n[1] * n[2])) + shift[0]) / n[0],
+      ((Math.floor(i / n[2]) % n[1]) + shift[1]) / n[1],
+      ((i % n[2]) + shift[2]) / n[2],
+    ])
+  test.each([
+    [[4, 4, 4], [1 / 2, 1 / 2, 1 / 2], 'the full mesh of 4 × 4 × 4 with the shift [1/2, 1/2, 1/2]'],
+    [[6, 6, 6], [0, 0, 0], 'the full mesh of 6 × 6 × 6 without a shift'],
+    [[4, 3, 1], [0, 0, 1 / 2], 'the full mesh of 4 × 3 × 1 with the shift [0, 0, 1/2]'],
+  ])('a mesh of %j shifted by %j', async (divisions, shift, words) => {
+    const { nearest, status } = await json(PBTE, written(grid(divisions, shift)))
+    expect(status).toBe(1)
+    expect(nearest).toContain(words)
+    expect(nearest).toContain('the file has 4 × 4 × 4 without a shift')
+  })
+  test('an irreducible mesh of other divisions', async () => {
+    const { points } = await mesh(PBTE.replace('[4, 4, 4]', '[8, 8, 8]'))
+    const { nearest } = await json(PBTE, written(points.map(p => [...p.fraction, p.weight])))
+    expect(nearest).toContain('the irreducible mesh of 8 × 8 × 8 without a shift')
+  })
+  test('a list that is no mesh is not called one', async () => {
+    const rows = grid([4, 4, 4], [1 / 2, 1 / 2, 1 / 2]).map((row, i) => (i === 9 ? [0.01, 0.2, 0.3] : row))
+    expect((await json(PBTE, written(rows))).nearest).not.toContain('mesh of')
+    // The ends of segments lie on a coarse mesh, but are not all of it.
+    const ends = [
+      [0, 0, 0],
+      [1 / 2, 0, 0],
+      [1 / 2, 1 / 2, 0],
+      [0, 0, 0],
+      [1 / 2, 1 / 2, 1 / 2],
+    ]
+    expect((await json(PBTE, written(ends))).nearest ?? '').not.toContain('mesh of')
+  })
+  test('a cell in another unit', async () => {
+    const cube = [
+      [6.462, 0, 0],
+      [0, 6.462, 0],
+      [0, 0, 6.462],
+    ]
+    for (const [size, unit] of [
+      [1 / BOHR, 'bohr'],
+      [0.1, 'nm'],
+    ] as const) {
+      world.write('a.lattice.yaml', PBTE).write(
+        'v.txt',
+        written(
+          cube.map(row => row.map(x => x * size)),
+          7,
+        ),
+      )
+      const args = ['match', 'a.lattice.yaml', '--vectors', 'v.txt']
+      const { out, status } = await world.run(args)
+      expect(status).toBe(1)
+      expect(out).toContain(`--vectors-unit ${unit}`)
+      expect((await world.run([...args, '--vectors-unit', unit])).status).toBe(0)
+    }
+  })
+})
+
 test.each([
   [['a.lattice.yaml'], /a file and a list are wanted/],
   [['a.lattice.yaml', 'gone.txt'], /gone\.txt: no such file/],

@@ -161,3 +161,19 @@ describe('fold', () => {
     expect((await fold('two.lattice.yaml', '--document', '2', '--at', '0,0,0'))[0].length).toBe(0)
   })
 })
+
+test('a chain has no point group of the cell it is computed in', async () => {
+  world.write('a.lattice.yaml', 'lattice: {vectors: [[2.57, 0, 0]]}\natoms: [C: [0, 0, 0]]\n')
+  const { out } = await world.run(['report', 'a.lattice.yaml'])
+  expect(out).not.toContain('point group')
+  expect(out).toContain('2 rotations; time reversal holds')
+})
+
+test('the noise of a double stands as a zero among its column', async () => {
+  // cF in vectors of another cell: kz of X and W is 0 but for rounding.
+  const vectors = '[[0, a/2, a/2], [a/2, 0, a/2], [a/2, 3*a/2, a]]'
+  world.write('a.lattice.yaml', `unit: bohr\nlattice: {a: 10.263, vectors: ${vectors}}\n`)
+  const { out } = await world.run(['report', 'a.lattice.yaml'])
+  expect(out.match(/^ +W +book .*$/m)![0]).toMatch(/0\.000000/)
+  expect(out).not.toMatch(/ {2}0 /)
+})
