@@ -77,7 +77,7 @@ export const match: Verb = {
       ...(better && {
         nearest: `read from its columns ${better.columns.join(', ')} the list matches: ${optionOf(better)}`,
       }),
-      ...(fitsIn && { cell: { related: false, fitsIn } }),
+      ...(fitsIn && { matches: list !== undefined && found.matches, cell: { related: false, fitsIn } }),
     }
     const cellFits = result.cell?.related ?? true
     desk.result(
@@ -86,7 +86,7 @@ export const match: Verb = {
         : matchText(list === STANDARD_INPUT ? 'The list' : (list ?? ''), result),
     )
     await desk.close()
-    return (result.matches || list === undefined) && cellFits ? CLEAN : FOUND
+    return result.matches && cellFits ? CLEAN : FOUND
   },
 }
 

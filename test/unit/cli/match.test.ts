@@ -398,6 +398,8 @@ describe('what helps where a list does not match', () => {
       const { out, status } = await world.run(args)
       expect(status).toBe(1)
       expect(out).toContain(`--vectors-unit ${unit}`)
+      const answer = JSON.parse((await world.run([...args, '--format', 'json'])).out)
+      expect(answer).toMatchObject({ matches: false, cell: { related: false, fitsIn: unit } })
       expect((await world.run([...args, '--vectors-unit', unit])).status).toBe(0)
     }
   })
