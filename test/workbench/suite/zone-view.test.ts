@@ -186,6 +186,7 @@ describe('zone view', function () {
     }
     go(4)
     await has('[data-mark="X"]')
+    await window.picture('zone-mark')
     const colour = await view()
       .locator('.name.marked')
       .first()
