@@ -115,7 +115,10 @@ class Layout {
         const first = this.back(itemStart(value.items[0]))
         if (!this.beginsLine(first)) throw UNUSUAL
         this.block(value, { old: this.columnOf(first), new: 0 }, [])
-        for (const item of value.items) roots.push(this.tree.spanOfItem(item))
+        const items = value.items.map(item => this.withBlankLines(this.tree.spanOfItem(item)))
+        // Keys that are further in than they should be move together: they must stand in one column.
+        if (this.columnOf(first) === 0) roots.push(...items)
+        else roots.push([items[0][0], items[items.length - 1][1]])
       } else if (value?.type === 'flow-collection') this.flow(value, { old: 0, new: 0 }, [])
       else if (value) throw UNUSUAL
     }
@@ -128,6 +131,14 @@ class Layout {
     const kept = lines ? this.within(lines, gaps, roots) : gaps
     const edits = [...kept.map(gap => this.smallest(gap)), ...this.dashes(documents, lines)]
     return edits.sort((a, b) => a.at[0] - b.at[0])
+  }
+
+  /** Blank lines after a text in a block may be lines of it. */
+  private withBlankLines([start, end]: Span): Span {
+    let after = end
+    while (' \r\n'.includes(this.text[after] || 'x')) after++
+    // What begins on the line that was reached is not of it.
+    return [start, after < this.text.length ? Math.max(end, lineStart(this.text, after) - 1) : after]
   }
 
   // Places.
@@ -344,9 +355,11 @@ class Layout {
     if (isStated && columns.old !== columns.new) throw UNUSUAL
     const old = indented[0].length
     const now = isStated ? old : inner.new
-    for (let line = start; line < end; line = nextLine(this.text, line)) {
+    for (let line = start; line < this.text.length; line = nextLine(this.text, line)) {
       let first = line
       while (this.text[first] === ' ') first++
+      // Blank lines after the text must not come to stand further in than it: they would be lines of it.
+      if (line >= end && !/[\r\n]/.test(this.text[first] ?? '\n')) break
       const column = first - line
       const moved = column < old ? Math.min(column, now) : column + now - old
       this.gaps.set(first, { start: line, end: first, text: ' '.repeat(moved), structural: true })

@@ -115,7 +115,7 @@ function fileOf(lattice: readonly string[], dimension: number, atoms?: readonly 
     'sampling:',
     '  spacing: ${25:0.02}',
     'mesh:',
-    '  spacing: ${26:0.2}',
+    '  spacing: ${26:0.18}',
   ].join('\n')}\n$0`
 }
 
