@@ -103,8 +103,15 @@ export interface Skeleton {
 const indented = (lines: readonly string[]): string[] => lines.map(line => `  ${line}`)
 const capital = (text: string): string => text[0].toUpperCase() + text.slice(1)
 
+/** With the lattice parameter offered, even divisions: L, where a face-centred crystal often has its band edge, is on the mesh. */
+const EVEN = { spacing: 0.18 }
+
 /** Stops from 2 on are the lattice's, those from 20 on what follows it. */
-function fileOf(lattice: readonly string[], dimension: number, atoms?: readonly string[]): string {
+function fileOf(
+  lattice: readonly string[],
+  dimension: number,
+  { atoms, spacing = 0.2 }: { atoms?: readonly string[]; spacing?: number } = {},
+): string {
   return `${[
     'title: ${1:Name of the crystal}',
     'unit: angstrom',
@@ -115,7 +122,7 @@ function fileOf(lattice: readonly string[], dimension: number, atoms?: readonly 
     'sampling:',
     '  spacing: ${25:0.02}',
     'mesh:',
-    '  spacing: ${26:0.18}',
+    `  spacing: \${26:${spacing}}`,
   ].join('\n')}\n$0`
 }
 
@@ -129,7 +136,7 @@ const byType = (setting: Setting): Skeleton => {
     asks: free.join(', '),
     group: dimension === 2 ? 'in the plane' : 'in space',
     words: `${type} ${words} ${note}`,
-    text: fileOf(latticeLines(setting, { first: 2 }), dimension),
+    text: fileOf(latticeLines(setting, { first: 2 }), dimension, type === 'cF' ? EVEN : {}),
   }
 }
 
@@ -164,7 +171,9 @@ export const SKELETONS: readonly Skeleton[] = [
     asks: 'a',
     group: 'in the plane',
     words: 'honeycomb sheet layer graphene hp',
-    text: fileOf(SHEET_LATTICE, 2, ['- ${20:C}: [1/3, 2/3, ${21:0}]', '- ${22:C}: [2/3, 1/3, ${23:0}]']),
+    text: fileOf(SHEET_LATTICE, 2, {
+      atoms: ['- ${20:C}: [1/3, 2/3, ${21:0}]', '- ${22:C}: [2/3, 1/3, ${23:0}]'],
+    }),
   },
   {
     id: 'vectors',
@@ -173,7 +182,7 @@ export const SKELETONS: readonly Skeleton[] = [
     asks: 'vectors',
     group: 'by vectors',
     words: 'vectors primitive',
-    text: fileOf(VECTOR_BLOCKS.primitive, 3),
+    text: fileOf(VECTOR_BLOCKS.primitive, 3, EVEN),
   },
   {
     id: 'vectors-centring',
