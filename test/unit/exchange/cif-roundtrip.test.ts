@@ -98,8 +98,11 @@ const LEAST = 0.6
 const isSound = (text: string): boolean => {
   const crystal = crystalOf(text)
   if (!crystal.lattice || crystal.lattice.volume * crystal.angstrom ** 3 < 10) return false
-  return Object.values(surroundings(inAngstrom(crystal))).every(lists =>
-    Object.values(lists).every(list => list.every(d => d < 1e-9 || d > LEAST)),
+  // An atom is at its own place, and no other kind is.
+  return Object.entries(surroundings(inAngstrom(crystal))).every(([kind, lists]) =>
+    Object.entries(lists).every(([other, list]) =>
+      list.every(d => d > LEAST || (d < 1e-9 && kind === other)),
+    ),
   )
 }
 
