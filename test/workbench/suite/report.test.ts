@@ -44,6 +44,8 @@ describe('the lattice report', () => {
     await checked(editor.document)
     await vscode.commands.executeCommand('braggline.openReport')
     await soon(() => previews().length === 1)
+    // Whole, with what needed a search for symmetry: nothing is on its way any more.
+    await soon(async () => /Fm-3m.*path-label-unknown/s.test(await text(editor.document.uri)))
     const column = previews()[0].group.viewColumn
     const other = await vscode.workspace.openTextDocument(file('services.yaml'))
     await vscode.window.showTextDocument(other, column)
